@@ -1,0 +1,1 @@
+"""Properties as functions of temperature, and the built-in fluids and solids."""
