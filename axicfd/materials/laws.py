@@ -59,7 +59,7 @@ class Constant:
 
 @dataclass(frozen=True)
 class Exponential:
-    """value * exp(-exponent * (T - at)): viscosity falling with temperature where exponent [1/K] is positive."""
+    """value * exp(-exponent * (T - at)): a falling viscosity where exponent [1/K] is positive."""
 
     at: float
     value: float
@@ -91,9 +91,10 @@ class Exponential:
 
 @dataclass(frozen=True)
 class IdealGasDensity:
-    """Density of an ideal gas, pressure / (gas_constant * T), at one absolute pressure [Pa]; constant in J/(kg K).
+    """Density of an ideal gas, pressure / (gas_constant * T), at one absolute pressure [Pa].
 
-    Below 1 K, where no gas is, the value of 1 K is returned so that no iteration can divide by zero.
+    gas_constant is that of the gas, in J/(kg K). Below 1 K, where no gas is, the value of 1 K is returned so
+    that no iteration can divide by zero.
     """
 
     pressure: float
@@ -124,10 +125,10 @@ class Table:
     """Points (temperature [K] rising, value) joined by a monotone, once differentiable curve.
 
     Between the points the curve has no bump that the points do not have (piecewise cubic with the slopes of
-    Fritsch & Butland 1984, SIAM J. Sci. Stat. Comput. 5, 300). `logarithmic` interpolates ln(value): right for
-    a viscosity, which falls by equal factors rather than equal amounts. Outside the points the end value is
-    held, unless `goes_on`: then the curve goes straight on with its end slope (in ln if logarithmic), a falling
-    one no further than to a hundredth of the end value.
+    Fritsch & Butland 1984, SIAM J. Sci. Stat. Comput. 5, 300). `logarithmic` interpolates ln(value): right
+    for a viscosity, which falls by equal factors rather than equal amounts. Outside the points the end value
+    is held, unless `goes_on`: then the curve goes straight on with its end slope (in ln if logarithmic), a
+    falling one no further than to a hundredth of the end value.
     """
 
     temperature: tuple[float, ...]
@@ -182,24 +183,23 @@ class Table:
         return np.exp(np.clip(y, -LARGEST_EXPONENT, LARGEST_EXPONENT))
 
     def _log_primitive(self, T: Array) -> Array:
-        """Integral of the curve from the first temperature of the table, (any shape), by Gauss points in each piece."""
-        return self._curve.primitive_of(lambda y: self._exp(y), T, self._log_sums)
+        """Integral of the curve from the first temperature to T, by Gauss points in each piece."""
+        return self._curve.primitive_of(self._exp, T, self._log_sums)
 
     @cached_property
     def _log_sums(self) -> Array:
-        return self._curve.sums_of(lambda y: self._exp(y))
+        return self._curve.sums_of(self._exp)
 
 
 Law = Constant | Exponential | Table | IdealGasDensity
 
 
-# --------------------------------------------------------------------------------------------------------------
 # the curve through a table
 
 
 @dataclass(frozen=True, eq=False)
 class _Pieces:
-    """A piecewise cubic on the whole line: piece i lies between breaks i-1 and i, the first and last are unlimited.
+    """A piecewise cubic on the whole line: piece i lies between breaks i-1 and i, the end ones are unlimited.
 
     breaks : (m,)       rising [K]
     origin : (m + 1,)   [K] where the local coordinate of each piece is 0
@@ -252,7 +252,7 @@ def _running(inner: Array) -> Array:
 
 
 def _gauss(function: Callable[[Array], Array], a: Array, b: Array) -> Array:
-    """Integral of function from a to b (arrays of one shape); each interval must lie within one smooth piece."""
+    """Integral of function from a to b (arrays of one shape); each interval lies within one smooth piece."""
     x, w = np.polynomial.legendre.leggauss(GAUSS_POINTS)
     half = 0.5 * (b - a)
     nodes = np.expand_dims(a + half, -1) + np.expand_dims(half, -1) * x
@@ -280,7 +280,7 @@ def _joined(T: Array, y: Array, goes_on: bool, share_floor: bool) -> _Pieces:
 
 
 def _stop_falling(breaks: list[float], origin: list[float], c: list[Array]) -> None:
-    """Where a straight continuation falls towards zero, add the break after which it holds a small share of the end value."""
+    """Where a straight continuation falls towards zero, let it hold a small share of the end value."""
     end, slope = c[-1][0], c[-1][1]
     if end * slope < 0.0:
         breaks.append(origin[-1] + (SMALLEST_SHARE - 1.0) * end / slope)
