@@ -1,0 +1,503 @@
+"""How a key of a case file is declared: what it means, what it accepts, its default, what to write instead.
+
+One declaration feeds the check of a value, the sentence about a bad one, the listing of all keys, the written case
+and the generated tests. A declaration is the metadata of an annotated field of the models:
+
+    thickness: Annotated[float | None, Quantity("length", "thickness of the layer", above=0)] = None
+"""
+
+from __future__ import annotations
+
+import difflib
+import math
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass, field
+from typing import Any
+
+from pydantic_core import CoreSchema, PydanticCustomError, core_schema
+
+from axicfd import units
+from axicfd.materials import laws
+
+# The key of the validation context that says where values come from: in a file a bare number for a dimensional
+# key is a mistake, in Python it is SI.
+IN_FILE = "in_file"
+
+
+@dataclass(frozen=True)
+class Problem:
+    """What is wrong with a value: `inner` leads from the key into a list or table, `value` is what stands there."""
+
+    value: object
+    allowed: str
+    instead: str = ""
+    inner: tuple[str | int, ...] = ()
+    looks_like: tuple[str, ...] = ()  # kinds of quantity whose unit this is
+
+
+class BadValue(Exception):
+    """Raised by `Key.read`; carries every problem found in one value."""
+
+    def __init__(self, *problems: Problem) -> None:
+        self.problems = problems
+        super().__init__("; ".join(problem.allowed for problem in problems))
+
+
+@dataclass(frozen=True)
+class Key:
+    """A declared key. Subclasses say how a value is read and how it is written."""
+
+    meaning: str
+    instead: str = field(default="", kw_only=True)  # advice that goes with every bad value of this key
+
+    def read(self, value: Any, in_file: bool) -> Any:
+        """The value the models keep. Raises `BadValue`."""
+        raise NotImplementedError
+
+    def write(self, value: Any, raw: Any = None) -> str:
+        """TOML text that reads back as `value`; `raw`, if given, is the value as the user gave it."""
+        raise NotImplementedError
+
+    @property
+    def allowed(self) -> str:
+        """What is accepted, as the end of a sentence that begins with the key: "must be ..."."""
+        raise NotImplementedError
+
+    @property
+    def example(self) -> str:
+        """TOML text of a value that is accepted."""
+        raise NotImplementedError
+
+    def refuse(self, value: Any, allowed: str = "", instead: str = "", inner: tuple[str | int, ...] = ()) -> BadValue:
+        return BadValue(Problem(value, allowed or self.allowed, instead or self.instead, inner))
+
+    def __get_pydantic_core_schema__(self, source: Any, handler: Any) -> CoreSchema:
+        def validate(value: Any, info: Any) -> Any:
+            try:
+                return self.read(value, bool(info.context and info.context.get(IN_FILE)))
+            except BadValue as bad:
+                raise PydanticCustomError("bad_value", "{text}", {"text": str(bad), "bad": bad}) from None
+
+        return core_schema.with_info_plain_validator_function(validate)
+
+
+def toml_text(text: str) -> str:
+    """A TOML basic string."""
+    escaped = "".join(_ESCAPES.get(mark, mark if mark >= " " and mark != "\x7f" else f"\\u{ord(mark):04x}") for mark in text)
+    return f'"{escaped}"'
+
+
+_ESCAPES = {'"': '\\"', "\\": "\\\\", "\n": "\\n", "\t": "\\t", "\r": "\\r"}
+
+
+def nearest(word: object, known: Iterable[str]) -> str | None:
+    """The known name closest to a misspelt one, or None."""
+    by_lower = {name.lower(): name for name in known}
+    found = difflib.get_close_matches(str(word).lower().strip(), by_lower, 1, 0.6)
+    return by_lower[found[0]] if found else None
+
+
+@dataclass(frozen=True)
+class _Bounded(Key):
+    """Limits shared by quantities and numbers, in SI."""
+
+    above: float | None = field(default=None, kw_only=True)
+    at_least: float | None = field(default=None, kw_only=True)
+    at_most: float | None = field(default=None, kw_only=True)
+
+    def _limits(self, show: Callable[[float], str]) -> str:
+        parts = []
+        if self.above is not None:
+            parts.append(f"greater than {show(self.above)}")
+        if self.at_least is not None:
+            parts.append(f"at least {show(self.at_least)}")
+        if self.at_most is not None:
+            parts.append(f"at most {show(self.at_most)}")
+        return " and ".join(parts)
+
+    def _outside(self, number: float) -> bool:
+        return (
+            (self.above is not None and not number > self.above)
+            or (self.at_least is not None and not number >= self.at_least)
+            or (self.at_most is not None and not number <= self.at_most)
+        )
+
+
+@dataclass(frozen=True)
+class Quantity(_Bounded):
+    """A number with a unit. `kind` is a key of `units.KINDS`; the model keeps the SI value."""
+
+    kind: str = ""
+
+    def read(self, value: Any, in_file: bool) -> float:
+        if isinstance(value, str):
+            try:
+                number = units.parse(value, self.kind)
+            except units.UnitError as bad:
+                raise BadValue(Problem(value, bad.allowed, bad.instead or self.instead, (), bad.looks_like)) from None
+        elif isinstance(value, bool) or not isinstance(value, int | float):
+            raise self.refuse(value, f"must be {self._words}, written as text with a unit")
+        elif in_file:
+            if not math.isfinite(value):
+                raise self.refuse(value, "must be a finite number with a unit")
+            bare = repr(value)
+            unit = units.split(units.KINDS[self.kind].example)[1]
+            raise self.refuse(value, f"is not {units.KINDS[self.kind].words}: the unit is missing", f'Write "{bare} {unit}" if that is meant.')
+        else:
+            number = float(value)
+            if not math.isfinite(number):
+                raise self.refuse(value, "must be finite")
+        if self.kind == "temperature" and number <= 0:
+            raise self.refuse(value, "must be above absolute zero (0 K, -273.15 degC)")
+        if self._outside(number):
+            raise self.refuse(value, f"must be {self._limits(lambda limit: units.written(limit, self.kind))}")
+        return number
+
+    def write(self, value: float, raw: Any = None) -> str:
+        return toml_text(raw if isinstance(raw, str) else units.written(value, self.kind))
+
+    @property
+    def _words(self) -> str:
+        kind = units.KINDS[self.kind]
+        return f'{kind.words} such as "{kind.example}"'
+
+    @property
+    def allowed(self) -> str:
+        limits = self._limits(lambda limit: units.written(limit, self.kind))
+        return f"must be {self._words}" + (f", {limits}" if limits else "")
+
+    @property
+    def example(self) -> str:
+        return toml_text(units.KINDS[self.kind].example)
+
+
+@dataclass(frozen=True)
+class Number(_Bounded):
+    """A number without a unit; `whole` for counts."""
+
+    whole: bool = field(default=False, kw_only=True)
+    sample: float = field(default=1.0, kw_only=True)
+
+    def read(self, value: Any, in_file: bool) -> float | int:
+        if isinstance(value, bool) or not isinstance(value, int | float):
+            raise self.refuse(value, "", "Write it without quotes and without a unit." if isinstance(value, str) else "")
+        if not math.isfinite(value) or self._outside(value) or (self.whole and value != int(value)):
+            raise self.refuse(value)
+        return int(value) if self.whole else float(value)
+
+    def write(self, value: float, raw: Any = None) -> str:
+        return str(value) if self.whole else repr(float(value))
+
+    @property
+    def allowed(self) -> str:
+        limits = self._limits(lambda limit: f"{limit:g}")
+        return f"must be a {'whole ' if self.whole else ''}number without a unit" + (f", {limits}" if limits else "")
+
+    @property
+    def example(self) -> str:
+        return self.write(int(self.sample) if self.whole else self.sample)
+
+
+@dataclass(frozen=True)
+class Choice(Key):
+    """One of a few words."""
+
+    words: tuple[str, ...] = ()
+
+    def read(self, value: Any, in_file: bool) -> str:
+        if value in self.words and isinstance(value, str):
+            return value
+        near = nearest(value, self.words) if isinstance(value, str) else None
+        raise self.refuse(value, "", f'Write "{near}".' if near else "")
+
+    def write(self, value: str, raw: Any = None) -> str:
+        return toml_text(value)
+
+    @property
+    def allowed(self) -> str:
+        return "must be " + " or ".join(f'"{word}"' for word in self.words)
+
+    @property
+    def example(self) -> str:
+        return toml_text(self.words[0])
+
+
+@dataclass(frozen=True)
+class Switch(Key):
+    """true or false."""
+
+    def read(self, value: Any, in_file: bool) -> bool:
+        if isinstance(value, bool):
+            return value
+        raise self.refuse(value, "", "Write it without quotes." if isinstance(value, str) else "")
+
+    def write(self, value: bool, raw: Any = None) -> str:
+        return "true" if value else "false"
+
+    allowed = "must be true or false"
+    example = "true"
+
+
+@dataclass(frozen=True)
+class Text(Key):
+    """Free text on one line, or, with `name`, a name: letters, digits, space, - and _."""
+
+    name: bool = field(default=False, kw_only=True)
+    sample: str = field(default="tube", kw_only=True)
+
+    def read(self, value: Any, in_file: bool) -> str:
+        if not isinstance(value, str):
+            raise self.refuse(value)
+        if self.name and not is_name(value):
+            raise self.refuse(value)
+        if not self.name and ("\n" in value or "\r" in value):
+            raise self.refuse(value)
+        return value
+
+    def write(self, value: str, raw: Any = None) -> str:
+        return toml_text(value)
+
+    @property
+    def allowed(self) -> str:
+        return "must be a name of letters, digits, spaces, - and _" if self.name else "must be text on one line"
+
+    @property
+    def example(self) -> str:
+        return toml_text(self.sample)
+
+
+def is_name(text: str) -> bool:
+    """Whether a user may call something so: it becomes part of paths and file names."""
+    return bool(text) and text == text.strip() and all(mark.isascii() and (mark.isalnum() or mark in " -_") for mark in text)
+
+
+@dataclass(frozen=True)
+class Material(Text):
+    """The name of a fluid or solid, the user's own or built-in (such as "ethylene glycol 50 % by mass")."""
+
+    def read(self, value: Any, in_file: bool) -> str:
+        if not isinstance(value, str) or not value.strip():
+            raise self.refuse(value)
+        return value
+
+    allowed = "must be the name of a material"
+
+
+@dataclass(frozen=True)
+class ZTable:
+    """A value that varies along a section: straight lines between points. z [m] from the section's start; SI values."""
+
+    z: tuple[float, ...]
+    value: tuple[float, ...]
+
+    def at(self, z: float) -> float:
+        """The value at z, held beyond both ends."""
+        if z <= self.z[0]:
+            return self.value[0]
+        for z0, z1, v0, v1 in zip(self.z, self.z[1:], self.value, self.value[1:], strict=False):
+            if z <= z1:
+                return v0 + (v1 - v0) * (z - z0) / (z1 - z0)
+        return self.value[-1]
+
+
+def _read_columns(key: Key, value: dict, columns: dict[str, Key], in_file: bool) -> dict[str, tuple]:
+    """Read a table of equally long lists, one declared entry key per column; collects every problem."""
+    problems: list[Problem] = []
+    read: dict[str, tuple] = {}
+    for name in value:
+        if name not in columns:
+            near = nearest(name, columns)
+            problems.append(Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,)))
+    for name, entry in columns.items():
+        column = value.get(name)
+        if column is None:
+            problems.append(Problem(value, f"needs `{name}`", f"Write {name} = [{entry.example}, ...]."))
+            continue
+        if not isinstance(column, list | tuple):
+            problems.append(Problem(column, "must be a list", f"Write {name} = [{entry.example}, ...].", (name,)))
+            continue
+        entries = []
+        for i, item in enumerate(column):
+            try:
+                entries.append(entry.read(item, in_file))
+            except BadValue as bad:
+                problems += [Problem(p.value, p.allowed, p.instead, (name, i, *p.inner), p.looks_like) for p in bad.problems]
+        read[name] = tuple(entries)
+    if problems:
+        raise BadValue(*problems)
+    lengths = {name: len(column) for name, column in read.items()}
+    if len(set(lengths.values())) > 1:
+        counts = " and ".join(f"{count} in `{name}`" for name, count in lengths.items())
+        raise key.refuse(value, f"must have equally many entries in each list: {counts}")
+    if min(lengths.values()) < 2:
+        raise key.refuse(value, "must have at least two entries in each list", "For one value write it alone, without a table.")
+    return read
+
+
+def _first_step_back(column: tuple[float, ...]) -> int | None:
+    """Index of the first entry that is not above the one before it."""
+    return next((i for i in range(1, len(column)) if column[i] <= column[i - 1]), None)
+
+
+def _write_list(key: Key, values: tuple, raw: Any) -> str:
+    raws = raw if isinstance(raw, list | tuple) and len(raw) == len(values) else [None] * len(values)
+    return "[" + ", ".join(key.write(value, entry) for value, entry in zip(values, raws, strict=True)) + "]"
+
+
+@dataclass(frozen=True)
+class Along(Quantity):
+    """A quantity that may also be a table along the section, { z = [...], value = [...] }."""
+
+    def read(self, value: Any, in_file: bool) -> Any:
+        if isinstance(value, ZTable):
+            return value
+        if not isinstance(value, dict):
+            return super().read(value, in_file)
+        one = Quantity(self.meaning, self.kind, above=self.above, at_least=self.at_least, at_most=self.at_most)
+        z = Quantity("distance from the section's start", "length", at_least=0)
+        read = _read_columns(self, value, {"z": z, "value": one}, in_file)
+        back = _first_step_back(read["z"])
+        if back is not None:
+            again = value["z"][back]
+            if read["z"][back] == read["z"][back - 1]:
+                raise self.refuse(again, "stands twice: a table along z cannot jump", "Make it two sections, which meet at the jump.", ("z", back))
+            raise self.refuse(again, "must be larger than the z before it", inner=("z", back))
+        return ZTable(read["z"], read["value"])
+
+    def write(self, value: Any, raw: Any = None) -> str:
+        if not isinstance(value, ZTable):
+            return super().write(value, raw)
+        raw = raw if isinstance(raw, dict) else {}
+        z = _write_list(Quantity("", "length"), value.z, raw.get("z"))
+        return f"{{ z = {z}, value = {_write_list(Quantity('', self.kind), value.value, raw.get('value'))} }}"
+
+
+@dataclass(frozen=True)
+class Property(Quantity):
+    """A property of a material: a constant, a table of temperature, or an exponential law of temperature."""
+
+    logarithmic: bool = field(default=False, kw_only=True)  # interpolate ln(value) in a table
+
+    def read(self, value: Any, in_file: bool) -> Any:
+        if isinstance(value, laws.Constant | laws.Table | laws.Exponential):
+            return value
+        if not isinstance(value, dict):
+            return laws.Constant(super().read(value, in_file))
+        one = Quantity(self.meaning, self.kind, above=self.above, at_least=self.at_least)
+        temperature = Quantity("temperature", "temperature")
+        if "at" in value or "exponent" in value:
+            return self._read_exponential(value, one, temperature, in_file)
+        if "temperature" not in value and "value" not in value:
+            raise self.refuse(value, "must be a constant or a law of temperature", f"Write {self.example}, or {self._table_example}.")
+        read = _read_columns(self, value, {"temperature": temperature, "value": one}, in_file)
+        back = _first_step_back(read["temperature"])
+        if back is not None:
+            raise self.refuse(value["temperature"][back], "must be higher than the temperature before it", inner=("temperature", back))
+        return laws.Table(read["temperature"], read["value"], logarithmic=self.logarithmic)
+
+    def _read_exponential(self, value: dict, one: Quantity, temperature: Quantity, in_file: bool) -> Any:
+        entries = {"at": temperature, "value": one, "exponent": Quantity("exponent", "per_kelvin")}
+        problems: list[Problem] = []
+        read: dict[str, float] = {}
+        for name in value:
+            if name not in entries:
+                near = nearest(name, entries)
+                problems.append(Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,)))
+        for name, entry in entries.items():
+            if name not in value:
+                problems.append(Problem(value, f"needs `{name}`", f"Write {name} = {entry.example}."))
+                continue
+            try:
+                read[name] = entry.read(value[name], in_file)
+            except BadValue as bad:
+                problems += [Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems]
+        if problems:
+            raise BadValue(*problems)
+        return laws.Exponential(read["at"], read["value"], read["exponent"])
+
+    @property
+    def _table_example(self) -> str:
+        return f'{{ temperature = ["20 degC", "50 degC"], value = [{self.example}, {self.example}] }}'
+
+    def write(self, value: Any, raw: Any = None) -> str:
+        one = Quantity("", self.kind)
+        if isinstance(value, laws.Constant):
+            return one.write(value.value, raw)
+        raw = raw if isinstance(raw, dict) else {}
+        if isinstance(value, laws.Exponential):
+            at = Quantity("", "temperature").write(value.at, raw.get("at"))
+            exponent = Quantity("", "per_kelvin").write(value.exponent, raw.get("exponent"))
+            return f"{{ at = {at}, value = {one.write(value.value, raw.get('value'))}, exponent = {exponent} }}"
+        temperature = _write_list(Quantity("", "temperature"), value.temperature, raw.get("temperature"))
+        return f"{{ temperature = {temperature}, value = {_write_list(one, value.value, raw.get('value'))} }}"
+
+
+@dataclass(frozen=True)
+class ListOf(Key):
+    """A list whose entries are all declared by one key."""
+
+    entry: Key = field(default_factory=lambda: Key(""))
+
+    def read(self, value: Any, in_file: bool) -> tuple:
+        if not isinstance(value, list | tuple):
+            raise self.refuse(value, "", f"Write [{self.entry.example}].")
+        problems: list[Problem] = []
+        entries = []
+        for i, item in enumerate(value):
+            try:
+                entries.append(self.entry.read(item, in_file))
+            except BadValue as bad:
+                problems += [Problem(p.value, p.allowed, p.instead, (i, *p.inner), p.looks_like) for p in bad.problems]
+        if problems:
+            raise BadValue(*problems)
+        return tuple(entries)
+
+    def write(self, value: tuple, raw: Any = None) -> str:
+        return _write_list(self.entry, value, raw)
+
+    @property
+    def allowed(self) -> str:
+        return "must be a list of values, each of which " + self.entry.allowed
+
+    @property
+    def example(self) -> str:
+        return f"[{self.entry.example}]"
+
+
+@dataclass(frozen=True)
+class PerName(Key):
+    """A small table NAME -> value, such as heat per layer."""
+
+    entry: Key = field(default_factory=lambda: Key(""))
+    name: str = field(default="NAME", kw_only=True)
+
+    def read(self, value: Any, in_file: bool) -> dict[str, Any]:
+        if not isinstance(value, dict):
+            raise self.refuse(value, "", f"Write {self.example}.")
+        problems: list[Problem] = []
+        entries = {}
+        for name, item in value.items():
+            try:
+                entries[name] = self.entry.read(item, in_file)
+            except BadValue as bad:
+                problems += [Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems]
+        if problems:
+            raise BadValue(*problems)
+        return entries
+
+    def write(self, value: dict[str, Any], raw: Any = None) -> str:
+        raw = raw if isinstance(raw, dict) else {}
+        return "{ " + ", ".join(f"{toml_key(name)} = {self.entry.write(item, raw.get(name))}" for name, item in value.items()) + " }"
+
+    @property
+    def allowed(self) -> str:
+        return f"must be a table of {self.name} = value, where each value " + self.entry.allowed
+
+    @property
+    def example(self) -> str:
+        return f"{{ {self.name} = {self.entry.example} }}"
+
+
+def toml_key(name: str) -> str:
+    """A name as a TOML key, quoted where it needs to be."""
+    return name if name and all(mark.isascii() and (mark.isalnum() or mark in "-_") for mark in name) else toml_text(name)
