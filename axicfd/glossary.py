@@ -18,8 +18,8 @@ class Reported:
     symbol  : short form for formulas and axes, or ""
     unit    : SI unit as written for people, "" for a pure number
     meaning : one sentence
-    kind    : which of the user's units it is shown in: "temperature", "pressure", "power", "length",
-              "mass_flow", "velocity", "heat_flux", "time", or "" (always SI)
+    kind    : which of the user's units it is shown in: "temperature", "pressure", "heat", "length",
+              "mass_flow", "velocity", "heat_flux", or "" (always SI)
     """
 
     key: str
@@ -95,7 +95,7 @@ SUMMARY = (
         "weight of the column, to be added for a gauge",
         "pressure",
     ),
-    Reported("heat_gain_W", "heat taken up", "Q", "W", "mass flow x (outlet - inlet enthalpy)", "power"),
+    Reported("heat_gain_W", "heat taken up", "Q", "W", "mass flow x (outlet - inlet enthalpy)", "heat"),
     Reported(
         "hottest_wetted_wall_K",
         "hottest wetted wall",
@@ -142,7 +142,7 @@ SUMMARY = (
         "K/W",
         "(hottest solid - inlet temperature) / heat taken up",
     ),
-    Reported("mean_residence_s", "mean residence time", "t", "s", "fluid volume / volume flow", "time"),
+    Reported("mean_residence_s", "mean residence time", "t", "s", "fluid volume / volume flow"),
     Reported(
         "hydrodynamic_entry_length_m",
         "hydrodynamic entry length",
@@ -162,14 +162,14 @@ SUMMARY = (
     Reported("hottest_K", "hottest", "T_max", "K", "highest temperature in the layer", "temperature"),
     Reported("hottest_z_m", "place of the hottest", "z", "m", "from the tube's start", "length"),
     Reported("coldest_K", "coldest", "T_min", "K", "lowest temperature in the layer", "temperature"),
-    Reported("heat_in_W", "heat in through the outside", "Q", "W", "positive into the tube", "power"),
+    Reported("heat_in_W", "heat in through the outside", "Q", "W", "positive into the tube", "heat"),
     Reported(
         "heat_to_stream_W",
         "heat into the stream",
         "Q_s",
         "W",
         "through the wetted wall of the section",
-        "power",
+        "heat",
     ),
     Reported(
         "end_bulk_temperature_K",
@@ -248,7 +248,7 @@ CURVES = (
         "Q_z",
         "W",
         "positive towards larger z",
-        "power",
+        "heat",
     ),
     Reported("reverse", "reverse flow", "", "", "1 where any fluid runs backwards"),
 )

@@ -1,0 +1,1 @@
+"""From a result to something outside: folder, tables, pictures. Computes nothing physical."""

@@ -1,0 +1,193 @@
+"""The results folder: written whole or not at all, and read back.
+
+Everything goes into a temporary folder beside the target, which is renamed at the end; an interruption at any
+moment leaves either the old state or the finished folder.
+"""
+
+from __future__ import annotations
+
+import json
+import math
+import os
+import shutil
+from collections.abc import Iterator
+from contextlib import contextmanager
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+
+from axicfd.case.layout import Layout, layout
+from axicfd.case.model import Case
+from axicfd.case.read import load
+from axicfd.case.write import to_toml
+from axicfd.errors import ResultsFolderError
+from axicfd.output import csv, vtr
+
+SUMMARY = "summary.json"
+CASE = "case.toml"
+FIELDS = "fields.npz"
+
+
+@dataclass(frozen=True)
+class Stored:
+    """A results folder read back; the attributes mean the same as those of a Result.
+
+    folder : where it was read from
+    """
+
+    folder: Path
+    case: Case
+    layout: Layout
+    version: str
+    summary: dict[str, Any]
+    axial: dict[str, dict[str, Any]]
+    outside: dict[str, Any]
+    radial: dict[str, Any]
+    fields: dict[str, Any]
+
+
+def file_name(name: str) -> str:
+    """A user's name as part of a file name: spaces become `-`."""
+    return name.replace(" ", "-")
+
+
+def refuse_unusable(path: Path, replace: bool) -> None:
+    """Raise ResultsFolderError if the folder could not be written; asked before the solve as well as after it."""
+    if not path.exists() and not path.is_symlink():
+        return
+    if not path.is_dir() or path.is_symlink():
+        raise ResultsFolderError(
+            f"{path} exists and is not a folder. Give another place with --out, or move it away."
+        )
+    if not replace:
+        raise ResultsFolderError(
+            f"the folder {path} exists already. Write --replace to replace it, or give another place with --out."
+        )
+    if any(path.iterdir()) and not (path / SUMMARY).exists():
+        # Replacing means deleting: a folder with someone's other files must not vanish by a slip of --out.
+        raise ResultsFolderError(
+            f"the folder {path} holds other files and no {SUMMARY}: --replace only replaces a results folder. "
+            "Give another place with --out."
+        )
+
+
+def write(result: Any, path: Path, replace: bool = False) -> None:
+    """Write the results folder of a Result; raises ResultsFolderError where that is not possible."""
+    refuse_unusable(path, replace)
+    try:
+        with _whole_or_not(path) as folder:
+            _write_files(result, folder)
+    except OSError as error:
+        raise ResultsFolderError(f"cannot write the folder {path}: {error.strerror or error}.") from error
+
+
+def read(path: Path) -> Stored:
+    """Read a results folder back; raises ResultsFolderError naming the file that is missing or broken."""
+    if not path.is_dir():
+        raise ResultsFolderError(
+            f"{path} is not a folder. Give the results folder that `axicfd solve` wrote, such as heater-results."
+        )
+    if not (path / SUMMARY).exists():
+        raise ResultsFolderError(
+            f"the folder {path} is not a results folder: it has no {SUMMARY}. Write one with `axicfd solve`."
+        )
+    name = SUMMARY
+    try:
+        summary = json.loads((path / SUMMARY).read_text(encoding="utf-8"))
+        tables = {}
+        for stream in summary["stream"]:
+            name = f"axial-{file_name(stream)}.csv"
+            tables[stream] = csv.read_columns(path / name)
+        name = "outside.csv"
+        outside = csv.read_columns(path / name)
+        name = "radial.csv"
+        radial = csv.read_columns(path / name)
+        name = FIELDS
+        fields = _read_fields(path / FIELDS)
+    except (OSError, ValueError, KeyError, TypeError, EOFError) as error:
+        raise ResultsFolderError(
+            f"{path / name} is missing or broken ({error}). Solve the case again to write the folder anew."
+        ) from error
+    case = load(path / CASE)
+    return Stored(
+        folder=path,
+        case=case,
+        layout=layout(case),
+        version=str(summary.get("version", "")),
+        summary=summary,
+        axial=tables,
+        outside=outside,
+        radial=radial,
+        fields=fields,
+    )
+
+
+def summary_text(summary: dict[str, Any]) -> str:
+    """summary.json: numbers of numpy become plain ones, and what is not finite becomes null."""
+    return json.dumps(_plain(summary), indent=2, ensure_ascii=False, allow_nan=False) + "\n"
+
+
+def _write_files(result: Any, folder: Path) -> None:
+    (folder / SUMMARY).write_text(summary_text(result.summary), encoding="utf-8")
+    (folder / CASE).write_text(to_toml(result.case), encoding="utf-8")
+    for stream, columns in result.axial.items():
+        csv.write_columns(folder / f"axial-{file_name(stream)}.csv", columns)
+    csv.write_columns(folder / "outside.csv", result.outside)
+    csv.write_columns(folder / "radial.csv", result.radial)
+    np.savez(folder / FIELDS, **{key: np.asarray(value) for key, value in result.fields.items()})
+    outlet = {
+        name: stream.outlet_pressure
+        for name, stream in result.case.stream.items()
+        if f"u.{name}" in result.fields
+    }
+    vtr.write_fields(folder / "fields.vtr", result.fields, outlet)
+
+
+def _read_fields(path: Path) -> dict[str, Any]:
+    with np.load(path, allow_pickle=False) as stored:
+        fields: dict[str, Any] = {key: stored[key] for key in stored.files}
+    for key, value in fields.items():
+        if value.ndim == 0:
+            fields[key] = value.item()
+        elif value.dtype.kind == "U":
+            fields[key] = value.tolist()
+    return fields
+
+
+@contextmanager
+def _whole_or_not(path: Path) -> Iterator[Path]:
+    """A temporary folder that becomes `path` at the end, or vanishes when anything interrupts, Ctrl-C included."""
+    path.parent.mkdir(parents=True, exist_ok=True)
+    unfinished = path.parent / f".{path.name}-unfinished-{os.getpid()}"
+    old = path.parent / f".{path.name}-old-{os.getpid()}"
+    unfinished.mkdir()
+    try:
+        yield unfinished
+        if path.exists():
+            path.rename(old)
+            try:
+                unfinished.rename(path)
+            except BaseException:
+                old.rename(path)
+                raise
+            shutil.rmtree(old)
+        else:
+            unfinished.rename(path)
+    finally:
+        shutil.rmtree(unfinished, ignore_errors=True)
+
+
+def _plain(value: Any) -> Any:
+    if isinstance(value, dict):
+        return {str(key): _plain(entry) for key, entry in value.items()}
+    if isinstance(value, list | tuple):
+        return [_plain(entry) for entry in value]
+    if isinstance(value, np.ndarray):
+        return [_plain(entry) for entry in value.tolist()]
+    if isinstance(value, np.generic):
+        value = value.item()
+    if isinstance(value, float) and not math.isfinite(value):
+        return None
+    return value

@@ -1,0 +1,57 @@
+"""The fields as a rectilinear grid that VTK readers open: x = z, y = r, everything as cell data in SI units."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+
+# Fields of this prefix are cell arrays of material properties and go into the file under their bare name.
+PROPERTY = "property."
+
+
+def cell_arrays(fields: dict[str, Any], outlet_pressure: dict[str, float]) -> dict[str, np.ndarray]:
+    """Cell values of everything worth looking at.
+
+    fields          : the arrays of fields.npz
+    outlet_pressure : stream name -> [Pa], added to the pressure in motion
+    Returns temperature_K, pressure_Pa (nz, nr), velocity_m_s (nz, nr, 3) as (axial, radial, 0), material (nz, nr)
+    and the properties that the fields carry. Pressure is nan and velocity zero outside streams; everything but
+    the material is nan where there is none. Face velocities are averaged onto the cells they bound.
+    """
+    material = np.asarray(fields["material"])
+    temperature = np.where(material >= 0, fields["T"] + float(fields["inlet_temperature"]), np.nan)
+    pressure = np.full(material.shape, np.nan)
+    velocity = np.zeros((*material.shape, 3))
+    for name, outlet in outlet_pressure.items():
+        u, v, p = fields[f"u.{name}"], fields[f"v.{name}"], fields[f"p.{name}"]
+        first = int(fields[f"j0.{name}"])
+        across = slice(first, first + u.shape[1])
+        pressure[:, across] = p + outlet
+        velocity[:, across, 0] = (u[1:] + u[:-1]) / 2
+        velocity[:, across, 1] = (v[:, 1:] + v[:, :-1]) / 2
+    arrays = {
+        "temperature_K": temperature,
+        "pressure_Pa": pressure,
+        "velocity_m_s": velocity,
+        "material": material,
+    }
+    for key, values in fields.items():
+        if key.startswith(PROPERTY):
+            arrays[key.removeprefix(PROPERTY)] = np.asarray(values)
+    return arrays
+
+
+def write_fields(path: Path, fields: dict[str, Any], outlet_pressure: dict[str, float]) -> None:
+    """Write `cell_arrays` of the fields to a .vtr file."""
+    import pyvista
+
+    grid = pyvista.RectilinearGrid(
+        np.asarray(fields["z_faces"], float), np.asarray(fields["r_faces"], float), np.zeros(1)
+    )
+    for name, values in cell_arrays(fields, outlet_pressure).items():
+        # VTK counts cells with the first axis running fastest; ours has the radius running fastest.
+        flat = values.transpose(1, 0, 2).reshape(-1, 3) if values.ndim == 3 else values.T.reshape(-1)
+        grid.cell_data[name] = np.ascontiguousarray(flat)
+    grid.save(str(path))
