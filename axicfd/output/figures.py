@@ -72,8 +72,8 @@ def draw_all(result: Any, folder: Path, suffix: str = ".png") -> list[Path]:
 def colour_map() -> ListedColormap:
     """Dark is cold, light is warm: lightness rises in equal steps, so that the map also reads in grey.
 
-    A path through blue, violet, red and amber in the even colour space Oklab (B. Ottosson, "A perceptual color
-    space for image processing", 2020; matrices as given there).
+    A path through blue, violet, red and amber in the even colour space Oklab (B. Ottosson, "A perceptual
+    color space for image processing", 2020; matrices from memory).
     """
     t = np.linspace(0.0, 1.0, 256)
     lightness = 0.28 + 0.66 * t
@@ -179,7 +179,7 @@ def axial_picture(result: Any, stream: str) -> Figure:
     return figure
 
 
-# --- paper ---------------------------------------------------------------------------------------------------
+# --- paper --------------------------------------------------------------------------------------------------
 
 
 def _figure(height: float) -> Figure:
@@ -207,7 +207,7 @@ def _heading(figure: Figure, result: Any, note: str) -> None:
 
 
 def _stretch(tube: Any, share: float = TUBE_SHARE) -> int:
-    """The stretch of the radius that brings the tube nearest to `share` of its length without passing it much."""
+    """The stretch of the radius that brings the tube's height nearest to `share` of its length."""
     wanted = share * tube.length / tube.outer_diameter
     return min(STRETCHES, key=lambda stretch: abs(np.log(stretch / max(wanted, 1.0))))
 
@@ -227,7 +227,7 @@ def _prepare_tube(axes: Axes, tube: Any, shown: Shown) -> None:
     axes.tick_params(bottom=False, labelbottom=False)
 
 
-# --- the tube ------------------------------------------------------------------------------------------------
+# --- the tube -----------------------------------------------------------------------------------------------
 
 
 def _placed(tube: Any) -> Iterator[tuple[Any, Any]]:
@@ -302,7 +302,7 @@ def _centre_line(axes: Axes, tube: Any, shown: Shown) -> None:
 
 
 def _layer_labels(axes: Axes, tube: Any, shown: Shown) -> None:
-    """Names of the wall layers right of the tube where the last section has them, else above their section."""
+    """Names of the wall layers, right of the tube where the last section has them, else above."""
     last = tube.sections[-1]
     total = shown.value("length", tube.length)
     seen = set()
@@ -444,7 +444,7 @@ def _shade_heated(axes: Axes, tube: Any, shown: Shown) -> None:
             axes.axvspan(*z, facecolor=HEATED_TINT, edgecolor="none", zorder=0)
 
 
-# --- fields and curves ---------------------------------------------------------------------------------------
+# --- fields and curves --------------------------------------------------------------------------------------
 
 
 def _present(fields: dict[str, Any]) -> np.ndarray:
@@ -469,8 +469,8 @@ def _isotherms(
 ) -> None:
     """Isotherms through stream and walls, labelled on the line.
 
-    Lines are drawn through cell centres; the first and last cell in each direction are repeated at the edges so
-    that lines reach the wall, the ends and the axis.
+    Lines are drawn through cell centres; the first and last cell in each direction are repeated at the edges
+    so that lines reach the wall, the ends and the axis.
     """
     levels = MaxNLocator(nbins=9, steps=[1, 2, 2.5, 5, 10]).tick_values(low, high)
     span = high - low

@@ -54,7 +54,7 @@ def file_name(name: str) -> str:
 
 
 def refuse_unusable(path: Path, replace: bool) -> None:
-    """Raise ResultsFolderError if the folder could not be written; asked before the solve as well as after it."""
+    """Raise ResultsFolderError if the folder could not be written; asked before the solve and after."""
     if not path.exists() and not path.is_symlink():
         return
     if not path.is_dir() or path.is_symlink():
@@ -63,12 +63,12 @@ def refuse_unusable(path: Path, replace: bool) -> None:
         )
     if not replace:
         raise ResultsFolderError(
-            f"the folder {path} exists already. Write --replace to replace it, or give another place with --out."
+            f"the folder {path} exists already. Replace it with --replace, or give another place with --out."
         )
     if any(path.iterdir()) and not (path / SUMMARY).exists():
         # Replacing means deleting: a folder with someone's other files must not vanish by a slip of --out.
         raise ResultsFolderError(
-            f"the folder {path} holds other files and no {SUMMARY}: --replace only replaces a results folder. "
+            f"the folder {path} holds other files and no {SUMMARY}; only a results folder is replaced. "
             "Give another place with --out."
         )
 
@@ -87,7 +87,7 @@ def read(path: Path) -> Stored:
     """Read a results folder back; raises ResultsFolderError naming the file that is missing or broken."""
     if not path.is_dir():
         raise ResultsFolderError(
-            f"{path} is not a folder. Give the results folder that `axicfd solve` wrote, such as heater-results."
+            f"{path} is not a folder. Give the folder that `axicfd solve` wrote, such as heater-results."
         )
     if not (path / SUMMARY).exists():
         raise ResultsFolderError(
@@ -158,7 +158,7 @@ def _read_fields(path: Path) -> dict[str, Any]:
 
 @contextmanager
 def _whole_or_not(path: Path) -> Iterator[Path]:
-    """A temporary folder that becomes `path` at the end, or vanishes when anything interrupts, Ctrl-C included."""
+    """A temporary folder that becomes `path` at the end, or vanishes when anything interrupts."""
     path.parent.mkdir(parents=True, exist_ok=True)
     unfinished = path.parent / f".{path.name}-unfinished-{os.getpid()}"
     old = path.parent / f".{path.name}-old-{os.getpid()}"

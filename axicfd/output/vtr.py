@@ -1,4 +1,4 @@
-"""The fields as a rectilinear grid that VTK readers open: x = z, y = r, everything as cell data in SI units."""
+"""The fields as a rectilinear grid that VTK readers open: x = z, y = r, all as cell data in SI units."""
 
 from __future__ import annotations
 
@@ -16,9 +16,9 @@ def cell_arrays(fields: dict[str, Any], outlet_pressure: dict[str, float]) -> di
 
     fields          : the arrays of fields.npz
     outlet_pressure : stream name -> [Pa], added to the pressure in motion
-    Returns temperature_K, pressure_Pa (nz, nr), velocity_m_s (nz, nr, 3) as (axial, radial, 0), material (nz, nr)
-    and the properties that the fields carry. Pressure is nan and velocity zero outside streams; everything but
-    the material is nan where there is none. Face velocities are averaged onto the cells they bound.
+    Returns temperature_K, pressure_Pa, material (nz, nr), velocity_m_s (nz, nr, 3) as (axial, radial, 0), and
+    the properties that the fields carry. Outside streams the pressure is nan and the velocity zero; where there
+    is no material the temperature is nan. Face velocities are averaged onto the cells they bound.
     """
     material = np.asarray(fields["material"])
     temperature = np.where(material >= 0, fields["T"] + float(fields["inlet_temperature"]), np.nan)

@@ -1,7 +1,7 @@
 """A result made up from closed forms, so that output is tested without a solve.
 
-A developed parabolic profile, a pressure that falls on a straight line, and a temperature that is plausible but
-nobody's solution: only its shape matters here.
+A developed parabolic profile, a pressure that falls on a straight line, and a temperature that is plausible
+but nobody's solution: only its shape matters here.
 """
 
 from __future__ import annotations

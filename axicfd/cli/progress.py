@@ -1,0 +1,64 @@
+"""Progress of a solve on standard error: one line per mesh, rewritten in place on a terminal.
+
+Elsewhere plain lines, one per finished mesh and one every few seconds, so that a log shows progress.
+"""
+
+from __future__ import annotations
+
+import sys
+import time
+from typing import Any, TextIO
+
+from axicfd.cli.render import amount
+
+PLAIN_EVERY = 5.0  # seconds between plain lines within one mesh
+REWRITE_EVERY = 0.05  # seconds between two writes of the same line
+
+
+class Progress:
+    """Called with each event of a solve; `close` ends the last line."""
+
+    def __init__(self, shown: Any, stream: TextIO | None = None) -> None:
+        self._shown = shown
+        self._out = sys.stderr if stream is None else stream
+        self._in_place = self._out.isatty()
+        self._level: int | None = None
+        self._written = 0.0
+        self._open = False
+
+    def __call__(self, event: Any) -> None:
+        now = time.monotonic()
+        if self._in_place:
+            if self._level is not None and event.level != self._level:
+                self.close()
+            if event.done or event.level != self._level or now - self._written > REWRITE_EVERY:
+                self._out.write("\r\x1b[K" + self.line(event))
+                self._out.flush()
+                self._open, self._written = True, now
+        elif event.done or now - self._written > PLAIN_EVERY:
+            self._out.write(self.line(event) + "\n")
+            self._out.flush()
+            self._written = now
+        self._level = event.level
+
+    def close(self) -> None:
+        """End the line that stands open on a terminal."""
+        if self._open:
+            self._out.write("\n")
+            self._out.flush()
+            self._open = False
+
+    def line(self, event: Any) -> str:
+        """`mesh 4 of 5   40 960 cells   outlet 41.3 degC   drop 0.182 bar   1.1 s`."""
+        parts = [f"mesh {event.level} of {event.levels}", f"{grouped(event.cells)} cells"]
+        if event.outlet_temperature is not None:
+            parts.append(f"outlet {amount(self._shown, 'temperature', event.outlet_temperature)}")
+        if event.pressure_drop is not None:
+            parts.append(f"drop {amount(self._shown, 'pressure', event.pressure_drop)}")
+        parts.append(f"{event.seconds:.1f} s")
+        return "   ".join(parts)
+
+
+def grouped(count: int) -> str:
+    """40960 -> "40 960"."""
+    return f"{count:,}".replace(",", " ")
