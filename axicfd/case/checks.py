@@ -1,0 +1,4 @@
+def presence(tree, source):
+    return []
+def contradictions(case, source):
+    return []
