@@ -23,6 +23,7 @@ from axicfd.output.folder import file_name
 from axicfd.output.shown import Shown, shown_units
 
 WIDTH = 10.0  # inches, all pictures
+LEFT, RULER = 0.1, 0.78  # left margin and length of the ruler, as shares of the width
 DOTS_PER_INCH = 150
 TUBE_SHARE = 0.24  # height of the tube over its length on paper; the radius is stretched to come near this
 STRETCHES = (1, 2, 5, 10, 20, 50, 100, 200, 500, 1000, 2000, 5000)
@@ -103,10 +104,10 @@ def temperature_picture(result: Any) -> Figure:
     """Temperature of the stream in colour, wall layers in greys, isotherms through both."""
     shown, fields, tube = shown_units(result.case), result.fields, result.layout
     stretch = _stretch(tube)
-    height = _tube_height(tube, stretch, ruler=0.84 * WIDTH)
-    figure = _figure(height + 2.55)
+    height = _tube_height(tube, stretch, ruler=RULER * WIDTH)
+    figure = _figure(height + 2.8)
     total = figure.get_figheight()
-    axes = figure.add_axes((0.08, 1.75 / total, 0.84, height / total))
+    axes = figure.add_axes((LEFT, 1.95 / total, RULER, height / total))
     _prepare_tube(axes, tube, shown)
     _draw_layers(axes, tube, shown)
 
@@ -133,6 +134,7 @@ def temperature_picture(result: Any) -> Figure:
     bar_axes = figure.add_axes((0.25, 0.62 / total, 0.5, 0.14 / total))
     bar = figure.colorbar(mesh, cax=bar_axes, orientation="horizontal")
     bar.outline.set_visible(False)
+    bar.formatter.set_useOffset(False)
     bar.ax.tick_params(labelsize=10, color=SOFT_INK)
     bar.set_label(f"temperature, {shown.unit('temperature')}", fontsize=11, color=INK)
     _heading(figure, result, f"radius × {stretch}")
@@ -145,13 +147,13 @@ def axial_picture(result: Any, stream: str) -> Figure:
     panels = [(title, _present_columns(columns, names)) for title, names in PANELS]
     panels = [(title, names) for title, names in panels if names]
     stretch = _stretch(tube, share=TUBE_SHARE / 2)
-    tube_height = _tube_height(tube, stretch, ruler=0.8 * WIDTH)
-    panel_height, gap, below, above = 1.5, 0.34, 0.85, 0.75
+    tube_height = _tube_height(tube, stretch, ruler=RULER * WIDTH)
+    panel_height, gap, below, above = 1.5, 0.34, 1.0, 0.85
     total = below + len(panels) * (panel_height + gap) + tube_height + above
     figure = _figure(total)
 
     bottom = below + len(panels) * (panel_height + gap)
-    tube_axes = figure.add_axes((0.11, bottom / total, 0.8, tube_height / total))
+    tube_axes = figure.add_axes((LEFT, bottom / total, RULER, tube_height / total))
     _prepare_tube(tube_axes, tube, shown)
     _shade_heated(tube_axes, tube, shown)
     _draw_layers(tube_axes, tube, shown)
@@ -164,7 +166,7 @@ def axial_picture(result: Any, stream: str) -> Figure:
     z = shown.value("length", np.asarray(columns["z_m"], float))
     for number, (title, names) in enumerate(panels):
         bottom -= panel_height + gap
-        axes = figure.add_axes((0.11, bottom / total, 0.8, panel_height / total))
+        axes = figure.add_axes((LEFT, bottom / total, RULER, panel_height / total))
         _shade_heated(axes, tube, shown)
         _curves(axes, z, columns, names, shown, title)
         axes.set_xlim(*tube_axes.get_xlim())
@@ -306,23 +308,20 @@ def _layer_labels(axes: Axes, tube: Any, shown: Shown) -> None:
     last = tube.sections[-1]
     total = shown.value("length", tube.length)
     seen = set()
-    solids = [layer for layer in last.layers if layer.kind != "stream"]
     outer = shown.value("length", tube.outer_diameter / 2)
-    for number, layer in enumerate(solids):
+    solids = [layer for layer in last.layers if layer.kind != "stream"]
+    places = [shown.value("length", (layer.r_inner + layer.r_outer) / 2) for layer in solids]
+    # Thin layers would print their names on top of each other: spread them upwards by a line of text each.
+    line = 2 * outer * 0.17 / (axes.get_position().height * axes.figure.get_figheight())
+    at = -np.inf
+    for layer, r in zip(solids, places, strict=True):
         seen.add(layer.name)
-        r = shown.value("length", (layer.r_inner + layer.r_outer) / 2)
-        # Thin layers would print their names on top of each other: spread them upwards from the tube.
-        at = max(r, outer * (0.62 + 0.2 * number)) if len(solids) > 1 else r
+        at = max(r, at + line)
         axes.annotate(
             "no material" if layer.kind == "void" else layer.name,
             (total, r),
             (total * 1.02, at),
-            fontsize=9,
-            color=INK,
-            va="center",
-            ha="left",
-            annotation_clip=False,
-            arrowprops={"arrowstyle": "-", "linewidth": 0.6, "color": SOFT_INK, "shrinkA": 0, "shrinkB": 0},
+            **_leader("center", "left"),
         )
     for section, layer in _placed(tube):
         if layer.kind == "stream" or layer.name in seen:
@@ -330,17 +329,19 @@ def _layer_labels(axes: Axes, tube: Any, shown: Shown) -> None:
         seen.add(layer.name)
         z = shown.value("length", (section.z0 + section.z1) / 2)
         r = shown.value("length", (layer.r_inner + layer.r_outer) / 2)
-        axes.annotate(
-            layer.name,
-            (z, r),
-            (z, outer * 1.12),
-            fontsize=9,
-            color=INK,
-            va="bottom",
-            ha="center",
-            annotation_clip=False,
-            arrowprops={"arrowstyle": "-", "linewidth": 0.6, "color": SOFT_INK, "shrinkA": 0, "shrinkB": 0},
-        )
+        axes.annotate(layer.name, (z, r), (z, outer * 1.12), **_leader("bottom", "center"))
+
+
+def _leader(vertical: str, horizontal: str) -> dict[str, Any]:
+    """How a name with a thin line to its layer is written."""
+    return {
+        "fontsize": 9,
+        "color": INK,
+        "va": vertical,
+        "ha": horizontal,
+        "annotation_clip": False,
+        "arrowprops": {"arrowstyle": "-", "linewidth": 0.6, "color": SOFT_INK, "shrinkA": 0, "shrinkB": 0},
+    }
 
 
 def _radius_ticks(axes: Axes, tube: Any, shown: Shown) -> None:
@@ -382,18 +383,18 @@ def _ruler(axes: Axes, tube: Any, shown: Shown) -> None:
     height = axes.get_position().height * axes.figure.get_figheight()  # inches
     line, words = -0.40 / height, -0.44 / height
     axes.text(1.03, -0.23 / height, shown.unit("length"), transform=axes.transAxes, fontsize=10, va="center")
-    shortest_named = 0.008 * length  # a character of 9 points is about this wide on the ruler
+    character = 0.0095 * length  # about the width of one on the ruler
     for section in tube.sections:
         z0, z1 = shown.value("length", section.z0), shown.value("length", section.z1)
         axes.plot(
             [z0, z1], [line, line], transform=across, color=INK, linewidth=1.0, marker="|", clip_on=False
         )
-        room = max(int((z1 - z0) / shortest_named), 1)
-        name = section.name if len(section.name) <= room else section.name[: max(room - 1, 1)] + "…"
+        # A name longer than its section goes one line lower, where its neighbours' names are not in the way.
+        fits = len(section.name) * character <= z1 - z0
         axes.text(
             (z0 + z1) / 2,
-            words,
-            name,
+            words if fits else words - 0.17 / height,
+            section.name,
             transform=across,
             fontsize=9.5,
             color=INK,
@@ -409,9 +410,7 @@ def _stream_ends(axes: Axes, result: Any, shown: Shown) -> None:
     for layer in result.layout.sections[0].layers:
         if layer.kind != "stream":
             continue
-        backwards = (
-            result.case.stream[layer.name].direction == "-z" if layer.name in result.case.stream else False
-        )
+        backwards = result.case.stream[layer.material].direction == "-z"
         r = shown.value("length", (layer.r_inner + layer.r_outer) / 2)
         for z, word in (
             (0.012 * length, "out" if backwards else "in"),
@@ -562,9 +561,11 @@ def _set_reach(axes: Axes, z: np.ndarray, values: list[np.ndarray]) -> bool:
     low, high = np.percentile(np.concatenate(samples), [1.0, 99.0])
     least, most = float(everything.min()), float(everything.max())
     span = max(high - low, 1e-12 * max(abs(high), abs(low), 1e-300))
-    bottom, top = max(least, low - 0.6 * span), min(most, high + 0.6 * span)
+    # Cut only what would really flatten the rest.
+    bottom = least if low - least < 3.0 * span else low - 0.6 * span
+    top = most if most - high < 3.0 * span else high + 0.6 * span
     cut = bottom > least or top < most
-    if top - bottom < 1e-9 * max(abs(top), abs(bottom)):
+    if top - bottom <= 1e-9 * max(abs(top), abs(bottom)):
         bottom, top = bottom - 0.5 * max(abs(bottom), 1.0), top + 0.5 * max(abs(top), 1.0)
     margin = 0.08 * (top - bottom)
     axes.set_ylim(bottom - margin, top + margin)

@@ -17,7 +17,7 @@ def cell_arrays(fields: dict[str, Any], outlet_pressure: dict[str, float]) -> di
     fields          : the arrays of fields.npz
     outlet_pressure : stream name -> [Pa], added to the pressure in motion
     Returns temperature_K, pressure_Pa, material (nz, nr), velocity_m_s (nz, nr, 3) as (axial, radial, 0), and
-    the properties that the fields carry. Outside streams the pressure is nan and the velocity zero; where there
+    the properties that the fields carry. Outside streams pressure is nan and velocity zero; where there
     is no material the temperature is nan. Face velocities are averaged onto the cells they bound.
     """
     material = np.asarray(fields["material"])
