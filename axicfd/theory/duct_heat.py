@@ -144,13 +144,8 @@ def nusselt_T(x_star: ArrayLike) -> Any:
 def mean_nusselt_T(x_star: ArrayLike) -> Any:
     """Mean Nusselt number from 0 to x* > 0: with it, bulk_T is exp(-4 Nu_mean x*)."""
     x = np.asarray(x_star, dtype=float)
-    m = modes(math.inf)
-    # far downstream the logarithm of the first term is taken by hand: exp would underflow
-    rest = m.mean**2 @ np.moveaxis(
-        np.exp(-2.0 * np.multiply.outer(x, m.lambda_squared - m.lambda_squared[0])), -1, 0
-    )
-    far = (2.0 * m.lambda_squared[0] * x - np.log(2.0 * rest)) / (4.0 * x)
-    return np.where(x < SHORTEST, -np.log(bulk_T(np.minimum(x, SHORTEST))) / (4.0 * x), far)[()]
+    near = -np.log(bulk_T(np.minimum(x, SHORTEST))) / (4.0 * x)
+    return np.where(x < SHORTEST, near, mean_overall_nusselt(x, math.inf))[()]
 
 
 def temperature_T(r: ArrayLike, x_star: float) -> Any:
@@ -180,13 +175,18 @@ def nusselt_film(x_star: ArrayLike, biot: float) -> Any:
     """Local Nusselt number at x* >= SHORTEST between wall and bulk, film of Biot number biot > 0."""
     if math.isinf(biot):
         return nusselt_T(x_star)
-    wall = wall_film(x_star, biot)
-    return biot * wall / (bulk_film(x_star, biot) - wall)
+    m = modes(biot)
+    decay = _decay_beyond_first(np.asarray(x_star, dtype=float), m)
+    wall = decay @ (m.mean * m.wall)
+    return (biot * wall / (decay @ (2.0 * m.mean**2) - wall))[()]
 
 
 def mean_overall_nusselt(x_star: ArrayLike, biot: float) -> Any:
     """Mean of U_all D / k from bulk to ambient: with it, bulk_film is exp(-4 Nu x*)."""
-    return -np.log(bulk_film(x_star, biot)) / (4.0 * np.asarray(x_star, dtype=float))
+    m = modes(biot)
+    x = np.asarray(x_star, dtype=float)
+    rest = _decay_beyond_first(x, m) @ (2.0 * m.mean**2)
+    return ((2.0 * m.lambda_squared[0] * x - np.log(rest)) / (4.0 * x))[()]
 
 
 def developed_nusselt_film(biot: float) -> float:
@@ -199,10 +199,13 @@ def developed_nusselt_film(biot: float) -> float:
 
 def _overall_nusselt(x_star: ArrayLike, biot: float) -> Array:
     m = modes(biot)
-    # the common factor of the first term is left out: far downstream all terms would underflow
-    x = np.asarray(x_star, dtype=float)
-    decay = np.exp(-2.0 * np.multiply.outer(x, m.lambda_squared - m.lambda_squared[0]))
+    decay = _decay_beyond_first(np.asarray(x_star, dtype=float), m)
     return np.asarray((decay @ (m.lambda_squared * m.mean**2)) / (2.0 * decay @ m.mean**2))
+
+
+def _decay_beyond_first(x_star: Array, m: Modes) -> Array:
+    """m.decay without the factor of the first term: far downstream all terms together would underflow."""
+    return np.exp(-2.0 * np.multiply.outer(x_star, m.lambda_squared - m.lambda_squared[0]))
 
 
 @lru_cache(maxsize=1)
