@@ -1,0 +1,173 @@
+"""Pressure correction: the velocity that continuity still lacks, as one symmetric system solved by line multigrid.
+
+    sum over the faces of a cell of  rho A d (p'_neighbour - p'_cell) = mass defect of the cell
+
+cz (nz + 1, nr) couples the cells beside an axial face (cz[nz]: outlet, p' = 0 there; cz[0] = 0), cr (nz, nr + 1) those
+beside a radial face. Smoother: implicit radial lines; coarse meshes join cells in pairs (an odd one stays single); the
+sum over each station, solved exactly along z, carries pressure levels over the whole length at once.
+"""
+
+import numpy as np
+
+from axicfd.kernels._jit import kernel
+
+
+@kernel
+def mass_defect(mz, mr, open_p, b):
+    """Net inflow of each cell [kg/s], b (nz, nr); returns the sum of its absolute values."""
+    nz, nr = b.shape
+    total = 0.0
+    for i in range(nz):
+        for j in range(nr):
+            b[i, j] = open_p[i, j] * (mz[i, j] - mz[i + 1, j] + mr[i, j] - mr[i, j + 1])
+            total += abs(b[i, j])
+    return total
+
+
+@kernel
+def coefficients(rho, area, ring, dz, du, dv, cz, cr):
+    """Couplings of the pressure correction from the velocity changes per unit of pressure, du and dv."""
+    nz, nr = len(dz), len(area)
+    for i in range(1, nz + 1):
+        for j in range(nr):
+            cz[i, j] = rho * area[j] * du[i, j]
+    for i in range(nz):
+        for j in range(1, nr):
+            cr[i, j] = rho * ring[j] * dz[i] * dv[i, j]
+
+
+@kernel
+def coarsen(cz, cr, dist_z, coarse_dist_z, pair_r, dist_r, coarse_dist_r, coarse_cz, coarse_cr):
+    """Couplings of the mesh with cells joined in pairs along z and, if pair_r is 2, along r."""
+    nz, nr = cr.shape[0], cz.shape[1]
+    coarse_nz = coarse_cr.shape[0]
+    coarse_cz[:, :] = 0.0
+    coarse_cr[:, :] = 0.0
+    for k in range(coarse_nz + 1):
+        i = min(2 * k, nz)
+        for j in range(nr):
+            coarse_cz[k, j // pair_r] += cz[i, j] * dist_z[i] / coarse_dist_z[k]
+    for i in range(nz):
+        for j in range(0, nr + 1, pair_r):
+            coarse_cr[i // 2, j // pair_r] += cr[i, j] * dist_r[j] / coarse_dist_r[j // pair_r]
+
+
+@kernel
+def line_sweep(cz, cr, b, x, downstream):
+    """One Gauss-Seidel sweep over radial lines, each solved exactly."""
+    nz, nr = b.shape
+    c = np.empty(nr)
+    y = np.empty(nr)
+    for k in range(nz):
+        i = k if downstream else nz - 1 - k
+        for j in range(nr):
+            a = cz[i, j] + cz[i + 1, j] + cr[i, j] + cr[i, j + 1]
+            r = b[i, j]
+            if i > 0:
+                r += cz[i, j] * x[i - 1, j]
+            if i < nz - 1:
+                r += cz[i + 1, j] * x[i + 1, j]
+            if a == 0.0:
+                a, r = 1.0, 0.0
+            if j > 0:
+                f = 1.0 / (a - cr[i, j] * c[j - 1])
+                y[j] = (r + cr[i, j] * y[j - 1]) * f
+            else:
+                f = 1.0 / a
+                y[j] = r * f
+            c[j] = cr[i, j + 1] * f
+        x[i, nr - 1] = y[nr - 1]
+        for j in range(nr - 2, -1, -1):
+            x[i, j] = y[j] + c[j] * x[i, j + 1]
+
+
+@kernel
+def station_shift(cz, cr, b, x):
+    """Add to x one value per station, such that the residual summed over each station vanishes. Returns sum |residual|
+    before the shift."""
+    nz, nr = b.shape
+    low = np.zeros(nz)
+    high = np.zeros(nz)
+    rhs = np.zeros(nz)
+    total = 0.0
+    for i in range(nz):
+        for j in range(nr):
+            r = b[i, j] - (cz[i, j] + cz[i + 1, j] + cr[i, j] + cr[i, j + 1]) * x[i, j]
+            if i > 0:
+                r += cz[i, j] * x[i - 1, j]
+            if i < nz - 1:
+                r += cz[i + 1, j] * x[i + 1, j]
+            if j > 0:
+                r += cr[i, j] * x[i, j - 1]
+            if j < nr - 1:
+                r += cr[i, j + 1] * x[i, j + 1]
+            total += abs(r)
+            rhs[i] += r
+            low[i] += cz[i, j]
+            high[i] += cz[i + 1, j]
+    for i in range(nz):
+        a = low[i] + high[i]
+        if i > 0:
+            a -= low[i] * high[i - 1]
+            rhs[i] += low[i] * rhs[i - 1]
+        if a == 0.0:
+            a = 1.0
+        high[i] /= a
+        rhs[i] /= a
+    for i in range(nz - 2, -1, -1):
+        rhs[i] += high[i] * rhs[i + 1]
+    for i in range(nz):
+        for j in range(nr):
+            x[i, j] += rhs[i]
+    return total
+
+
+@kernel
+def restrict_residual(cz, cr, b, x, pair_r, coarse_b):
+    """Residual summed over joined cells into coarse_b."""
+    nz, nr = b.shape
+    coarse_b[:, :] = 0.0
+    for i in range(nz):
+        for j in range(nr):
+            r = b[i, j] - (cz[i, j] + cz[i + 1, j] + cr[i, j] + cr[i, j + 1]) * x[i, j]
+            if i > 0:
+                r += cz[i, j] * x[i - 1, j]
+            if i < nz - 1:
+                r += cz[i + 1, j] * x[i + 1, j]
+            if j > 0:
+                r += cr[i, j] * x[i, j - 1]
+            if j < nr - 1:
+                r += cr[i, j + 1] * x[i, j + 1]
+            coarse_b[i // 2, j // pair_r] += r
+
+
+@kernel
+def prolong_add(coarse_x, zi, zw, ri, rw, open_p, x):
+    """Add the bilinear interpolation of coarse_x to x. zi, ri: lower coarse neighbour of each fine cell; zw, rw: weight
+    of the upper one."""
+    nz, nr = x.shape
+    coarse_nz, coarse_nr = coarse_x.shape
+    for i in range(nz):
+        a = zi[i]
+        b = min(a + 1, coarse_nz - 1)
+        for j in range(nr):
+            c = ri[j]
+            d = min(c + 1, coarse_nr - 1)
+            low = coarse_x[a, c] + rw[j] * (coarse_x[a, d] - coarse_x[a, c])
+            high = coarse_x[b, c] + rw[j] * (coarse_x[b, d] - coarse_x[b, c])
+            x[i, j] += open_p[i, j] * (low + zw[i] * (high - low))
+
+
+@kernel
+def correct(x, du, dv, open_p, relax_p, u, v, p):
+    """Apply a pressure correction x to u, v (in full) and p (times relax_p)."""
+    nz, nr = p.shape
+    for i in range(1, nz + 1):
+        for j in range(nr):
+            u[i, j] += du[i, j] * (x[i - 1, j] - (x[i, j] if i < nz else 0.0))
+    for i in range(nz):
+        for j in range(1, nr):
+            v[i, j] += dv[i, j] * (x[i, j - 1] - x[i, j])
+    for i in range(nz):
+        for j in range(nr):
+            p[i, j] += relax_p * open_p[i, j] * x[i, j]

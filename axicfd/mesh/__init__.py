@@ -1,0 +1,1 @@
+"""Structured r-z meshes: smooth maps, nested families, one material per cell."""

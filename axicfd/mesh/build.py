@@ -1,0 +1,211 @@
+"""Case -> the family of nested grids of that case.
+
+Every layer has one smooth radial map and every section one smooth axial map; level m of the family takes every 2^m-th
+face of the finest one (m < 0 refines it), so coarse faces are fine faces and a cell has one material on every level.
+The mesh chooses itself from the case; `[mesh]` keys override the choice.
+"""
+
+from dataclasses import dataclass
+from math import ceil, sqrt
+
+import numpy as np
+
+from axicfd.case.layout import Layout, PlacedSection
+from axicfd.case.model import Case
+from axicfd.mesh.grid import NOTHING, SOLID, STREAM, Array, Grid, Piece, frozen
+from axicfd.mesh.spacing import Map, graded_map, length_weight, stretch_for_end_cell
+
+NEST = 8  # finest counts are multiples of this: three clean halvings
+LEVELS = 5  # meshes climbed, the finest included
+CELLS = 40_000  # default number of cells of the finest mesh
+ACROSS_STREAM = 48  # cells from the axis to the bore's wall in CELLS cells
+ACROSS_SOLID = 8  # cells across a layer up to half as thick as the bore's radius
+STRETCH_TO_WALLS = 4.0  # largest over smallest cell across a layer
+END_CELL = 0.02  # first axial cell at a graded end, in bore radii
+SAME_RADIUS = 1e-9  # radii closer than this share of the outer radius are one interface
+
+
+@dataclass(frozen=True)
+class Segment:
+    """A stretch of a mesh line: n cells on the finest level between two coordinates, graded by one smooth map."""
+
+    start: float
+    end: float
+    cells: int
+    map: Map
+
+    def faces(self, level: int) -> Array:
+        """Faces on a level without the first one. Level 0 is the finest of the family, 1 half of it, -1 twice."""
+        n = self.cells
+        for _ in range(level):
+            if n % 2 == 0:
+                n //= 2
+        if level < 0:
+            n *= 2 ** (-level)
+        x = self.map(np.arange(1, n + 1) / n)
+        x[-1] = 1.0
+        return self.start + (self.end - self.start) * x
+
+
+@dataclass(frozen=True)
+class Place:
+    """A named place where cells are graded to and, if `singular`, where the exact field is not smooth."""
+
+    name: str
+    z: float
+    kind: str
+    singular: bool
+
+
+@dataclass(frozen=True)
+class Family:
+    """The nested grids of one case."""
+
+    layout: Layout
+    radial: tuple[Segment, ...]
+    axial: tuple[Segment, ...]
+    places: tuple[Place, ...]
+
+    @property
+    def counts(self) -> dict[str, int]:
+        """Cells of the finest mesh, as the keys of `[mesh]` name them."""
+        return {
+            "radial": sum(s.cells for s in self.radial if s.end <= self.layout.bore_diameter / 2 * (1 + SAME_RADIUS)),
+            "axial": sum(s.cells for s in self.axial),
+        }
+
+    def grid(self, level: int = 0) -> Grid:
+        """The grid of a level: 0 the finest, 1, 2 ... coarser, -1, -2 ... two or four times finer per direction."""
+        z = _line(self.axial, level)
+        r = _line(self.radial, level)
+        return _grid(self.layout, z, r, self.places)
+
+
+def family(case: Case, layout: Layout) -> Family:
+    """Choose the finest mesh of a case.
+
+    Radial cells first (stream, then the other layers in proportion); the rest of the budget goes along z, shared
+    between sections by the logarithm of their length and by their graded ends.
+    """
+    choice = case.mesh
+    budget = choice.at_most or CELLS
+    radial = _radial_segments(case, layout, budget)
+    across = sum(s.cells for s in radial)
+    places = _places(case, layout)
+    graded_z = [p.z for p in places]
+    radius = layout.bore_diameter / 2
+
+    def graded(z: float) -> bool:
+        return any(abs(z - g) <= SAME_RADIUS * layout.length for g in graded_z)
+
+    weights = [length_weight(s.z1 - s.z0, radius, graded(s.z0) + graded(s.z1)) for s in layout.sections]
+    along = choice.axial or max(NEST * len(weights), budget // across)
+    axial = []
+    for section, weight in zip(layout.sections, weights, strict=True):
+        length = section.z1 - section.z0
+        share = along * weight / sum(weights)
+        cells = NEST * max(1, ceil(share / NEST - 1e-9) if choice.axial else int(share / NEST))
+        at_start, at_end = graded(section.z0), graded(section.z1)
+        stretch = choice.stretch_to_ends
+        if stretch is None:
+            stretch = stretch_for_end_cell(cells, length, END_CELL * radius, at_start, at_end)
+        axial.append(Segment(section.z0, section.z1, cells, graded_map(stretch, at_start, at_end)))
+    return Family(layout, radial, tuple(axial), places)
+
+
+def _radial_segments(case: Case, layout: Layout, budget: int) -> tuple[Segment, ...]:
+    radii = _interfaces(layout)
+    stretch = case.mesh.stretch_to_walls or STRETCH_TO_WALLS
+    bore = layout.bore_diameter / 2
+    stream_cells = case.mesh.radial or ACROSS_STREAM * min(4.0, max(0.25, sqrt(budget / CELLS)))
+    wanted = {layer.name: layer.cells_across for layer in _declared_layers(case) if layer.cells_across}
+    segments = []
+    for a, b in zip(radii[:-1], radii[1:], strict=True):
+        layers = [p for s in layout.sections for p in s.layers if p.r_inner < 0.5 * (a + b) < p.r_outer]
+        asked = [wanted[p.name] * (b - a) / (p.r_outer - p.r_inner) for p in layers if p.name in wanted]
+        if all(p.kind == "void" for p in layers):
+            segments.append(Segment(a, b, 1, graded_map(1.0, False, False)))
+            continue
+        if asked:
+            n = max(asked)
+        elif any(p.kind == "stream" for p in layers):
+            n = stream_cells
+        else:
+            n = stream_cells / ACROSS_STREAM * ACROSS_SOLID * min(4, ceil(2 * (b - a) / bore))
+        cells = NEST * ceil(n / NEST - 1e-9)
+        segments.append(Segment(a, b, cells, graded_map(stretch, a > 0.0, True)))
+    return tuple(segments)
+
+
+def _declared_layers(case: Case):
+    yield from case.layer
+    for section in case.section:
+        yield from section.layer or ()
+
+
+def _interfaces(layout: Layout) -> list[float]:
+    """All radii at which some section changes its material, axis included, in rising order."""
+    raw = sorted({r for s in layout.sections for p in s.layers for r in (p.r_inner, p.r_outer)})
+    radii = [raw[0]]
+    for r in raw[1:]:
+        if r - radii[-1] > SAME_RADIUS * raw[-1]:
+            radii.append(r)
+    return radii
+
+
+def _places(case: Case, layout: Layout) -> tuple[Place, ...]:
+    """Inlets, joints and ends that cells are graded to, by name."""
+    places = []
+    for name in layout.stream_names:
+        stream = case.stream[name]
+        z = 0.0 if stream.direction == "+z" else layout.length
+        places.append(Place(f"inlet of {name}", z, "inlet", stream.inlet_profile == "flat"))
+    for end, z in (("first", 0.0), ("last", layout.length)):
+        conditions = getattr(case.ends, end)
+        if any(not c.insulated for c in conditions.values()):
+            places.append(Place(f"{end} end", z, "end", any(c.temperature is not None for c in conditions.values())))
+    for a, b in zip(layout.sections[:-1], layout.sections[1:], strict=True):
+        if not _alike(a, b):
+            prescribed = a.outside.temperature is not None or b.outside.temperature is not None
+            places.append(Place(f"joint {a.name} | {b.name}", a.z1, "joint", prescribed))
+    return tuple(places)
+
+
+def _alike(a: PlacedSection, b: PlacedSection) -> bool:
+    """Whether nothing changes at the joint of two sections but the name."""
+    per_length = [
+        [(p.kind, p.material, p.r_inner, p.r_outer, p.contact_resistance, p.heat_per_volume) for p in s.layers]
+        + [p.generated / (s.z1 - s.z0) for p in s.layers]
+        for s in (a, b)
+    ]
+    return per_length[0] == per_length[1] and a.outside == b.outside
+
+
+def _line(segments: tuple[Segment, ...], level: int) -> Array:
+    return frozen(np.concatenate([[segments[0].start], *(s.faces(level) for s in segments)]))
+
+
+def _grid(layout: Layout, z: Array, r: Array, places: tuple[Place, ...]) -> Grid:
+    nz, nr = len(z) - 1, len(r) - 1
+    zc, rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
+    piece = np.full((nz, nr), -1, dtype=np.int64)
+    kind = np.full((nz, nr), NOTHING, dtype=np.int8)
+    section = np.searchsorted([s.z1 for s in layout.sections[:-1]], zc).astype(np.int64)
+    outer = np.zeros(nz, dtype=np.int64)
+    pieces: list[Piece] = []
+    streams: dict[str, tuple[int, int]] = {}
+    for k, placed in enumerate(layout.sections):
+        i0, i1 = np.searchsorted(section, [k, k + 1])
+        for layer in placed.layers:
+            j0, j1 = np.searchsorted(rc, [layer.r_inner, layer.r_outer])
+            cells = slice(i0, i1), slice(j0, j1)
+            piece[cells] = len(pieces)
+            kind[cells] = {"stream": STREAM, "solid": SOLID}.get(layer.kind, NOTHING)
+            outer[i0:i1] = max(j1, outer[i0])
+            pieces.append(Piece(k, layer, int(i0), int(i1), int(j0), int(j1)))
+            if layer.kind == "stream":
+                streams[layer.material] = (int(j0), int(j1))
+    joints = tuple(int(np.argmin(np.abs(z - p.z))) for p in places)
+    return Grid(
+        layout, z, r, tuple(pieces), frozen(piece), frozen(kind), frozen(section), frozen(outer), streams, joints
+    )

@@ -1,0 +1,68 @@
+"""One-dimensional smooth maps from [0, 1] to [0, 1] that grade cells towards ends.
+
+A mesh line of n cells has its faces at X(i / n) of one smooth map X, so that the faces of n cells are contained
+in those of 2 n cells and doubling the cells refines the same map (a fixed ratio of neighbouring cells would not).
+
+The maps are hyperbolic tangents (Vinokur 1983, J. Comput. Phys. 50, 215-234, the one-parameter forms). `stretch` is the
+ratio dX/dxi(largest) / dX/dxi(smallest) = cosh^2(delta); 1 is a uniform line.
+"""
+
+from collections.abc import Callable
+from math import acosh, asinh, sqrt
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.optimize import brentq
+
+Map = Callable[[NDArray[np.float64]], NDArray[np.float64]]
+
+# Beyond this ratio round-off of the map would show in the smallest cells.
+LARGEST_STRETCH = 1e8
+
+
+def graded_map(stretch: float, at_start: bool, at_end: bool) -> Map:
+    """Smooth map of [0, 1] onto itself with small cells at the chosen ends.
+
+    stretch  : largest over smallest slope of the map, >= 1
+    at_start : small cells at 0
+    at_end   : small cells at 1
+    """
+    if stretch <= 1.0 or not (at_start or at_end):
+        return lambda x: np.asarray(x, dtype=float)
+    delta = acosh(sqrt(stretch))
+    t = np.tanh(delta)
+    if at_start and at_end:
+        return lambda x: 0.5 * (1.0 + np.tanh(delta * (2.0 * x - 1.0)) / t)
+    if at_start:
+        return lambda x: 1.0 + np.tanh(delta * (x - 1.0)) / t
+    return lambda x: np.tanh(delta * np.asarray(x)) / t
+
+
+def stretch_for_end_cell(cells: int, length: float, end_cell: float, at_start: bool, at_end: bool) -> float:
+    """The stretch with which the cell at a graded end has the size `end_cell`.
+
+    cells    : number of cells on the line
+    length   : length of the line [m]
+    end_cell : wanted size of the first cell [m]
+    Returns 1 where uniform cells are already as small as wanted.
+    """
+    if not (at_start or at_end) or length / cells <= end_cell:
+        return 1.0
+
+    def excess(log_stretch: float) -> float:
+        x = graded_map(float(np.exp(log_stretch)), at_start, at_end)(np.array([0.0, 1.0 / cells, 1.0 - 1.0 / cells, 1.0]))
+        return float(np.log(length * min(x[1] - x[0], x[3] - x[2]) / end_cell))
+
+    high = float(np.log(LARGEST_STRETCH))
+    if excess(high) > 0.0:
+        return LARGEST_STRETCH
+    return float(np.exp(brentq(excess, 1e-9, high, xtol=1e-6)))
+
+
+def length_weight(length: float, scale: float, graded_ends: int) -> float:
+    """Share of the cells that a graded line deserves: it grows with the logarithm of its length.
+
+    A field that develops from an end has a scale proportional to the distance from it, so equal accuracy takes
+    an equal number of cells per decade of distance.
+    """
+    return (0.5 + graded_ends) * asinh(length / scale)

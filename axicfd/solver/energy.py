@@ -1,0 +1,130 @@
+"""The conjugate energy equation on one mesh: residual, and steps of Newton's kind with a sparse LU.
+
+The unknown is the temperature of every cell measured from the inlet temperature (a heater of a few watts would drown in
+the round-off of absolute temperatures).
+"""
+
+import numpy as np
+from scipy.sparse import coo_matrix
+from scipy.sparse.linalg import SuperLU, splu
+
+from axicfd.case.model import Case
+from axicfd.kernels import energy as kernel
+from axicfd.mesh.grid import NOTHING, Array, Grid
+from axicfd.solver import boundary
+from axicfd.solver.properties import Conductors
+
+UPWIND_REACH = 2  # stations on each side of a joint or inlet where linear upwind replaces Fromm's scheme
+SLOW = 0.2  # a step that leaves more than this share of the residual makes the next one factorise anew
+ONE_MILLIKELVIN = 1e-3  # smallest temperature change that the heat scale counts, times m cp
+
+
+class Energy:
+    """Temperatures of one grid and the heat that flows between its cells.
+
+    t            : (nz, nr) [K] from the inlet temperature
+    mz, mr       : (nz + 1, nr), (nz, nr + 1) [kg/s] mass flow towards rising z and r, zero outside streams
+    volume_heat  : (nz, nr) [W] viscous heat and pressure work, refreshed by the caller
+    """
+
+    def __init__(self, case: Case, grid: Grid, t_in: float, enthalpy, heat_capacity, inflow: Array, reverse: bool):
+        """
+        enthalpy, heat_capacity : functions of T - T_in on arrays [J/kg], [J/(kg K)]
+        inflow                  : (nr,) temperature of entering fluid, through the first plane (last plane if `reverse`)
+        """
+        self.grid = grid
+        self._h, self._cp = enthalpy, heat_capacity
+        nz, nr = grid.shape
+        self.generated = boundary.generation(grid)
+        self.outside = boundary.outside(case, grid, t_in)
+        self.first = boundary.end_faces(case, grid, "first", t_in)
+        self.last = boundary.end_faces(case, grid, "last", t_in)
+        self.conductors = Conductors(case, grid, t_in, self.generated)
+        self._inflow = (np.zeros(nr), inflow) if reverse else (inflow, np.zeros(nr))
+        self.t = np.zeros(grid.shape)
+        self.mz, self.mr = np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1))
+        self.volume_heat = np.zeros(grid.shape)
+        self._weights = np.zeros((nz + 1, nr, 4))
+        drc = np.diff(grid.rc)
+        self._g = np.zeros(nr + 1)
+        self._g[1:-1] = (grid.r[1:-1] - grid.rc[:-1]) / drc
+        self._upwind = np.zeros(nz + 1, dtype=bool)
+        for i in grid.joints:
+            self._upwind[max(i - UPWIND_REACH, 0) : i + UPWIND_REACH + 1] = True
+        self._empty = grid.kind == NOTHING
+        self.tz, self.tr = np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1))
+        self.hz, self.hr = np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1))
+        self.qz, self.qr = np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1))
+        self.q_outside, self.q_first, self.q_last = np.zeros(nz), np.zeros(nr), np.zeros(nr)
+        self._r = np.zeros(grid.shape)
+        self._lu: SuperLU | None = None
+        self._stale = True
+
+    def set_flow(self, mz: Array, mr: Array) -> None:
+        """Take mass fluxes; the scheme's weights follow their directions."""
+        self.mz, self.mr = mz, mr
+        kernel.z_scheme(mz, self.grid.z, self.grid.zc, self._upwind, self._weights)
+
+    def residual(self) -> Array:
+        """(nz, nr) [W] what each cell gains; refreshes every heat flow of the object."""
+        grid, t = self.grid, self.t
+        c = self._conduction = self.conductors.conduction(t, self.outside)
+        kernel.face_temperatures(t, self._weights, self._g, *self._inflow, self.mz, self.tz, self.tr)
+        np.multiply(self.mz, self._h(self.tz), out=self.hz)
+        np.multiply(self.mr, self._h(self.tr), out=self.hr)
+        kernel.conducted(t, c.rise_in, c.rise_out, c.gz, c.gr, self.qz, self.qr)
+        rows, last = np.arange(grid.nz), grid.outer - 1
+        a, b = self.outside.linear(np.where(self._empty[rows, last], 1.0, c.half_out[rows, last]))
+        self.q_outside = np.where(self._empty[rows, last], 0.0, a - b * (t + c.rise_out)[rows, last])
+        a_first, b_first = self.first.linear(c.half_first)
+        a_last, b_last = self.last.linear(c.half_last)
+        self.q_first, self.q_last = a_first - b_first * t[0], a_last - b_last * t[-1]
+        gain = self.generated + self.volume_heat
+        gain[rows, last] += self.q_outside
+        gain[0] += self.q_first
+        gain[-1] += self.q_last
+        self._loss = np.zeros(grid.shape)
+        self._loss[rows, last] += np.where(self._empty[rows, last], 0.0, b)
+        self._loss[0] += b_first
+        self._loss[-1] += b_last
+        gain[self._empty] = 0.0
+        kernel.balance(self.hz, self.hr, self.qz, self.qr, gain, self._r)
+        self._r[self._empty] = 0.0
+        return self._r
+
+    def scale(self) -> float:
+        """[W] the largest of: absolute heats through all boundaries, generation, viscous heat, enthalpy change of the
+        streams, m cp times one millikelvin."""
+        boundaries = np.abs(self.q_outside).sum() + np.abs(self.q_first).sum() + np.abs(self.q_last).sum()
+        enthalpy = abs(self.hz[-1].sum() - self.hz[0].sum())
+        trickle = 0.5 * float(np.abs(self._cp(self.tz[[0, -1]]) * self.mz[[0, -1]]).sum()) * ONE_MILLIKELVIN
+        parts = boundaries, np.abs(self.generated).sum(), np.abs(self.volume_heat).sum(), enthalpy, trickle
+        return float(max(*parts, 1e-300))
+
+    def error(self) -> float:
+        """Sum of absolute residuals over the heat scale."""
+        return float(np.abs(self.residual()).sum()) / self.scale()
+
+    def step(self) -> float:
+        """One correction of all temperatures; returns the normalised residual before it.
+
+        The factorisation is kept while it still serves: properties and flow change little from step to step.
+        """
+        before = self.error()
+        if self._lu is None or self._stale:
+            self._factorise()
+        change = self._lu.solve(self._r.ravel()).reshape(self.grid.shape)
+        self.t = self.t + change
+        after = self.error()
+        self._stale = after > SLOW * before and after > 1e-12
+        return after
+
+    def _factorise(self) -> None:
+        grid, c = self.grid, self._conduction
+        wz, wr = self.mz * self._cp(self.tz), self.mr * self._cp(self.tr)
+        size = 7 * grid.cells
+        rows, cols, vals = np.empty(size, np.int32), np.empty(size, np.int32), np.empty(size)
+        n = kernel.stencil(c.gz, c.gr, wz, wr, self._weights, self._g, self._loss, self._empty, rows, cols, vals)
+        matrix = coo_matrix((vals[:n], (rows[:n], cols[:n])), shape=(grid.cells, grid.cells)).tocsc()
+        self._lu = splu(matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.1, options={"SymmetricMode": True})
+        self._stale = False

@@ -1,0 +1,292 @@
+"""The velocity and pressure of one stream: SIMPLE-type iterations over the kernels of momentum and continuity.
+
+A stream is solved in coordinates of its own that run with it, so a stream along -z is the mirror image of one along +z
+to round-off. Pressure is the pressure in motion, zero at the outlet plane.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from axicfd.kernels import continuity, momentum
+from axicfd.kernels.momentum import FlowMesh, Viscosity
+from axicfd.mesh.grid import STREAM, Array, Grid
+
+RELAX_MOMENTUM = 0.92  # between 0.8 and 0.97 every case tried converges; the best value moves little with the mesh
+RELAX_SIMPLE = 0.7, 0.3  # momentum and pressure, if SIMPLEC is not wanted
+CORRECTION_DROP = 0.05  # the pressure correction is solved until its residual fell to this share
+CORRECTION_CYCLES = 8
+CLOSED = 1e-12  # share of the mass flow that may be missing in all cells together, before heat is carried by it
+CLOSING_PASSES = 6
+COARSEST = 4  # cells along z where the pressure multigrid stops
+
+
+def flow_mesh(grid: Grid, stream: str, mirrored: bool) -> FlowMesh:
+    """Geometry of the radial segment of `stream`, turned so that the stream runs towards +z."""
+    j0, j1 = grid.streams[stream]
+    z = grid.layout.length - grid.z[::-1] if mirrored else grid.z
+    fluid = (grid.kind[:, j0:j1] == STREAM).astype(float)
+    fluid = np.ascontiguousarray(fluid[::-1] if mirrored else fluid)
+    r = grid.r[j0 : j1 + 1]
+    nz, nr = fluid.shape
+    zc, rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
+    dz, dr = np.diff(z), np.diff(r)
+    area, ring = np.pi * np.diff(r**2), 2.0 * np.pi * r
+
+    dzu = np.empty(nz + 1)
+    dzu[1:nz], dzu[0], dzu[nz] = np.diff(zc), zc[0] - z[0], z[nz] - zc[-1]
+    drc = np.empty(nr + 1)
+    drc[1:nr], drc[0], drc[nr] = np.diff(rc), rc[0] - r[0], r[nr] - rc[-1]
+    gr = np.zeros(nr + 1)
+    gr[1:nr] = (r[1:nr] - rc[:-1]) / drc[1:nr]
+    gz = np.zeros(nz + 1)
+    gz[1:nz] = (z[1:nz] - zc[:-1]) / dzu[1:nz]
+    ratio = np.ones(nz)
+    ratio[1:] = dz[1:] / dz[:-1]
+    ratio_down = np.ones(nz)
+    ratio_down[:-1] = dz[:-1] / dz[1:]
+    dv_up, dv_down = np.zeros(nz + 1), np.zeros(nz + 1)
+    dv_up[2:nz] = (z[2:nz] - zc[1:-1]) / (zc[1:-1] - zc[:-2])
+    dv_down[1 : nz - 1] = (zc[1:-1] - z[1 : nz - 1]) / (zc[2:] - zc[1:-1])
+    area_v = np.zeros(nr + 1)
+    area_v[1:nr] = 0.5 * (area[1:] + area[:-1])
+
+    open_u = np.zeros((nz + 1, nr))
+    open_u[1:nz], open_u[nz] = fluid[1:] * fluid[:-1], fluid[-1]
+    open_v = np.zeros((nz, nr + 1))
+    open_v[:, 1:nr] = fluid[:, 1:] * fluid[:, :-1]
+
+    # where one side of a corner is solid, the wall stands half way between the two velocities
+    padded = np.vstack([fluid[:1], fluid, fluid[-1:]])
+    solid_u = padded[1:] + padded[:-1] == 0.0
+    dist_r = np.broadcast_to(drc, (nz + 1, nr + 1)).copy()
+    dist_r[:, 1:nr] = np.where(solid_u[:, 1:] & ~solid_u[:, :-1], r[1:nr] - rc[:-1], dist_r[:, 1:nr])
+    dist_r[:, 1:nr] = np.where(solid_u[:, :-1] & ~solid_u[:, 1:], rc[1:] - r[1:nr], dist_r[:, 1:nr])
+    padded = np.hstack([fluid[:, :1], fluid, fluid[:, -1:]])
+    solid_v = padded[:, 1:] + padded[:, :-1] == 0.0
+    dist_z = np.broadcast_to(dzu[:, None], (nz + 1, nr + 1)).copy()
+    face, before = z[1:nz, None], zc[:-1, None]
+    dist_z[1:nz] = np.where(solid_v[1:] & ~solid_v[:-1], face - before, dist_z[1:nz])
+    dist_z[1:nz] = np.where(solid_v[:-1] & ~solid_v[1:], zc[1:, None] - face, dist_z[1:nz])
+    gv_z = area_v[None, :] / dist_z
+    gv_z[nz] = 0.0  # dv/dz = 0 at the outlet
+
+    hoop = np.zeros((nz, nr + 1))
+    hoop[:, 1:nr] = 2.0 * np.pi * dz[:, None] * (drc[1:nr] / r[1:nr])[None, :]
+    return FlowMesh(
+        nz=nz,
+        nr=nr,
+        dz=dz,
+        dzu=dzu,
+        area=area,
+        ring=ring,
+        gr=gr,
+        gz=gz,
+        du_up=ratio,
+        du_down=ratio_down,
+        dv_up=dv_up,
+        dv_down=dv_down,
+        area_v=area_v,
+        drc=drc,
+        gu_z=area[None, :] / dz[:, None],
+        gu_r=ring[None, :] * dzu[:, None] / dist_r,
+        gv_z=gv_z,
+        gv_r=2.0 * np.pi * rc[None, :] * dz[:, None] / dr[None, :],
+        hoop=hoop,
+        open_u=open_u,
+        open_v=open_v,
+        open_p=fluid,
+    )
+
+
+@dataclass
+class _Level:
+    """One mesh of the pressure multigrid."""
+
+    cz: Array
+    cr: Array
+    b: Array
+    x: Array
+    open_p: Array
+    dist_z: Array
+    dist_r: Array
+    pair_r: int = 1
+    down: tuple = ()  # zi, zw, ri, rw: where the cells of this mesh lie among those of the next coarser one
+
+
+class PressureCorrection:
+    """Line multigrid for the pressure correction on the mesh of one stream."""
+
+    def __init__(self, mesh: FlowMesh):
+        z = np.concatenate([[0.0], np.cumsum(mesh.dz)])
+        r = np.concatenate([[0.0], np.cumsum(np.diff(mesh.ring) / (2 * np.pi))])
+        self.levels: list[_Level] = []
+        open_p = mesh.open_p
+        while True:
+            nz, nr = len(z) - 1, len(r) - 1
+            zc, rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
+            level = _Level(
+                np.zeros((nz + 1, nr)),
+                np.zeros((nz, nr + 1)),
+                np.zeros((nz, nr)),
+                np.zeros((nz, nr)),
+                open_p,
+                _distances(z, zc),
+                _distances(r, rc),
+            )
+            self.levels.append(level)
+            if nz <= COARSEST:
+                return
+            level.pair_r = 2 if nr % 2 == 0 and nr > 4 else 1
+            z = np.append(z[:-1:2], z[-1])
+            r = r[:: level.pair_r]
+            coarse_zc, coarse_rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
+            level.down = (*_neighbours(zc, coarse_zc), *_neighbours(rc, coarse_rc))
+            open_p = np.ones((len(z) - 1, len(r) - 1))
+
+    def solve(self, drop: float = CORRECTION_DROP, cycles: int = CORRECTION_CYCLES) -> Array:
+        """Solve the finest level's cz, cr, b to a share `drop` of the starting defect."""
+        for fine, coarse in zip(self.levels[:-1], self.levels[1:], strict=True):
+            continuity.coarsen(
+                fine.cz, fine.cr, fine.dist_z, coarse.dist_z, fine.pair_r, fine.dist_r, coarse.dist_r, coarse.cz, coarse.cr
+            )
+        top = self.levels[0]
+        top.x[...] = 0.0
+        start = np.abs(top.b).sum()
+        for _ in range(cycles):
+            if continuity.station_shift(top.cz, top.cr, top.b, top.x) <= drop * start:
+                break
+            self._cycle(0)
+        return top.x
+
+    def _cycle(self, k: int) -> None:
+        level = self.levels[k]
+        if k == len(self.levels) - 1:
+            for _ in range(4):
+                continuity.station_shift(level.cz, level.cr, level.b, level.x)
+                continuity.line_sweep(level.cz, level.cr, level.b, level.x, True)
+                continuity.line_sweep(level.cz, level.cr, level.b, level.x, False)
+            return
+        continuity.line_sweep(level.cz, level.cr, level.b, level.x, True)
+        coarse = self.levels[k + 1]
+        continuity.restrict_residual(level.cz, level.cr, level.b, level.x, level.pair_r, coarse.b)
+        coarse.x[...] = 0.0
+        self._cycle(k + 1)
+        continuity.prolong_add(coarse.x, *level.down, level.open_p, level.x)
+        continuity.line_sweep(level.cz, level.cr, level.b, level.x, False)
+
+
+def _distances(faces: Array, centres: Array) -> Array:
+    """Distance of the centres beside each face (half a cell at the ends)."""
+    return np.diff(np.concatenate([faces[:1], centres, faces[-1:]]))
+
+
+def _neighbours(fine: Array, coarse: Array) -> tuple[Array, Array]:
+    """For each fine centre the lower coarse neighbour and the weight of the upper one; constant beyond the ends."""
+    lower = np.clip(np.searchsorted(coarse, fine) - 1, 0, max(len(coarse) - 2, 0))
+    if len(coarse) == 1:
+        return lower, np.zeros(len(fine))
+    weight = (fine - coarse[lower]) / (coarse[lower + 1] - coarse[lower])
+    return lower, np.clip(weight, 0.0, 1.0)
+
+
+class Flow:
+    """Velocity and pressure of one stream on one mesh, and the iteration that solves them.
+
+    mesh      : geometry, in the stream's own direction
+    density   : [kg/m3], held at its inlet value
+    u_in      : (nr,) [m/s] axial velocity in the inlet plane
+    viscosity : refreshed by the caller as temperatures change
+    """
+
+    def __init__(self, mesh: FlowMesh, density: float, u_in: Array, viscosity: Viscosity, consistent: bool = True):
+        self.mesh, self.density, self.viscosity = mesh, density, viscosity
+        self.consistent = consistent
+        self.relax, self.relax_p = (RELAX_MOMENTUM, 1.0) if consistent else RELAX_SIMPLE
+        self.u = np.zeros((mesh.nz + 1, mesh.nr))
+        self.v = np.zeros((mesh.nz, mesh.nr + 1))
+        self.p = np.zeros((mesh.nz, mesh.nr))
+        self.u[0] = u_in * mesh.open_p[0]
+        self.mass_flow = float(density * (self.u[0] * mesh.area).sum())
+        sections = (mesh.open_u * mesh.area).sum(axis=1)
+        self.u[1:] = mesh.open_u[1:] * (self.mass_flow / density / sections[1:])[:, None]
+        self.mz, self.mr = np.zeros_like(self.u), np.zeros_like(self.v)
+        self._su, self._sv = np.zeros_like(self.u), np.zeros_like(self.v)
+        self._ru, self._rv = np.zeros_like(self.u), np.zeros_like(self.v)
+        self._du, self._dv = np.zeros_like(self.u), np.zeros_like(self.v)
+        self._correction = PressureCorrection(mesh)
+        self._refresh_mass()
+
+    def start_from(self, u: Array, v: Array, p: Array) -> None:
+        """Take fields carried over from another mesh; the inlet plane stays, and each section's flow is made exact."""
+        m = self.mesh
+        self.u[1:] = u[1:] * m.open_u[1:]
+        flow = self.density * (self.u * m.area).sum(axis=1)
+        sections = (m.open_u * m.area).sum(axis=1)
+        self.u[1:] += m.open_u[1:] * ((self.mass_flow - flow[1:]) / self.density / sections[1:])[:, None]
+        self.v[...] = v * m.open_v
+        self.p[...] = p * m.open_p
+        self._refresh_mass()
+
+    def step(self) -> None:
+        """One iteration: momentum with the present pressure, then the pressure correction."""
+        m, mu = self.mesh, self.viscosity
+        momentum.explicit_terms(m, mu, self.u, self.v, self.mz, self.mr, self._su, self._sv)
+        momentum.predict(
+            m,
+            mu,
+            self.u,
+            self.v,
+            self.p,
+            self.mz,
+            self.mr,
+            self._su,
+            self._sv,
+            self.relax,
+            1.0 if self.consistent else 0.0,
+            self._du,
+            self._dv,
+        )
+        self._refresh_mass()
+        top = self._correction.levels[0]
+        continuity.mass_defect(self.mz, self.mr, m.open_p, top.b)
+        continuity.coefficients(self.density, m.area, m.ring, m.dz, self._du, self._dv, top.cz, top.cr)
+        x = self._correction.solve()
+        continuity.correct(x, self._du, self._dv, m.open_p, self.relax_p, self.u, self.v, self.p)
+        self._refresh_mass()
+
+    def close_continuity(self) -> None:
+        """Correct the velocities until mass is conserved to round-off; the pressure is left as it is."""
+        m = self.mesh
+        top = self._correction.levels[0]
+        for _ in range(CLOSING_PASSES):
+            defect = continuity.mass_defect(self.mz, self.mr, m.open_p, top.b)
+            if defect <= CLOSED * self.mass_flow:
+                return
+            x = self._correction.solve(drop=1e-4, cycles=30)
+            continuity.correct(x, self._du, self._dv, m.open_p, 0.0, self.u, self.v, self.p)
+            self._refresh_mass()
+
+    def residual(self) -> float:
+        """Largest of the three normalised residuals: momenta over inlet momentum flux + wall friction, mass over flow."""
+        m, mu = self.mesh, self.viscosity
+        momentum.explicit_terms(m, mu, self.u, self.v, self.mz, self.mr, self._su, self._sv)
+        momentum.residuals(
+            m, mu, self.u, self.v, self.p, self.mz, self.mr, self._su, self._sv, self._ru, self._rv
+        )
+        scale = self.momentum_scale()
+        defect = continuity.mass_defect(self.mz, self.mr, m.open_p, np.empty_like(self.p))
+        parts = np.abs(self._ru).sum() / scale, np.abs(self._rv).sum() / scale, defect / abs(self.mass_flow)
+        return float(np.max(parts))
+
+    def momentum_scale(self) -> float:
+        """Inlet momentum flux plus total wall friction [N]."""
+        return float((self.mz[0] * self.u[0]).sum() + np.abs(self.wall_friction()).sum())
+
+    def wall_friction(self) -> Array:
+        """(nz + 1,) [N] friction of the outer wall on the control volume of u around each axial face."""
+        m = self.mesh
+        return self.viscosity.corner[:, m.nr] * m.gu_r[:, m.nr] * self.u[:, -1]
+
+    def _refresh_mass(self) -> None:
+        momentum.mass_fluxes(self.mesh, self.density, self.u, self.v, self.mz, self.mr)
