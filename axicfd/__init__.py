@@ -42,8 +42,18 @@ def __getattr__(name: str) -> Any:
     if home is None:
         raise AttributeError(f"module 'axicfd' has no attribute {name!r}")
     value = getattr(import_module(home), name)
+    if name in ("Result", "solve"):
+        _show_in_notebooks()
     globals()[name] = value
     return value
+
+
+def _show_in_notebooks() -> None:
+    """Let results show themselves: results lie below output and cannot reach up to it by themselves."""
+    from axicfd.output.notebook import html
+    from axicfd.results.result import Result
+
+    Result._repr_html_ = html  # type: ignore[attr-defined]
 
 
 def __dir__() -> list[str]:

@@ -6,7 +6,7 @@ from collections.abc import Iterator
 from typing import Any
 
 from axicfd import units
-from axicfd.cli.render import amount, number
+from axicfd.output.headline import amount, number
 from axicfd.output.shown import Shown
 
 COLUMNS = 72  # characters the tube's length takes

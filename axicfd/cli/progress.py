@@ -9,7 +9,7 @@ import sys
 import time
 from typing import Any, TextIO
 
-from axicfd.cli.render import amount
+from axicfd.output.headline import amount
 
 PLAIN_EVERY = 5.0  # seconds between plain lines within one mesh
 REWRITE_EVERY = 0.05  # seconds between two writes of the same line

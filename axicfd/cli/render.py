@@ -1,17 +1,17 @@
-"""How numbers, tables, the headline and cautions look on a terminal."""
+"""How tables, the answer and cautions look on a terminal."""
 
 from __future__ import annotations
 
 import sys
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Sequence
 from typing import Any
 
 from rich.console import Console
 from rich.table import Table
 from rich.text import Text
 
-from axicfd.glossary import Reported, quantity_name, summary_row
-from axicfd.output.shown import Shown, shown_units
+from axicfd.output.headline import amount, headline, number
+from axicfd.output.shown import shown_units
 
 PLAIN_WIDTH = 110  # columns where the output is no terminal
 CAUTIONS_SHOWN = 2  # the rest with --verbose
@@ -30,59 +30,12 @@ HURTS_ABOVE = 333.15  # K
 HURTS_BELOW = 263.15  # K
 HURTS_PRESSURE = 1.5e5  # Pa absolute
 
-# The headline quantities, in the order they are printed.
-STREAM_ROWS = (
-    "outlet_temperature_K",
-    "outlet_axis_temperature_K",
-    "outlet_wall_temperature_K",
-    "pressure_drop_Pa",
-    "heat_gain_W",
-    "hottest_wetted_wall_K",
-)
-LAYER_ROWS = ("hottest_K",)
-SECTION_ROWS = ("heat_in_W",)
-# With --verbose also these.
-MORE_STREAM_ROWS = (
-    "coldest_wetted_wall_K",
-    "hydrostatic_Pa",
-    "largest_wall_shear_stress_Pa",
-    "thermal_resistance_K_W",
-    "mean_residence_s",
-    "hydrodynamic_entry_length_m",
-    "thermal_entry_length_m",
-    "mass_flow_kg_s",
-    "mean_velocity_m_s",
-    "reynolds",
-    "largest_reynolds",
-    "prandtl",
-    "peclet",
-    "graetz",
-    "heated_length_m",
-)
-
 
 def console(stream: Any = None) -> Console:
     """A console that prints users' own words as they are: no markup, no guessing at what to colour."""
     out = sys.stdout if stream is None else stream
     width = None if out.isatty() else PLAIN_WIDTH
     return Console(file=out, width=width, markup=False, highlight=False, emoji=False, soft_wrap=False)
-
-
-def number(value: float, digits: int = 4) -> str:
-    """A number with so many significant digits, without an exponent where that is readable."""
-    if value == 0:
-        return "0"
-    if not 1e-3 <= abs(value) < 1e6:
-        return f"{value:.{digits - 1}e}"
-    rounded = float(f"{value:.{digits}g}")
-    return f"{rounded:.0f}" if abs(rounded) >= 10 ** (digits - 1) else f"{rounded:.{digits}g}"
-
-
-def amount(shown: Shown, kind: str, value: float, unit: str = "") -> str:
-    """A quantity as printed, with its unit: a temperature to a hundredth, the rest to four digits."""
-    in_unit = float(shown.value(kind, value))
-    text = f"{in_unit:.2f}" if kind == "temperature" else number(in_unit)
-    return f"{text} {shown.unit(kind) if kind else unit}".rstrip()
 
 
 def rows(
@@ -116,14 +69,14 @@ def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, wher
         *(["by hand"] if hand else []),
     ]
     body = []
-    for owner, path, row, value in headline(summary, verbose):
-        cells = [owner, row.label, _value_text(shown, row, value, path, summary)]
+    for line in headline(summary, shown, verbose):
+        cells = [line.owner, line.row.label, line.text]
         if bars:
-            cells.append(_bar_text(shown, row, path, summary))
-        cells.append(_place_text(shown, path, summary))
+            cells.append(line.bar)
+        cells.append(line.place)
         if hand:
-            estimate = hand.get(_dotted(path))
-            cells.append("" if estimate is None else amount(shown, row.kind, estimate, row.unit))
+            estimate = hand.get(line.name)
+            cells.append("" if estimate is None else amount(shown, line.row.kind, estimate, line.row.unit))
         body.append(cells)
     previous = ""
     for cells in body:  # the owner's name only where it changes
@@ -139,22 +92,6 @@ def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, wher
     if can_hurt(result):
         out.print(SAFETY)
     _print_effort(out, summary, where)
-
-
-def headline(summary: dict[str, Any], verbose: bool) -> Iterator[tuple[str, tuple[str, ...], Reported, Any]]:
-    """(owner, path in the tree, glossary row, value) of each printed quantity."""
-    stream_rows = STREAM_ROWS + MORE_STREAM_ROWS if verbose else STREAM_ROWS
-    for kind, keys in (
-        ("stream", stream_rows),
-        ("layer", LAYER_ROWS),
-        ("section", SECTION_ROWS),
-        ("sensor", ("temperature_K",)),
-    ):
-        for name, entries in (summary.get(kind) or {}).items():
-            owner = f"section {name}" if kind == "section" else f"sensor {name}" if kind == "sensor" else name
-            for key in keys:
-                if key in entries and (entries[key] is not None or verbose):
-                    yield owner, (kind, name, key), summary_row(key), entries[key]
 
 
 def print_cautions(out: Console, cautions: Sequence[dict[str, Any]], verbose: bool) -> None:
@@ -198,40 +135,6 @@ def _print_effort(out: Console, summary: dict[str, Any], where: str) -> None:
         f"{cells} cells, {summary['iterations']} iterations, residual {summary['residual']:.1e}, "
         f"{summary['seconds']:.1f} s; results in {where}"
     )
-
-
-def _value_text(
-    shown: Shown, row: Reported, value: Any, path: tuple[str, ...], summary: dict[str, Any]
-) -> str:
-    if value is None:
-        why = _entry(summary, (*path[:-1], "why", path[-1]))
-        return f"none ({why})" if why else "none"
-    return amount(shown, row.kind, value, row.unit)
-
-
-def _bar_text(shown: Shown, row: Reported, path: tuple[str, ...], summary: dict[str, Any]) -> str:
-    half = _entry(summary["numerical_uncertainty"], path)
-    if not isinstance(half, int | float):
-        return ""
-    return f"±{number(float(shown.difference(row.kind, half)), 2)} (mesh)"
-
-
-def _place_text(shown: Shown, path: tuple[str, ...], summary: dict[str, Any]) -> str:
-    """Where an extreme value was found: the entry of the same name with `_z_m`."""
-    z = _entry(summary, (*path[:-1], f"{quantity_name(path[-1])}_z_m"))
-    return f"at {amount(shown, 'length', z)}" if isinstance(z, int | float) else ""
-
-
-def _entry(tree: Any, path: Sequence[str]) -> Any:
-    for key in path:
-        if not isinstance(tree, dict) or key not in tree:
-            return None
-        tree = tree[key]
-    return tree
-
-
-def _dotted(path: tuple[str, ...]) -> str:
-    return ".".join((*path[:-1], quantity_name(path[-1])))
 
 
 def _fact(value: Any) -> str:

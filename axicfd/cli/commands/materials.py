@@ -20,6 +20,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(arguments: argparse.Namespace) -> int:
     from axicfd.cli import render
     from axicfd.materials.library import FLUIDS, SOLIDS
+    from axicfd.output.headline import number
 
     out = render.console()
     if arguments.name is None:
@@ -36,8 +37,7 @@ def run(arguments: argparse.Namespace) -> int:
     out.print(f"{arguments.name}: {_span(laws)}")
     header = ["temperature, degC", *(f"{name.replace('_', ' ')}, {UNITS[name]}" for name in laws)]
     body = [
-        [f"{T - 273.15:.1f}", *(render.number(float(law(T))) for law in laws.values())]
-        for T in _temperatures(laws)
+        [f"{T - 273.15:.1f}", *(number(float(law(T))) for law in laws.values())] for T in _temperatures(laws)
     ]
     render.rows(out, header, body, right=range(len(header)))
     out.print(f"source: {material.source}")

@@ -1,0 +1,128 @@
+"""The headline of a result: which quantities are shown, in which order, and how their numbers look."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from typing import Any
+
+from axicfd.glossary import Reported, quantity_name, summary_row
+from axicfd.output.shown import Shown
+
+STREAM_ROWS = (
+    "outlet_temperature_K",
+    "outlet_axis_temperature_K",
+    "outlet_wall_temperature_K",
+    "pressure_drop_Pa",
+    "heat_gain_W",
+    "hottest_wetted_wall_K",
+)
+MORE_STREAM_ROWS = (  # when everything is asked for
+    "coldest_wetted_wall_K",
+    "hydrostatic_Pa",
+    "largest_wall_shear_stress_Pa",
+    "thermal_resistance_K_W",
+    "mean_residence_s",
+    "hydrodynamic_entry_length_m",
+    "thermal_entry_length_m",
+    "mass_flow_kg_s",
+    "mean_velocity_m_s",
+    "reynolds",
+    "largest_reynolds",
+    "prandtl",
+    "peclet",
+    "graetz",
+    "heated_length_m",
+)
+LAYER_ROWS = ("hottest_K",)
+SECTION_ROWS = ("heat_in_W",)
+SENSOR_ROWS = ("temperature_K",)
+
+
+@dataclass(frozen=True)
+class Line:
+    """One shown quantity.
+
+    owner    : "syrup", "section jacket", "sensor far"
+    path     : keys in the summary's tree
+    row      : its row of the glossary
+    value    : SI value, or None
+    text     : the value with its unit, or why there is none
+    bar      : "±0.05 (mesh)", or "" where no mesh error is known
+    place    : "at 1.4 m" for an extreme value, or ""
+    """
+
+    owner: str
+    path: tuple[str, ...]
+    row: Reported
+    value: Any
+    text: str
+    bar: str
+    place: str
+
+    @property
+    def name(self) -> str:
+        """Dotted path without unit suffix, as users name quantities."""
+        return ".".join((*self.path[:-1], quantity_name(self.path[-1])))
+
+
+def headline(summary: dict[str, Any], shown: Shown, everything: bool = False) -> Iterator[Line]:
+    """The lines of the headline table; quantities without a value only when everything is asked for."""
+    stream_rows = STREAM_ROWS + MORE_STREAM_ROWS if everything else STREAM_ROWS
+    for kind, keys in (
+        ("stream", stream_rows),
+        ("layer", LAYER_ROWS),
+        ("section", SECTION_ROWS),
+        ("sensor", SENSOR_ROWS),
+    ):
+        for name, entries in (summary.get(kind) or {}).items():
+            owner = f"{kind} {name}" if kind in ("section", "sensor") else name
+            for key in keys:
+                if key in entries and (everything or _has_value(entries[key])):
+                    yield _line(summary, shown, owner, (kind, name, key), entries[key])
+
+
+def number(value: float, digits: int = 4) -> str:
+    """A number with so many significant digits, without an exponent where that is readable."""
+    if value == 0:
+        return "0"
+    if not 1e-3 <= abs(value) < 1e6:
+        return f"{value:.{digits - 1}e}"
+    rounded = float(f"{value:.{digits}g}")
+    return f"{rounded:.0f}" if abs(rounded) >= 10 ** (digits - 1) else f"{rounded:.{digits}g}"
+
+
+def amount(shown: Shown, kind: str, value: float, unit: str = "") -> str:
+    """A quantity as printed, with its unit: a temperature to a hundredth, the rest to four digits."""
+    in_unit = float(shown.value(kind, value))
+    text = f"{in_unit:.2f}" if kind == "temperature" else number(in_unit)
+    return f"{text} {shown.unit(kind) if kind else unit}".rstrip()
+
+
+def _line(summary: dict[str, Any], shown: Shown, owner: str, path: tuple[str, ...], value: Any) -> Line:
+    row = summary_row(path[-1])
+    if _has_value(value):
+        text = amount(shown, row.kind, value, row.unit)
+    else:
+        why = _entry(summary, (*path[:-1], "why", path[-1])) or _entry(
+            summary, (*path[:-1], "why", quantity_name(path[-1]))
+        )
+        text = f"none ({why})" if why else "none"
+    half = _entry(summary.get("numerical_uncertainty"), path)
+    bar = f"±{number(float(shown.difference(row.kind, half)), 2)} (mesh)" if _has_value(half) else ""
+    z = _entry(summary, (*path[:-1], f"{quantity_name(path[-1])}_z_m"))
+    place = f"at {amount(shown, 'length', z)}" if _has_value(z) else ""
+    return Line(owner, path, row, value, text, bar, place)
+
+
+def _has_value(value: Any) -> bool:
+    """Whether there is a number; nan stands for none inside a Result and becomes null in its file."""
+    return value is not None and value == value
+
+
+def _entry(tree: Any, path: Sequence[str]) -> Any:
+    for key in path:
+        if not isinstance(tree, dict) or key not in tree:
+            return None
+        tree = tree[key]
+    return tree
