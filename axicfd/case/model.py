@@ -34,7 +34,7 @@ from axicfd.materials.library import FLUIDS, SOLIDS
 
 Law = laws.Constant | laws.Table | laws.Exponential | laws.IdealGasDensity
 
-AXIS_GAS_DENSITY = 50.0  # kg/m3; an own fluid lighter than this at its inlet is taken as a gas (no liquid is, few gases reach it)
+GAS_BELOW_DENSITY = 50.0  # kg/m3; an own fluid lighter than this at its inlet is taken as a gas (no liquid is, few gases reach it)
 
 
 class Part(BaseModel):
@@ -133,16 +133,19 @@ class Profile(Key):
     example = '"flat"'
 
 
+_AGAINST_Z = 'Flow against z is direction = "-z".'
+
+
 class Stream(Part):
     """A moving fluid: what flows in, how much of it, how warm."""
 
     fluid: Annotated[str, Material("its fluid: a [fluid.NAME] of the case or a built-in one", sample="water")]
     inlet_temperature: Annotated[float, Quantity("temperature at which it comes in", "temperature")]
-    mass_flow: Annotated[float | None, Quantity("flow as mass per time", "mass_flow", at_least=0)] = None
+    mass_flow: Annotated[float | None, Quantity("flow as mass per time", "mass_flow", at_least=0, instead=_AGAINST_Z)] = None
     volume_flow: Annotated[
-        float | None, Quantity("flow as volume per time, at inlet temperature and outlet pressure", "volume_flow", at_least=0)
+        float | None, Quantity("flow as volume per time, at inlet temperature and outlet pressure", "volume_flow", at_least=0, instead=_AGAINST_Z)
     ] = None
-    mean_velocity: Annotated[float | None, Quantity("flow as mean velocity at the inlet", "velocity", at_least=0)] = None
+    mean_velocity: Annotated[float | None, Quantity("flow as mean velocity at the inlet", "velocity", at_least=0, instead=_AGAINST_Z)] = None
     reynolds: Annotated[float | None, Number("flow as Reynolds number of the bore at inlet state", at_least=0, sample=500)] = None
     inlet_profile: Annotated[
         str | FileProfile, Profile("shape of the velocity at the inlet: flat, developed, or from a file with r_m, velocity, temperature_K")
@@ -306,7 +309,10 @@ class Layer(Part):
     solid: Annotated[str | None, Material("its solid: a [solid.NAME] of the case or a built-in one", sample="copper")] = None
     void: Annotated[bool, Switch("a perfect insulator: no heat crosses it")] = False
     diameter: Annotated[float | None, Quantity("outer diameter of the layer on the axis (the bore)", "length", above=0)] = None
-    thickness: Annotated[float | None, Quantity("thickness of a layer that is not on the axis", "length", above=0)] = None
+    thickness: Annotated[float | None, Quantity(
+            "thickness of a layer that is not on the axis", "length", above=0,
+            instead="Give the thickness of this layer alone, or its `outer_diameter`.",
+        ),] = None
     outer_diameter: Annotated[float | None, Quantity("outer diameter, instead of the thickness", "length", above=0)] = None
     contact_resistance: Annotated[
         float | None, Quantity("thermal resistance at its inner face, fouling on a wetted face too", "contact_resistance", at_least=0)
@@ -566,6 +572,8 @@ class Case(Part):
     def __repr__(self) -> str:
         return f"<Case {self.title!r}: {', '.join(section.name for section in self.section)}>"
 
+    __str__ = __repr__
+
     def replace(self, changes: Mapping[str, Any]) -> Case:
         """A new case with other values: {"stream.oil.mass_flow": 0.004, "layer.tube.thickness": "2 mm"}.
 
@@ -606,7 +614,7 @@ class Case(Part):
                 "refuse", built_in.is_gas, built_in.source,
             )  # fmt: skip
         four = (own.density, own.specific_heat, own.conductivity, own.viscosity)
-        is_gas = float(own.density(used.inlet_temperature)) < AXIS_GAS_DENSITY
+        is_gas = float(own.density(used.inlet_temperature)) < GAS_BELOW_DENSITY
         if own.outside_range == "extend":
             four = tuple(law.extended() for law in four)  # type: ignore[assignment]
         return UsedFluid(name, *four, own.outside_range, is_gas, "given in the case")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import re
 import tomllib
 import typing
 from collections.abc import Mapping
@@ -102,6 +103,7 @@ def _syntax_mistake(file: str | None, text: str, why: str) -> Mistake:
     elif "(at end of document)" in why:
         why = why.replace(" (at end of document)", "")
         line = len(text.splitlines())
+    why = re.sub(r"\(([^()]*?),?\)", lambda names: names[1].replace("', '", ".").replace("'", "`"), why)
     read = text.splitlines()[line - 1].strip() if line and line <= len(text.splitlines()) else ""
     instead = ""
     after = read.partition("=")[2].strip()
@@ -167,6 +169,9 @@ def as_input_error(found: ValidationError, tree: Any, source: Source, others: li
             mistakes.append(_unknown(tree, place, value, part, source))
         else:
             mistakes.append(_wrong_shape(tree, place, value, source))
+    # keys right under [stream], where a name is missing, are one mistake and not many
+    nameless = {_NAMELESS: mistake for mistake in reversed(mistakes) if mistake.allowed == _NAMELESS}
+    mistakes = [mistake for mistake in mistakes if mistake.allowed != _NAMELESS] + list(nameless.values())
     unique = {(mistake.line, mistake.key, mistake.allowed): mistake for mistake in mistakes}
     return InputError(unique.values())
 
@@ -251,12 +256,19 @@ def _unknown(tree: Any, place: Place, value: Any, part: type[Part] | None, sourc
     near = keys.nearest(name, known)
     if near:
         return source.mistake(tree, place, value, "is not a known key", f"Write `{near}`.")
+    above = keys.nearest(name, [top for top in Case.model_fields if declared(Case, top)])
+    if above and place[:-1] and not isinstance(value, dict):
+        return source.mistake(
+            tree, place, value, f"is not a key of {table}", f"If `{above}` is meant, move it above the first [table]."
+        )
     home = _home_of(name)
     if home:
         return source.mistake(tree, place, value, f"is not a key of {table}", f"It belongs into {home}.")
     listed = ", ".join(part.model_fields) if part else ""
     return source.mistake(tree, place, value, "is not a known key", f"Known here: {listed}." if listed else "")
 
+
+_NAMELESS = "must be a table with a name"
 
 _HOMES = {
     "stream": "[stream.NAME]", "fluid": "[fluid.NAME]", "solid": "[solid.NAME]", "layer": "[[layer]]", "section": "[[section]]",
@@ -289,7 +301,7 @@ def _wrong_shape(tree: Any, place: Place, value: Any, source: Source) -> Mistake
         name = ".".join(str(step) for step in place if isinstance(step, str))
         return source.mistake(tree, place, value, "must be a list of tables", f"Write [[{name}]] above each one.")
     if first in ("stream", "fluid", "solid", "sensor") and len(place) <= 2:
-        return source.mistake(tree, place, value, "must be a table with a name", f"Write [{first}.NAME] above its keys.")
+        return source.mistake(tree, place, value, _NAMELESS, f"Write [{first}.NAME] above its keys.")
     if "outside" in place or first == "ends":
         return source.mistake(tree, place, value, "must be a table", "Write it in braces: { insulated = true }.")
     return source.mistake(tree, place, value, "must be a table", f"Write [{first}] above its keys." if first else "")
