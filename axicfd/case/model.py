@@ -293,6 +293,19 @@ class UsedSolid:
         return _common_span(self.conductivity_r, self.conductivity_z)
 
 
+def _continued_down(law: Law) -> Law:
+    """A built-in solid's table that begins at 300 K, as handbook tables do, continued straight to 240 K.
+
+    Otherwise a tube at 20 degC would leave it. Near 300 K such conductivities are straight lines to a few per cent
+    (common practice, no source).
+    """
+    low, begins = 240.0, 300.0
+    if not isinstance(law, laws.Table) or law.temperature[0] != begins:
+        return law
+    (T0, T1), (k0, k1) = law.temperature[:2], law.value[:2]
+    return laws.Table((low, *law.temperature), (k0 + (k1 - k0) * (low - T0) / (T1 - T0), *law.value), law.logarithmic)
+
+
 def _common_span(*of: Law) -> tuple[float, float]:
     spans = [law.span for law in of]
     return max(span[0] for span in spans), min(span[1] for span in spans)
@@ -624,8 +637,9 @@ class Case(Part):
         own = self.solid.get(name)
         if own is None:
             built_in = SOLIDS[name]
+            conductivity = _continued_down(built_in.conductivity)
             return UsedSolid(
-                name, built_in.conductivity, built_in.conductivity, built_in.density, built_in.specific_heat, "refuse", built_in.source
+                name, conductivity, conductivity, built_in.density, built_in.specific_heat, "refuse", built_in.source
             )
         across, along = (own.conductivity.r, own.conductivity.z) if isinstance(own.conductivity, AlongAcross) else (own.conductivity,) * 2
         if own.outside_range == "extend":
