@@ -1,8 +1,8 @@
 """Quantities as text and back: "12 mm" <-> 0.012. Units are met here and nowhere deeper.
 
-The number and the unit are split here and only the unit reaches the unit library: given the whole string it reads
-"50 W/m^2/degC" as an offset temperature, hangs on "10**10**10 m" and evaluates more than a unit. Whether a temperature
-is absolute or a difference is decided by the kind that is asked for, never guessed from the text.
+The number and the unit are split here and only the unit reaches the unit library: given the whole string it
+reads "50 W/m^2/degC" as an offset temperature, hangs on "10**10**10 m" and evaluates more than a unit.
+Whether a temperature is absolute or a difference is decided by the kind asked for, never guessed from the text.
 """
 
 from __future__ import annotations
@@ -18,7 +18,7 @@ from typing import Any
 
 @dataclass(frozen=True)
 class Kind:
-    """A kind of quantity: its name in a sentence, its SI unit, and spellings to offer (the first as the example)."""
+    """A kind of quantity: its name in a sentence, its SI unit, an example, and spellings to offer."""
 
     words: str
     si: str
@@ -31,7 +31,9 @@ KINDS = {
     "temperature": Kind("a temperature", "K", "20 degC", ("degC", "K", "degF")),
     "temperature_difference": Kind("a temperature difference", "K", "0.1 K", ("K",)),
     "mass_flow": Kind("a mass flow", "kg/s", "4 g/s", ("kg/s", "g/s", "g/min", "kg/h", "lb/h")),
-    "volume_flow": Kind("a volume flow", "m^3/s", "100 mL/min", ("mL/min", "L/min", "L/h", "m^3/h", "uL/min")),
+    "volume_flow": Kind(
+        "a volume flow", "m^3/s", "100 mL/min", ("mL/min", "L/min", "L/h", "m^3/h", "uL/min")
+    ),
     "velocity": Kind("a velocity", "m/s", "0.1 m/s", ("m/s", "mm/s", "ft/s")),
     "pressure": Kind("an absolute pressure", "Pa", "1 atm", ("Pa", "kPa", "bar", "atm", "psi")),
     "density": Kind("a density", "kg/m^3", "998 kg/m^3", ("kg/m^3", "g/cm^3", "kg/L")),
@@ -43,13 +45,15 @@ KINDS = {
     "heat_per_length": Kind("a heat rate per length", "W/m", "20 W/m", ("W/m", "W/cm", "W/ft")),
     "film_coefficient": Kind("a film coefficient", "W/m^2/K", "900 W/m^2/K", ("W/m^2/K", "kW/m^2/K")),
     "contact_resistance": Kind("a contact resistance", "m^2 K/W", "1e-4 m^2 K/W", ("m^2 K/W", "cm^2 K/W")),
-    "heat_per_volume": Kind("a heat rate per volume", "W/m^3", "2 MW/m^3", ("W/m^3", "kW/m^3", "MW/m^3", "W/cm^3")),
+    "heat_per_volume": Kind(
+        "a heat rate per volume", "W/m^3", "2 MW/m^3", ("W/m^3", "kW/m^3", "MW/m^3", "W/cm^3")
+    ),
     "per_kelvin": Kind("an exponent per kelvin", "1/K", "0.05 1/K", ("1/K",)),
 }
 
 
 class UnitError(ValueError):
-    """Text that is not the quantity asked for. `allowed` ends the sentence about it, `instead` says what to write."""
+    """Text that is not the quantity asked for; `allowed` ends the sentence, `instead` says what to write."""
 
     def __init__(self, allowed: str, instead: str = "", looks_like: tuple[str, ...] = ()) -> None:
         self.allowed = allowed
@@ -73,7 +77,9 @@ def split(text: str) -> tuple[float, str]:
         raise UnitError("must be a number with a unit")
     rest = text[found.end() :].strip()
     if re.match(r"[,']\d", rest):
-        raise UnitError("has no plain number", f'Write "{re.sub(r"[,]", ".", text, count=1)}": a point, no comma.')
+        raise UnitError(
+            "has no plain number", f'Write "{re.sub(r"[,]", ".", text, count=1)}": a point, no comma.'
+        )
     number = float(found.group(1))
     if not math.isfinite(number):
         raise UnitError("must be a finite number with a unit")
@@ -81,14 +87,17 @@ def split(text: str) -> tuple[float, str]:
 
 
 def parse(text: str, kind: str) -> float:
-    """The SI value of a quantity: parse("12 mm", "length") -> 0.012, parse("20 degC", "temperature") -> 293.15.
+    """The SI value of a quantity: parse("12 mm", "length") -> 0.012; "20 degC" as "temperature" -> 293.15.
 
     kind : a key of `KINDS`
     Raises `UnitError` for text without a number, without a unit, or with a unit of another kind.
     """
     number, unit = split(text)
     if not unit:
-        raise UnitError(f"has no unit; it must be {_with_example(kind)}", f'Write "{text.strip()} {_first_unit(kind)}" if that is meant.')
+        raise UnitError(
+            f"has no unit; it must be {_with_example(kind)}",
+            f'Write "{text.strip()} {_first_unit(kind)}" if that is meant.',
+        )
     factor, offset = _to_si(unit, kind, number)
     value = (number + offset) * factor
     if not math.isfinite(value):
@@ -100,7 +109,7 @@ def from_si(value: float, unit: str, kind: str) -> float:
     """The number that stands before `unit`: from_si(293.15, "degC", "temperature") -> 20.0."""
     factor, offset = _to_si(unit, kind, value)
     number = value / factor - offset
-    # 293.15 K less 273.15 K leaves 20.000000000000057: fewer digits are as true where they lead back to the same value
+    # 293.15 K less 273.15 K leaves 20.000000000000057: fewer digits are as true if they lead back
     return _shortest(number, lambda shorter: (shorter + offset) * factor == value)
 
 
@@ -148,7 +157,7 @@ def _registry() -> Any:
 
 
 def _checked(unit: str) -> str | None:
-    """The unit in the one spelling handed on, or None where it is not a plain product of powers of unit names."""
+    """The unit in the one spelling handed on, or None where it is no plain product of powers of names."""
     text = unit.translate(_SUPERSCRIPTS)
     if len(text) > 40:
         return None
@@ -190,19 +199,29 @@ def _checked(unit: str) -> str | None:
 
 @lru_cache(maxsize=1024)
 def _scale(unit: str, kind: str) -> tuple[float, float] | None:
-    """(factor, offset) with SI value = (number + offset) * factor, or None where the unit is not of this kind."""
+    """(factor, offset) with SI value = (number + offset) * factor, or None for a unit of another kind."""
     spelling = _checked(unit)
     if spelling is None:
         return None
     if kind == "temperature":
-        known = {"K": (1.0, 0.0), "kelvin": (1.0, 0.0), "degR": (5 / 9, 0.0), "degF": (5 / 9, 459.67), "°F": (5 / 9, 459.67)}
-        known |= {name: (1.0, 273.15) for name in ("degC", "°C", "celsius", "degree_Celsius")} | {"mK": (1e-3, 0.0)}
+        known = {
+            "K": (1.0, 0.0),
+            "kelvin": (1.0, 0.0),
+            "degR": (5 / 9, 0.0),
+            "degF": (5 / 9, 459.67),
+            "°F": (5 / 9, 459.67),
+        }
+        known |= dict.fromkeys(("degC", "°C", "celsius", "degree_Celsius"), (1.0, 273.15)) | {
+            "mK": (1e-3, 0.0)
+        }
         return known.get(spelling)
     if re.search(r"(?<![A-Za-z])(g_0|delta_|dB)", spelling):
         return None
     try:
         units = _registry()
-        quantity = units.Quantity(1.0, units.parse_units(spelling, as_delta=True)).to(units.parse_units(KINDS[kind].si.replace(" ", "*")))
+        quantity = units.Quantity(1.0, units.parse_units(spelling, as_delta=True)).to(
+            units.parse_units(KINDS[kind].si.replace(" ", "*"))
+        )
     except Exception:  # the library raises a dozen kinds of error, some of them bare assertions
         return None
     factor = float(quantity.magnitude)
@@ -217,13 +236,51 @@ def _to_si(unit: str, kind: str, number: float) -> tuple[float, float]:
 
 
 # What a hurried hand writes, and what it means. Left out on purpose: anything with two meanings.
-_GAUGE = {"barg": "bar", "bar g": "bar", "bar(g)": "bar", "bar (g)": "bar", "bar gauge": "bar", "psig": "psi", "psi g": "psi",
-          "kPag": "kPa", "kPa g": "kPa", "kPa(g)": "kPa", "mbarg": "mbar"}  # fmt: skip
-_SPELLINGS = {"gpm": "gal/min", "lpm": "L/min", "LPM": "L/min", "cc/min": "mL/min", "ccm": "mL/min", "bara": "bar", "bar a": "bar",
-              "bar(a)": "bar", "psia": "psi", "C": "degC", "F": "degF", "deg C": "degC", "deg F": "degF", "Celsius": "degC",
-              "° C": "degC", "Pas": "Pa s", "Pa.s": "Pa s", "mPas": "mPa s", "mPa.s": "mPa s", "Pa-s": "Pa s", "inch": "in", '"': "in",
-              "mm.": "mm", "Kelvin": "K", "kelvins": "K", "deg": "degC", "degrees": "degC", "centigrade": "degC", "Watt": "W",
-              "microns": "um"}  # fmt: skip
+_GAUGE = {
+    "barg": "bar",
+    "bar g": "bar",
+    "bar(g)": "bar",
+    "bar (g)": "bar",
+    "bar gauge": "bar",
+    "psig": "psi",
+    "psi g": "psi",
+    "kPag": "kPa",
+    "kPa g": "kPa",
+    "kPa(g)": "kPa",
+    "mbarg": "mbar",
+}
+_SPELLINGS = {
+    "gpm": "gal/min",
+    "lpm": "L/min",
+    "LPM": "L/min",
+    "cc/min": "mL/min",
+    "ccm": "mL/min",
+    "bara": "bar",
+    "bar a": "bar",
+    "bar(a)": "bar",
+    "psia": "psi",
+    "C": "degC",
+    "F": "degF",
+    "deg C": "degC",
+    "deg F": "degF",
+    "Celsius": "degC",
+    "° C": "degC",
+    "Pas": "Pa s",
+    "Pa.s": "Pa s",
+    "mPas": "mPa s",
+    "mPa.s": "mPa s",
+    "Pa-s": "Pa s",
+    "inch": "in",
+    '"': "in",
+    "mm.": "mm",
+    "Kelvin": "K",
+    "kelvins": "K",
+    "deg": "degC",
+    "degrees": "degC",
+    "centigrade": "degC",
+    "Watt": "W",
+    "microns": "um",
+}
 _STANDARD_FLOWS = ("sccm", "slpm", "slm", "scfm", "nl/min", "nlpm", "nml/min", "sl/min")
 
 
@@ -237,7 +294,9 @@ def _candidates(unit: str) -> Iterator[str]:
         head, slash, tail = text.partition("/")
         if slash:
             tail = re.sub(r"[()]", "", tail)
-            apart = re.sub(r"(\^\d|(?<=m)|(?<=kg)|(?<=g))\s*[.·* -]?\s*(?=(?:K|degC|C|°C)\b)", r"\1/", tail)  # m^2K, mK, kg K
+            apart = re.sub(
+                r"(\^\d|(?<=m)|(?<=kg)|(?<=g))\s*[.·* -]?\s*(?=(?:K|degC|C|°C)\b)", r"\1/", tail
+            )  # m^2K, mK, kg K
             apart = re.sub(r"/{2,}", "/", apart)
             yield f"{head}/{apart}"
             yield f"{head}/" + re.sub(r"\s+", "/", tail.strip())
@@ -255,19 +314,34 @@ def _mended(unit: str, kind: str, number: float) -> UnitError:
     shown = _plain(number)
     if kind == "pressure" and unit in _GAUGE:
         absolute = number + {"bar": 1.01325, "psi": 14.696, "kPa": 101.325, "mbar": 1013.25}[_GAUGE[unit]]
-        return UnitError("must be an absolute pressure; this is a gauge pressure", f'Write "{absolute:.4g} {_GAUGE[unit]}".')
+        return UnitError(
+            "must be an absolute pressure; this is a gauge pressure",
+            f'Write "{absolute:.4g} {_GAUGE[unit]}".',
+        )
     if unit.lower() in _STANDARD_FLOWS:
-        return UnitError(f"must be {words}", "A flow at a standard state is not available yet: convert it to a mass flow.")
+        return UnitError(
+            f"must be {words}", "A flow at a standard state is not available yet: convert it to a mass flow."
+        )
     for other in _candidates(unit):
         if other != unit and _scale(other, kind) is not None:
-            return UnitError(f'has the unit "{unit}", which does not read as {KINDS[kind].words}', f'Write "{shown} {other}".')
+            return UnitError(
+                f'has the unit "{unit}", which does not read as {KINDS[kind].words}',
+                f'Write "{shown} {other}".',
+            )
     if kind == "viscosity" and _factor_in(unit, "m^2/s"):
         return UnitError(f"must be {words}; this is a kinematic viscosity", "Multiply it by the density.")
     alike = tuple(name for name in KINDS if name != kind and _scale(unit, name) is not None)
     if alike:
-        return UnitError(f'must be {words}; "{unit}" is a unit of {KINDS[alike[0]].words.split(" ", 1)[1]}', f"Write it in {_listed(kind)}.", alike)
+        return UnitError(
+            f'must be {words}; "{unit}" is a unit of {KINDS[alike[0]].words.split(" ", 1)[1]}',
+            f"Write it in {_listed(kind)}.",
+            alike,
+        )
     near = difflib.get_close_matches(unit, KINDS[kind].others, 1, 0.6)
-    return UnitError(f'has the unknown or unfit unit "{unit}"; it must be {words}', f'Write "{shown} {near[0]}".' if near else f"Write it in {_listed(kind)}.")
+    return UnitError(
+        f'has the unknown or unfit unit "{unit}"; it must be {words}',
+        f'Write "{shown} {near[0]}".' if near else f"Write it in {_listed(kind)}.",
+    )
 
 
 def _listed(kind: str) -> str:

@@ -1,1 +1,1 @@
-"""What the engineer asked for, in words and numbers: read, checked, changed and written. Knows nothing of cells."""
+"""What the engineer asked for, in words and numbers: read, checked, changed and written; no cells here."""

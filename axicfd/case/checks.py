@@ -1,5 +1,7 @@
-"""Contradictions between keys. `presence` judges what stands beside what in the tables as written, so that its findings
-come together with those of single values; `contradictions` judges the values of a case whose keys are all readable.
+"""Contradictions between keys.
+
+`presence` judges what stands beside what in the tables as written, so that its findings come together with
+those of single values; `contradictions` judges the values of a case whose keys are all readable.
 """
 
 from __future__ import annotations
@@ -42,7 +44,7 @@ class _Findings:
 
 
 def presence(tree: Any, source: Source) -> list[Mistake]:
-    """What must stand together, or must not, in the tables of a case. Values of a wrong shape are passed over here."""
+    """What must stand together, or must not, in the tables of a case. Passes over values of a wrong shape."""
     found = _Findings(tree, source)
     if not isinstance(tree, dict):
         return []
@@ -50,28 +52,64 @@ def presence(tree: Any, source: Source) -> list[Mistake]:
         _names(found, kind, _table(tree.get(kind)))
     for name, stream in _tables(tree.get("stream")):
         _one_flow(found, ("stream", name), stream)
+        _known(found, ("stream", name, "fluid"), stream.get("fluid"), _table(tree.get("fluid")), FLUIDS)
+    if isinstance(tree.get("stream"), dict):
+        for name in [name for name, _ in _tables(tree["stream"])][1:]:
+            found.add(
+                ("stream", name),
+                None,
+                "is a second stream: several streams are not available yet",
+                "Keep one [stream.NAME].",
+            )
+        if not tree["stream"]:
+            found.add(
+                ("stream",),
+                None,
+                "is empty",
+                "Write a table [stream.NAME] with its fluid, inlet temperature and flow.",
+            )
     _stack(found, ("layer",), tree.get("layer"))
     sections = tree.get("section")
     if isinstance(sections, list):
         if not sections:
-            found.add(("section",), None, "is empty", "Write at least one [[section]] with `length` and `outside`.")
+            found.add(
+                ("section",), None, "is empty", "Write at least one [[section]] with `length` and `outside`."
+            )
         for i, section in enumerate(sections):
             if not isinstance(section, dict):
                 continue
             _stack(found, ("section", i, "layer"), section.get("layer"))
             if not section.get("layer") and not tree.get("layer"):
                 found.add(
-                    ("section", i), None, "has no layers", "Write [[layer]] tables for all sections, or [[section.layer]] in this one."
+                    ("section", i),
+                    None,
+                    "has no layers",
+                    "Write [[layer]] tables for all sections, or [[section.layer]] in this one.",
                 )
             _condition(found, ("section", i, "outside"), section.get("outside"))
+            _generation(
+                found,
+                ("section", i, "generated"),
+                section.get("generated"),
+                section.get("layer", tree.get("layer")),
+            )
         _unique_names(found, sections)
     ends = _table(tree.get("ends"))
     for end in ("first", "last"):
         faces = ends.get(end)
         if not isinstance(faces, dict):
             continue
-        for face, condition in faces.items() if any(isinstance(value, dict) for value in faces.values()) else [(None, faces)]:
+        for face, condition in (
+            faces.items() if any(isinstance(value, dict) for value in faces.values()) else [(None, faces)]
+        ):
             _condition(found, ("ends", end, face) if face else ("ends", end), condition)
+        if (
+            isinstance(sections, list)
+            and sections
+            and isinstance(sections[0 if end == "first" else -1], dict)
+        ):
+            section = sections[0 if end == "first" else -1]
+            _end_names(found, ("ends", end), faces, section.get("layer", tree.get("layer")))
     return found.mistakes
 
 
@@ -92,7 +130,12 @@ def _names(found: _Findings, kind: str, named: dict) -> None:
             found.add((kind, name), None, "must have a name of letters, digits, spaces, - and _")
         twin = as_file_name.setdefault(name.replace(" ", "-"), name)
         if twin != name:
-            found.add((kind, name), None, f'is called the same as "{twin}" once spaces become -', "Give it another name.")
+            found.add(
+                (kind, name),
+                None,
+                f'is called the same as "{twin}" once spaces become -',
+                "Give it another name.",
+            )
 
 
 def _one_flow(found: _Findings, place: Place, stream: dict) -> None:
@@ -100,12 +143,19 @@ def _one_flow(found: _Findings, place: Place, stream: dict) -> None:
     later = [flow for flow in ("pressure_drop", "standard_volume_flow") if flow in stream]
     if not given and not later:
         listed = ", ".join(Stream.FLOWS)
-        found.add(place, None, f"needs its flow: exactly one of {listed}", 'Write mass_flow = "4 g/s"; zero is allowed.')
+        found.add(
+            place,
+            None,
+            f"needs its flow: exactly one of {listed}",
+            'Write mass_flow = "4 g/s"; zero is allowed.',
+        )
     for extra in given[1:]:
         found.add(
-            (*place, extra), stream[extra], f"stands beside `{given[0]}`: the flow is given by exactly one of {', '.join(Stream.FLOWS)}",
+            (*place, extra),
+            stream[extra],
+            f"stands beside `{given[0]}`: the flow is given by exactly one of {', '.join(Stream.FLOWS)}",
             "Keep the one that is known, take the other out.",
-        )  # fmt: skip
+        )
 
 
 def _stack(found: _Findings, place: Place, layers: Any) -> None:
@@ -120,19 +170,80 @@ def _stack(found: _Findings, place: Place, layers: Any) -> None:
         here = (*place, i)
         given = [what for what in ("stream", "solid", "void") if layer.get(what)]
         if not given and "gas_gap" not in layer:
-            found.add(here, None, "is a layer of nothing", 'Write exactly one of stream = "NAME", solid = "NAME", void = true.')
+            found.add(
+                here,
+                None,
+                "is a layer of nothing",
+                'Write exactly one of stream = "NAME", solid = "NAME", void = true.',
+            )
         for extra in given[1:]:
-            found.add((*here, extra), layer[extra], f"stands beside `{given[0]}`: a layer is exactly one of stream, solid, void")
+            found.add(
+                (*here, extra),
+                layer[extra],
+                f"stands beside `{given[0]}`: a layer is exactly one of stream, solid, void",
+            )
+        _known(found, (*here, "solid"), layer.get("solid"), _table(found.tree.get("solid")), SOLIDS)
+        _stream_in_place(found, here, layer, on_axis=i == 0)
         _size(found, here, layer, on_axis=i == 0)
         if i == 0 and "contact_resistance" in layer:
             found.add(
-                (*here, "contact_resistance"), layer["contact_resistance"], "sits at a layer's inner face, and the layer on the axis has none",
+                (*here, "contact_resistance"),
+                layer["contact_resistance"],
+                "sits at a layer's inner face, and the layer on the axis has none",
                 "Give it to the next layer outward.",
-            )  # fmt: skip
+            )
         name = layer_name(layer)
         if name in names:
-            found.add(here, None, f'is called "{name}" like a layer before it in the same stack', 'Give each its own name = "...".')
+            found.add(
+                here,
+                None,
+                f'is called "{name}" like a layer before it in the same stack',
+                'Give each its own name = "...".',
+            )
         names.add(name)
+
+
+def _known(found: _Findings, place: Place, name: Any, own: Mapping, built_in: Mapping) -> None:
+    """A fluid or solid must be the user's own or built in."""
+    if not isinstance(name, str) or name in own or name in built_in:
+        return
+    kind = str(place[-1])
+    near = keys.nearest(name, [*own, *built_in])
+    begins = [other for other in built_in if name and other.startswith(name)]
+    if begins:
+        instead = "Write " + " or ".join(f'"{other}"' for other in begins) + "."
+    elif near:
+        instead = f'Write "{near}".'
+    else:
+        listed = ", ".join([*own, *built_in])
+        instead = f"Write a [{kind}.{keys.toml_key(name)}] with its properties, or one of: {listed}."
+    found.add(place, name, f"is neither a [{kind}] of the case nor built in", instead)
+
+
+def _stream_in_place(found: _Findings, place: Place, layer: dict, on_axis: bool) -> None:
+    streams = [name for name, _ in _tables(found.tree.get("stream"))]
+    name = layer.get("stream")
+    if isinstance(name, str) and name not in streams:
+        near = keys.nearest(name, streams)
+        listed = f"There is: {', '.join(streams)}." if streams else "Write its table [stream.NAME]."
+        found.add(
+            (*place, "stream"), name, "is not a [stream] of the case", f'Write "{near}".' if near else listed
+        )
+    elif isinstance(name, str) and not on_axis:
+        found.add(
+            (*place, "stream"),
+            name,
+            "flows around another layer: rods, annuli and several streams are not available yet",
+            "Put the stream on the axis, as the first layer.",
+        )
+    elif on_axis and name is None and (layer.get("solid") or layer.get("void")):
+        found.add(
+            place,
+            None,
+            "begins a stack that has no stream on the axis: rods, annuli and tubes without a stream "
+            "are not available yet",
+            f'Begin the stack with stream = "{streams[0] if streams else "NAME"}".',
+        )
 
 
 def _size(found: _Findings, place: Place, layer: dict, on_axis: bool) -> None:
@@ -140,16 +251,32 @@ def _size(found: _Findings, place: Place, layer: dict, on_axis: bool) -> None:
         for other in ("thickness", "outer_diameter"):
             if other in layer:
                 found.add(
-                    (*place, other), layer[other], "is not for the layer on the axis, which is given by its diameter",
-                    "Write the bore as `diameter`." if other == "outer_diameter" else "Write `diameter`: twice this, if it was meant as a radius.",
-                )  # fmt: skip
+                    (*place, other),
+                    layer[other],
+                    "is not for the layer on the axis, which is given by its diameter",
+                    "Write the bore as `diameter`."
+                    if other == "outer_diameter"
+                    else "Write `diameter`: twice this, if it was meant as a radius.",
+                )
         if not {"diameter", "thickness", "outer_diameter"} & set(layer):
-            found.add(place, None, "has no diameter", 'The layer on the axis needs one: write diameter = "12 mm".')
+            found.add(
+                place, None, "has no diameter", 'The layer on the axis needs one: write diameter = "12 mm".'
+            )
         return
     if "diameter" in layer:
-        found.add((*place, "diameter"), layer["diameter"], "is only for the layer on the axis", "Write `thickness` or `outer_diameter`.")
+        found.add(
+            (*place, "diameter"),
+            layer["diameter"],
+            "is only for the layer on the axis",
+            "Write `thickness` or `outer_diameter`.",
+        )
     elif "thickness" in layer and "outer_diameter" in layer:
-        found.add((*place, "outer_diameter"), layer["outer_diameter"], "stands beside `thickness`", "Keep one of the two.")
+        found.add(
+            (*place, "outer_diameter"),
+            layer["outer_diameter"],
+            "stands beside `thickness`",
+            "Keep one of the two.",
+        )
     elif "thickness" not in layer and "outer_diameter" not in layer:
         found.add(place, None, "has no thickness", 'Write thickness = "1 mm", or outer_diameter.')
 
@@ -161,7 +288,12 @@ def _unique_names(found: _Findings, sections: list) -> None:
         if not isinstance(name, str):
             continue
         if name.replace(" ", "-") in seen:
-            found.add(("section", i, "name"), name, f"is the name of section {seen[name.replace(' ', '-')] + 1} too", "Give it another name.")
+            found.add(
+                ("section", i, "name"),
+                name,
+                f"is the name of section {seen[name.replace(' ', '-')] + 1} too",
+                "Give it another name.",
+            )
         seen.setdefault(name.replace(" ", "-"), i)
 
 
@@ -172,7 +304,11 @@ def _condition(found: _Findings, place: Place, condition: Any) -> None:
     """What may stand together in `outside` or at an end."""
     if not isinstance(condition, dict):
         return
-    given = [name for name in Outside.model_fields if name in condition and not (name == "insulated" and condition[name] is False)]
+    given = [
+        name
+        for name in Outside.model_fields
+        if name in condition and not (name == "insulated" and condition[name] is False)
+    ]
     heats = [name for name in Outside.HEATS if name in given]
     if not given and not any(name in Outside.not_yet for name in condition):
         found.add(place, condition, "says nothing", f"Write {_CHOICES}.")
@@ -184,40 +320,102 @@ def _condition(found: _Findings, place: Place, condition: Any) -> None:
     if "insulated" in given:
         for name in given:
             if name != "insulated":
-                extra(name, "stands beside `insulated = true`, which lets no heat through", "Take one of the two out.")
+                extra(
+                    name,
+                    "stands beside `insulated = true`, which lets no heat through",
+                    "Take one of the two out.",
+                )
         return
     if "temperature" in given:
         for name in (*heats, "film_coefficient", "ambient"):
             if name in given:
                 extra(
-                    name, "stands beside a prescribed `temperature`, which settles the heat by itself",
-                    "A film is film_coefficient with ambient; a resistance to a temperature is contact_resistance.",
-                )  # fmt: skip
+                    name,
+                    "stands beside a prescribed `temperature`, which settles the heat by itself",
+                    "A film is film_coefficient with ambient; a resistance to a temperature is "
+                    "contact_resistance.",
+                )
         return
     if "contact_resistance" in given:
         extra(
-            "contact_resistance", "stands without the `temperature` it leads to",
-            'Write temperature = "85 degC" beside it; for a resistance between two layers write it in the [[layer]].',
-        )  # fmt: skip
+            "contact_resistance",
+            "stands without the `temperature` it leads to",
+            'Write temperature = "85 degC" beside it; for a resistance between two layers write it in '
+            "the [[layer]].",
+        )
     for name in heats[1:]:
-        extra(name, f"stands beside `{heats[0]}`: the heat is given by one of {', '.join(Outside.HEATS)}", "Take one of the two out.")
+        extra(
+            name,
+            f"stands beside `{heats[0]}`: the heat is given by one of {', '.join(Outside.HEATS)}",
+            "Take one of the two out.",
+        )
     if "film_coefficient" in given and "ambient" not in given:
         extra("film_coefficient", "stands without `ambient`", 'Write ambient = "20 degC" beside it.')
     if "ambient" in given and "film_coefficient" not in given:
         extra(
-            "ambient", "stands without `film_coefficient`",
-            'Write film_coefficient = "10 W/m^2/K" beside it, or `temperature` if the surface itself is held at it.',
-        )  # fmt: skip
+            "ambient",
+            "stands without `film_coefficient`",
+            'Write film_coefficient = "10 W/m^2/K" beside it, or `temperature` if the surface itself '
+            "is held at it.",
+        )
+
+
+def _generation(found: _Findings, place: Place, generated: Any, stack: Any) -> None:
+    layers = (
+        {layer_name(layer): layer for layer in stack if isinstance(layer, dict)}
+        if isinstance(stack, list)
+        else {}
+    )
+    for name, heat in _table(generated).items() if layers else ():
+        if name not in layers:
+            near = keys.nearest(name, layers)
+            listed = f"Its layers are: {', '.join(layers)}."
+            found.add(
+                (*place, name), heat, "names no layer of this section", f"Write `{near}`." if near else listed
+            )
+        elif layers[name].get("void"):
+            found.add(
+                (*place, name),
+                heat,
+                "means nothing in a void, which no heat crosses",
+                "Name a solid or the stream.",
+            )
+
+
+def _end_names(found: _Findings, place: Place, faces: dict, stack: Any) -> None:
+    layers = (
+        {layer_name(layer): layer for layer in stack if isinstance(layer, dict)}
+        if isinstance(stack, list)
+        else {}
+    )
+    solids = [name for name, layer in layers.items() if layer.get("solid")]
+    listed = f"Solid layers there: {', '.join(solids)}." if solids else "There is no solid layer there."
+    for name, face in faces.items():
+        if not layers or name == "all" or not isinstance(face, dict):
+            continue
+        if name in layers and name not in solids:
+            found.add((*place, name), None, "has no end face with a condition: only solids have", listed)
+        elif name not in solids:
+            near = keys.nearest(name, solids)
+            found.add(
+                (*place, name), None, "names no layer of this end", f"Write `{near}`." if near else listed
+            )
+    if (
+        layers
+        and not solids
+        and faces
+        and not any(isinstance(face, dict) for face in faces.values())
+        and "insulated" not in faces
+    ):
+        found.add(place, faces, "acts on the end faces of solids, and there are none", "Take it out.")
 
 
 # ------------------------------------------------------------------------------------------------ values
 
 
 def contradictions(case: Case, source: Source) -> list[Mistake]:
-    """What cannot be true together in a case whose keys are all readable. Each rule runs where the ones before hold."""
+    """What cannot be true together in a case whose keys are all readable."""
     found = _Findings(case._tree, source)
-    _known_materials(case, found)
-    _streams_in_place(case, found)
     _sizes(case, found)
     if found.mistakes:
         return found.mistakes
@@ -225,8 +423,6 @@ def contradictions(case: Case, source: Source) -> list[Mistake]:
     _same_bore(tube.sections, found)
     _layer_means_one_thing(case, found)
     _outsides(case, tube.sections, found)
-    _generation(case, found)
-    _ends(case, tube.sections, found)
     _joints(case, found)
     _places(case, tube.sections, found)
     _inlets(case, tube.bore_diameter, found)
@@ -246,50 +442,6 @@ def _stacks(case: Case) -> Iterator[tuple[Place, tuple]]:
             yield ("section", i, "layer"), section.layer
 
 
-def _known_materials(case: Case, found: _Findings) -> None:
-    for name, stream in case.stream.items():
-        _known(found, ("stream", name, "fluid"), stream.fluid, "fluid", case.fluid, FLUIDS)
-    for place, layers in _stacks(case):
-        for i, layer in enumerate(layers):
-            if layer.solid is not None:
-                _known(found, (*place, i, "solid"), layer.solid, "solid", case.solid, SOLIDS)
-
-
-def _known(found: _Findings, place: Place, name: str, kind: str, own: Mapping, built_in: Mapping) -> None:
-    if name in own or name in built_in:
-        return
-    near = keys.nearest(name, [*own, *built_in])
-    begins = [other for other in built_in if other.startswith(name)]
-    if near:
-        instead = f'Write "{near}".'
-    elif begins:
-        instead = "Write " + " or ".join(f'"{other}"' for other in begins) + "."
-    else:
-        instead = f"Write a [{kind}.{keys.toml_key(name)}] with its properties, or one of: {', '.join([*own, *built_in])}."
-    found.add(place, name, f"is neither a [{kind}] of the case nor built in", instead)
-
-
-def _streams_in_place(case: Case, found: _Findings) -> None:
-    if not case.stream:
-        found.add(("stream",), None, "is empty", "Write a table [stream.NAME] with its fluid, inlet temperature and flow.")
-        return
-    for name in list(case.stream)[1:]:
-        found.add(("stream", name), None, "is a second stream: several streams are not available yet", "Keep one [stream.NAME].")
-    for place, layers in _stacks(case):
-        for i, layer in enumerate(layers):
-            if layer.stream is not None and layer.stream not in case.stream:
-                near = keys.nearest(layer.stream, case.stream)
-                listed = ", ".join(f'"{name}"' for name in case.stream)
-                found.add((*place, i, "stream"), layer.stream, "is not a [stream] of the case", f'Write "{near}".' if near else f"There is {listed}.")
-            elif layer.stream is not None and i > 0:
-                found.add(
-                    (*place, i, "stream"), layer.stream, "flows around another layer: rods, annuli and several streams are not available yet",
-                    "Put the stream on the axis.",
-                )  # fmt: skip
-        if layers and not any(layer.stream for layer in layers):
-            found.add((*place, 0), None, "begins a stack without a stream", f'Write stream = "{next(iter(case.stream))}" in the layer on the axis.')
-
-
 def _sizes(case: Case, found: _Findings) -> None:
     for place, layers in _stacks(case):
         r = 0.0
@@ -299,15 +451,21 @@ def _sizes(case: Case, found: _Findings) -> None:
                 if r_outer <= r * (1 + SAME_LENGTH):
                     written = units.written(2 * r, "length")
                     found.add(
-                        (*place, i, "outer_diameter"), _given(found, (*place, i, "outer_diameter"), layer.outer_diameter),
+                        (*place, i, "outer_diameter"),
+                        _given(found, (*place, i, "outer_diameter"), layer.outer_diameter),
                         f"must be larger than the outer diameter of the layer inside it, {written}",
-                    )  # fmt: skip
+                    )
                     return
             else:
                 r_outer = r + (layer.thickness or (layer.diameter or 0.0) / 2)
             if layer.void and (layer.heat_per_volume or layer.contact_resistance):
                 name = "heat_per_volume" if layer.heat_per_volume else "contact_resistance"
-                found.add((*place, i, name), getattr(layer, name), "means nothing in a void, which no heat crosses", "Take it out.")
+                found.add(
+                    (*place, i, name),
+                    getattr(layer, name),
+                    "means nothing in a void, which no heat crosses",
+                    "Take it out.",
+                )
             r = r_outer
 
 
@@ -328,9 +486,12 @@ def _same_bore(sections: tuple[PlacedSection, ...], found: _Findings) -> None:
         if not math.isclose(section.layers[0].r_outer, bore, rel_tol=SAME_LENGTH):
             was, here = (units.written(2 * r, "length", "mm") for r in (bore, section.layers[0].r_outer))
             found.add(
-                ("section", i, "layer", 0, "diameter"), here, f"differs from the bore of section {sections[0].name!r}, {was}: steps of the bore are not available yet",
+                ("section", i, "layer", 0, "diameter"),
+                here,
+                f"differs from the bore of section {sections[0].name!r}, {was}: steps of the bore are "
+                "not available yet",
                 "Give every section the same bore.",
-            )  # fmt: skip
+            )
 
 
 def _layer_means_one_thing(case: Case, found: _Findings) -> None:
@@ -340,9 +501,12 @@ def _layer_means_one_thing(case: Case, found: _Findings) -> None:
             content = (layer.kind, layer.stream or layer.solid or "void")
             if first.setdefault(layer.name, content) != content:
                 found.add(
-                    (*place, i), None, f'is called "{layer.name}", the name of a layer of {first[layer.name][1]} in another section',
+                    (*place, i),
+                    None,
+                    f'is called "{layer.name}", the name of a layer of {first[layer.name][1]} in '
+                    "another section",
                     'Give it another name = "...".',
-                )  # fmt: skip
+                )
 
 
 # ------------------------------------------------------------------------------------------------ conditions
@@ -356,7 +520,12 @@ def _outsides(case: Case, sections: tuple[PlacedSection, ...], found: _Findings)
             if isinstance(value, ZTable):
                 _covers(found, (*place, name), value, section)
         if placed.layers[-1].kind == "void" and not outside.insulated:
-            found.add(place, _given(found, place, None), "acts on a void, which no heat crosses", "Write outside = { insulated = true }, or take the void out.")
+            found.add(
+                place,
+                _given(found, place, None),
+                "acts on a void, which no heat crosses",
+                "Write outside = { insulated = true }, or take the void out.",
+            )
 
 
 def _covers(found: _Findings, place: Place, table: ZTable, section: Section) -> None:
@@ -365,39 +534,12 @@ def _covers(found: _Findings, place: Place, table: ZTable, section: Section) -> 
         return
     z0, z1, length = (units.written(z, "length") for z in (table.z[0], table.z[-1], section.length))
     found.add(
-        (*place, "z"), _given(found, (*place, "z"), None), f"must cover the section from its start to its end: it goes from {z0} to {z1}, the section from 0 m to {length}",
+        (*place, "z"),
+        _given(found, (*place, "z"), None),
+        f"must cover the section from its start to its end: it goes from {z0} to {z1}, the section "
+        f"from 0 m to {length}",
         "z counts from the section's start.",
-    )  # fmt: skip
-
-
-def _generation(case: Case, found: _Findings) -> None:
-    for i, section in enumerate(case.section):
-        layers = {layer.name: layer for layer in case.layers_of(section)}
-        for name, heat in section.generated.items():
-            place = ("section", i, "generated", name)
-            if name not in layers:
-                near = keys.nearest(name, layers)
-                listed = f"Its layers are: {', '.join(layers)}."
-                found.add(place, _given(found, place, heat), f"names no layer of section {section.name!r}", f"Write {near}." if near else listed)
-            elif layers[name].void:
-                found.add(place, _given(found, place, heat), "means nothing in a void, which no heat crosses", "Name a solid or the stream.")
-
-
-def _ends(case: Case, sections: tuple[PlacedSection, ...], found: _Findings) -> None:
-    for end, section in (("first", sections[0]), ("last", sections[-1])):
-        solids = [layer.name for layer in section.layers if layer.kind == "solid"]
-        faces = getattr(case.ends, end)
-        for name, face in faces.items():
-            place: Place = ("ends", end, name)
-            if name == "all":
-                if not solids and not face.insulated:
-                    found.add(("ends", end), None, "acts on the end faces of solids, and there are none", "Take it out.")
-                continue
-            if name not in solids:
-                near = keys.nearest(name, solids)
-                kind = "has no end face: it is a stream" if name in case.stream else "is not a solid layer of this end"
-                listed = f"Solid layers there: {', '.join(solids)}." if solids else "There is no solid layer."
-                found.add(place, None, kind, f"Write {near}." if near else listed)
+    )
 
 
 def _is_pinned(outside: Outside) -> bool:
@@ -405,7 +547,9 @@ def _is_pinned(outside: Outside) -> bool:
     resistance = outside.contact_resistance
     if outside.temperature is None:
         return False
-    return resistance is None or (min(resistance.value) <= 0 if isinstance(resistance, ZTable) else resistance <= 0)
+    return resistance is None or (
+        min(resistance.value) <= 0 if isinstance(resistance, ZTable) else resistance <= 0
+    )
 
 
 _STEP = "the heat beside a step of prescribed temperature grows without limit as the mesh is refined"
@@ -420,24 +564,47 @@ def _joints(case: Case, found: _Findings) -> None:
         if right.joint_length is not None:
             joint = _given(found, place, right.joint_length)
             if both[0] is None or both[1] is None:
-                found.add(place, joint, "needs a prescribed `temperature` outside both sections that meet here", "Take it out.")
+                found.add(
+                    place,
+                    joint,
+                    "needs a prescribed `temperature` outside both sections that meet here",
+                    "Take it out.",
+                )
                 continue
             after = case.section[i + 1].joint_length or 0.0 if i + 1 < len(case.section) else 0.0
             for section, taken in ((left, left.joint_length or 0.0), (right, after)):
                 if right.joint_length / 2 + taken / 2 > section.length * (1 + SAME_LENGTH):
-                    found.add(place, joint, f"reaches beyond section {section.name!r}: half of the ramp lies in each section", "Make it shorter.")
+                    found.add(
+                        place,
+                        joint,
+                        f"reaches beyond section {section.name!r}: half of the ramp lies in each section",
+                        "Make it shorter.",
+                    )
                     break
-        elif both[0] is not None and both[1] is not None and _is_pinned(left.outside) and _is_pinned(right.outside):
+        elif (
+            both[0] is not None
+            and both[1] is not None
+            and _is_pinned(left.outside)
+            and _is_pinned(right.outside)
+        ):
             if abs(both[0][1] - both[1][0]) > SAME_TEMPERATURE:
                 was, now = (units.written(T, "temperature", "degC") for T in (both[0][1], both[1][0]))
                 at = ("section", i, "outside", "temperature")
                 found.add(
-                    at, _given(found, at, now), f"differs from the {was} outside section {left.name!r}: {_STEP}",
-                    f'Give section {right.name!r} a joint_length = "2 mm" (a ramp centred on the joint), or {_BRIDGES}.',
-                )  # fmt: skip
+                    at,
+                    _given(found, at, now),
+                    f"differs from the {was} outside section {left.name!r}: {_STEP}",
+                    f'Give section {right.name!r} a joint_length = "2 mm" (a ramp centred on the '
+                    f"joint), or {_BRIDGES}.",
+                )
     if case.section[0].joint_length is not None:
         place = ("section", 0, "joint_length")
-        found.add(place, _given(found, place, None), "has no section before it to join to", "Give it to the later one of two sections.")
+        found.add(
+            place,
+            _given(found, place, None),
+            "has no section before it to join to",
+            "Give it to the later one of two sections.",
+        )
     for end, section, k in (("first", case.section[0], 0), ("last", case.section[-1], 1)):
         _end_joints(case, end, section, k, found)
 
@@ -453,7 +620,12 @@ def _end_joints(case: Case, end: str, section: Section, k: int, found: _Findings
         if _is_pinned(a) and _is_pinned(b) and abs(a.temperature - b.temperature) > SAME_TEMPERATURE:  # type: ignore[operator]
             was = units.written(a.temperature, "temperature", "degC")  # type: ignore[arg-type]
             place: Place = ("ends", end, outer.name, "temperature")
-            found.add(place, _given(found, place, b.temperature), f"differs from the {was} of the layer inside it: {_STEP}", f"Make them equal, or {_BRIDGES}.")
+            found.add(
+                place,
+                _given(found, place, b.temperature),
+                f"differs from the {was} of the layer inside it: {_STEP}",
+                f"Make them equal, or {_BRIDGES}.",
+            )
     last = layers[-1]
     face = case.ends.of(end, last.name)
     if last.kind == "solid" and outside is not None and _is_pinned(section.outside) and _is_pinned(face):
@@ -462,14 +634,18 @@ def _end_joints(case: Case, end: str, section: Section, k: int, found: _Findings
             was = units.written(outside[k], "temperature", "degC")
             key = last.name if last.name in getattr(case.ends, end) else "all"
             place = ("ends", end, key, "temperature")
-            written = _given(found, place, None) or _given(found, ("ends", end, "temperature"), face.temperature)
+            written = _given(found, place, None) or _given(
+                found, ("ends", end, "temperature"), face.temperature
+            )
             found.add(
-                place if key != "all" else ("ends", end, "temperature"), written, f"differs from the {was} outside section {section.name!r}: {_STEP}",
+                place if key != "all" else ("ends", end, "temperature"),
+                written,
+                f"differs from the {was} outside section {section.name!r}: {_STEP}",
                 f"Make them equal, or {_BRIDGES}.",
-            )  # fmt: skip
+            )
 
 
-# ------------------------------------------------------------------------------------------------ places, inlets, mesh
+# ---------------------------------------------------------------------------------------- places, inlets, mesh
 
 
 def _places(case: Case, sections: tuple[PlacedSection, ...], found: _Findings) -> None:
@@ -478,22 +654,45 @@ def _places(case: Case, sections: tuple[PlacedSection, ...], found: _Findings) -
         place: Place = ("sensor", name)
         if sensor.z > length * (1 + SAME_LENGTH):
             at = (*place, "z")
-            found.add(at, _given(found, at, sensor.z), f"lies beyond the tube, which is {units.written(length, 'length')} long", "z counts from the tube's start.")
+            found.add(
+                at,
+                _given(found, at, sensor.z),
+                f"lies beyond the tube, which is {units.written(length, 'length')} long",
+                "z counts from the tube's start.",
+            )
             continue
         stack = next((section for section in sections if sensor.z <= section.z1), sections[-1]).layers
         spots = ["outside", "axis", "bulk"]
-        spots += [f"{layer.name} {face}" for j, layer in enumerate(stack) if layer.kind != "void" for face in ("inner", "outer")[0 if j else 1 :]]
+        spots += [
+            f"{layer.name} {face}"
+            for j, layer in enumerate(stack)
+            if layer.kind != "void"
+            for face in ("inner", "outer")[0 if j else 1 :]
+        ]
         if sensor.at not in spots:
             near = keys.nearest(sensor.at, spots)
             found.add(
-                (*place, "at"), sensor.at, "is not a place in the cross-section there", f'Write "{near}".' if near else f"Write one of: {', '.join(spots)}."
+                (*place, "at"),
+                sensor.at,
+                "is not a place in the cross-section there",
+                f'Write "{near}".' if near else f"Write one of: {', '.join(spots)}.",
             )
         elif sensor.at == "outside" and stack[-1].kind == "void":
-            found.add((*place, "at"), sensor.at, "reads the outside of a void, which has no temperature", "Read a layer's face.")
+            found.add(
+                (*place, "at"),
+                sensor.at,
+                "reads the outside of a void, which has no temperature",
+                "Read a layer's face.",
+            )
     for j, station in enumerate(case.results.stations):
         if station > length * (1 + SAME_LENGTH):
             at = ("results", "stations", j)
-            found.add(at, _given(found, at, station), f"lies beyond the tube, which is {units.written(length, 'length')} long", "Stations count from the tube's start.")
+            found.add(
+                at,
+                _given(found, at, station),
+                f"lies beyond the tube, which is {units.written(length, 'length')} long",
+                "Stations count from the tube's start.",
+            )
 
 
 def _inlets(case: Case, bore: float, found: _Findings) -> None:
@@ -504,19 +703,32 @@ def _inlets(case: Case, bore: float, found: _Findings) -> None:
             at: Place = ("stream", name, "inlet_temperature")
             reach = " to ".join(units.written(T, "temperature", "degC") for T in (low, high))
             found.add(
-                at, _given(found, at, stream.inlet_temperature), f"lies outside the properties of {stream.fluid!r}, which are known from {reach}",
+                at,
+                _given(found, at, stream.inlet_temperature),
+                f"lies outside the properties of {stream.fluid!r}, which are known from {reach}",
                 'Give a wider table in [fluid.NAME], or outside_range = "hold" there.',
-            )  # fmt: skip
+            )
         profile = stream.inlet_profile
         if isinstance(profile, FileProfile):
             at = ("stream", name, "inlet_profile")
-            if profile.r_m[0] > INLET_RADIUS_TOLERANCE * bore / 2 or abs(profile.r_m[-1] - bore / 2) > INLET_RADIUS_TOLERANCE * bore / 2:
+            if (
+                profile.r_m[0] > INLET_RADIUS_TOLERANCE * bore / 2
+                or abs(profile.r_m[-1] - bore / 2) > INLET_RADIUS_TOLERANCE * bore / 2
+            ):
                 found.add(
-                    at, _given(found, at, None), f"must reach from the axis to the bore's wall at {bore / 2:.6g} m; its r_m go from {profile.r_m[0]:g} to {profile.r_m[-1]:g}",
+                    at,
+                    _given(found, at, None),
+                    f"must reach from the axis to the bore's wall at {bore / 2:.6g} m; its r_m go from "
+                    f"{profile.r_m[0]:g} to {profile.r_m[-1]:g}",
                     "Give radii in metres.",
-                )  # fmt: skip
+                )
             if stream.is_still:
-                found.add(at, _given(found, at, None), "is a profile for a stream that does not flow", "Take it out.")
+                found.add(
+                    at,
+                    _given(found, at, None),
+                    "is a profile for a stream that does not flow",
+                    "Take it out.",
+                )
 
 
 def _mesh(case: Case, sections: tuple[PlacedSection, ...], found: _Findings) -> None:
@@ -525,13 +737,25 @@ def _mesh(case: Case, sections: tuple[PlacedSection, ...], found: _Findings) -> 
         for place, layers in _stacks(case):
             if layers[0].cells_across is not None:
                 at = (*place, 0, "cells_across")
-                found.add(at, layers[0].cells_across, "stands beside `mesh.radial`, which counts the same cells", "Take one of the two out.")
+                found.add(
+                    at,
+                    layers[0].cells_across,
+                    "stands beside `mesh.radial`, which counts the same cells",
+                    "Take one of the two out.",
+                )
     if mesh.axial is not None and mesh.axial < len(sections):
-        found.add(("mesh", "axial"), mesh.axial, f"must be at least one cell for each of the {len(sections)} sections")
+        found.add(
+            ("mesh", "axial"),
+            mesh.axial,
+            f"must be at least one cell for each of the {len(sections)} sections",
+        )
     fewest = mesh.radial * mesh.axial if mesh.radial and mesh.axial else 0
     if fewest > mesh.at_most:
         found.add(
-            ("mesh", "at_most"), mesh.at_most, f"is less than `radial` times `axial`, {fewest}", f"Write at_most = {2 * fewest}, or smaller counts."
+            ("mesh", "at_most"),
+            mesh.at_most,
+            f"is less than `radial` times `axial`, {fewest}",
+            f"Write at_most = {2 * fewest}, or smaller counts.",
         )
 
 
@@ -539,7 +763,7 @@ def _mesh(case: Case, sections: tuple[PlacedSection, ...], found: _Findings) -> 
 
 
 def _heat_has_somewhere_to_go(case: Case, sections: tuple[PlacedSection, ...], found: _Findings) -> None:
-    """Every connected part of the tube needs a flowing stream, or a temperature outside it, that settles its level."""
+    """Every connected part of the tube needs a flow or an outside temperature to settle its level."""
     group: dict[tuple[int, int], tuple[int, int]] = {}
 
     def root(node: tuple[int, int]) -> tuple[int, int]:
@@ -555,7 +779,9 @@ def _heat_has_somewhere_to_go(case: Case, sections: tuple[PlacedSection, ...], f
             if j and (s, j - 1) in group:
                 group[root((s, j))] = root((s, j - 1))
             for b, before in enumerate(sections[s - 1].layers) if s else ():
-                if before.kind != "void" and min(before.r_outer, layer.r_outer) > max(before.r_inner, layer.r_inner):
+                if before.kind != "void" and min(before.r_outer, layer.r_outer) > max(
+                    before.r_inner, layer.r_inner
+                ):
                     group[root((s, j))] = root((s - 1, b))
     settled = set()
     for s, section in enumerate(sections):
@@ -568,14 +794,19 @@ def _heat_has_somewhere_to_go(case: Case, sections: tuple[PlacedSection, ...], f
     for s, j in sorted(node for node in group if group[node] == node and node not in settled):
         names = sorted({sections[a].layers[b].name for a, b in group if root((a, b)) == (s, j)})
         found.add(
-            ("section", s), None, f"leaves the temperature of {', '.join(names)} open: nothing flows through, and no temperature or film stands outside",
+            ("section", s),
+            None,
+            f"leaves the temperature of {', '.join(names)} open: nothing flows through, and no "
+            "temperature or film stands outside",
             "Give a flow, or a temperature or a film_coefficient somewhere outside or at an end.",
-        )  # fmt: skip
+        )
 
 
 def _settles(outside: Outside) -> bool:
     film = outside.film_coefficient
-    return outside.temperature is not None or (film is not None and (max(film.value) if isinstance(film, ZTable) else film) > 0)
+    return outside.temperature is not None or (
+        film is not None and (max(film.value) if isinstance(film, ZTable) else film) > 0
+    )
 
 
 def _settled_inside(case: Case, sections: tuple[PlacedSection, ...], s: int, layer: PlacedLayer) -> bool:
@@ -602,7 +833,10 @@ def _gas(case: Case, found: _Findings) -> None:
                     if change > GAS_DENSITY_CHANGE:
                         place: Place = ("section", i, "outside", key)
                         found.add(
-                            place, _given(found, place, T), f"changes the density of the gas {stream.fluid!r} by {100 * change:.0f} %; more than 5 % is not available yet",
+                            place,
+                            _given(found, place, T),
+                            f"changes the density of the gas {stream.fluid!r} by {100 * change:.0f} %; "
+                            "more than 5 % is not available yet",
                             "Bring it closer to the inlet temperature.",
-                        )  # fmt: skip
+                        )
                         break

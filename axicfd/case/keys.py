@@ -1,7 +1,7 @@
 """How a key of a case file is declared: what it means, what it accepts, its default, what to write instead.
 
-One declaration feeds the check of a value, the sentence about a bad one, the listing of all keys, the written case
-and the generated tests. A declaration is the metadata of an annotated field of the models:
+One declaration feeds the check of a value, the sentence about a bad one, the listing of all keys, the written
+case and the generated tests. A declaration is the metadata of an annotated field of the models:
 
     thickness: Annotated[float | None, Quantity("length", "thickness of the layer", above=0)] = None
 """
@@ -10,7 +10,7 @@ from __future__ import annotations
 
 import difflib
 import math
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass, field
 from typing import Any
 
@@ -19,14 +19,14 @@ from pydantic_core import CoreSchema, PydanticCustomError, core_schema
 from axicfd import units
 from axicfd.materials import laws
 
-# The key of the validation context that says where values come from: in a file a bare number for a dimensional
-# key is a mistake, in Python it is SI.
+# The key of the validation context that says where values come from: in a file a bare number for a
+# dimensional key is a mistake, in Python it is SI.
 IN_FILE = "in_file"
 
 
 @dataclass(frozen=True)
 class Problem:
-    """What is wrong with a value: `inner` leads from the key into a list or table, `value` is what stands there."""
+    """What is wrong with a value: `inner` leads from the key into a list or table, `value` stands there."""
 
     value: object
     allowed: str
@@ -68,7 +68,9 @@ class Key:
         """TOML text of a value that is accepted."""
         raise NotImplementedError
 
-    def refuse(self, value: Any, allowed: str = "", instead: str = "", inner: tuple[str | int, ...] = ()) -> BadValue:
+    def refuse(
+        self, value: Any, allowed: str = "", instead: str = "", inner: tuple[str | int, ...] = ()
+    ) -> BadValue:
         return BadValue(Problem(value, allowed or self.allowed, instead or self.instead, inner))
 
     def __get_pydantic_core_schema__(self, source: Any, handler: Any) -> CoreSchema:
@@ -83,7 +85,9 @@ class Key:
 
 def toml_text(text: str) -> str:
     """A TOML basic string."""
-    escaped = "".join(_ESCAPES.get(mark, mark if mark >= " " and mark != "\x7f" else f"\\u{ord(mark):04x}") for mark in text)
+    escaped = "".join(
+        _ESCAPES.get(mark, mark if mark >= " " and mark != "\x7f" else f"\\u{ord(mark):04x}") for mark in text
+    )
     return f'"{escaped}"'
 
 
@@ -134,7 +138,9 @@ class Quantity(_Bounded):
             try:
                 number = units.parse(value, self.kind)
             except units.UnitError as bad:
-                raise BadValue(Problem(value, bad.allowed, bad.instead or self.instead, (), bad.looks_like)) from None
+                raise BadValue(
+                    Problem(value, bad.allowed, bad.instead or self.instead, (), bad.looks_like)
+                ) from None
         elif isinstance(value, bool) or not isinstance(value, int | float):
             raise self.refuse(value, f"must be {self._words}, written as text with a unit")
         elif in_file:
@@ -142,7 +148,11 @@ class Quantity(_Bounded):
                 raise self.refuse(value, "must be a finite number with a unit")
             bare = repr(value)
             unit = units.split(units.KINDS[self.kind].example)[1]
-            raise self.refuse(value, f"is not {units.KINDS[self.kind].words}: the unit is missing", f'Write "{bare} {unit}" if that is meant.')
+            raise self.refuse(
+                value,
+                f"is not {units.KINDS[self.kind].words}: the unit is missing",
+                f'Write "{bare} {unit}" if that is meant.',
+            )
         else:
             number = float(value)
             if not math.isfinite(number):
@@ -180,7 +190,9 @@ class Number(_Bounded):
 
     def read(self, value: Any, in_file: bool) -> float | int:
         if isinstance(value, bool) or not isinstance(value, int | float):
-            raise self.refuse(value, "", "Write it without quotes and without a unit." if isinstance(value, str) else "")
+            raise self.refuse(
+                value, "", "Write it without quotes and without a unit." if isinstance(value, str) else ""
+            )
         if not math.isfinite(value) or self._outside(value) or (self.whole and value != int(value)):
             raise self.refuse(value)
         return int(value) if self.whole else float(value)
@@ -191,7 +203,9 @@ class Number(_Bounded):
     @property
     def allowed(self) -> str:
         limits = self._limits(lambda limit: f"{limit:g}")
-        return f"must be a {'whole ' if self.whole else ''}number without a unit" + (f", {limits}" if limits else "")
+        return f"must be a {'whole ' if self.whole else ''}number without a unit" + (
+            f", {limits}" if limits else ""
+        )
 
     @property
     def example(self) -> str:
@@ -259,7 +273,9 @@ class Text(Key):
 
     @property
     def allowed(self) -> str:
-        return "must be a name of letters, digits, spaces, - and _" if self.name else "must be text on one line"
+        return (
+            "must be a name of letters, digits, spaces, - and _" if self.name else "must be text on one line"
+        )
 
     @property
     def example(self) -> str:
@@ -268,7 +284,11 @@ class Text(Key):
 
 def is_name(text: str) -> bool:
     """Whether a user may call something so: it becomes part of paths and file names."""
-    return bool(text) and text == text.strip() and all(mark.isascii() and (mark.isalnum() or mark in " -_") for mark in text)
+    return (
+        bool(text)
+        and text == text.strip()
+        and all(mark.isascii() and (mark.isalnum() or mark in " -_") for mark in text)
+    )
 
 
 @dataclass(frozen=True)
@@ -285,7 +305,7 @@ class Material(Text):
 
 @dataclass(frozen=True)
 class ZTable:
-    """A value that varies along a section: straight lines between points. z [m] from the section's start; SI values."""
+    """A value along a section, straight between points; SI, z from the section's start."""
 
     z: tuple[float, ...]
     value: tuple[float, ...]
@@ -300,28 +320,35 @@ class ZTable:
         return self.value[-1]
 
 
-def _read_columns(key: Key, value: dict, columns: dict[str, Key], in_file: bool) -> dict[str, tuple]:
+def read_columns(key: Key, value: dict, columns: Mapping[str, Key], in_file: bool) -> dict[str, tuple]:
     """Read a table of equally long lists, one declared entry key per column; collects every problem."""
     problems: list[Problem] = []
     read: dict[str, tuple] = {}
     for name in value:
         if name not in columns:
             near = nearest(name, columns)
-            problems.append(Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,)))
+            problems.append(
+                Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,))
+            )
     for name, entry in columns.items():
         column = value.get(name)
         if column is None:
             problems.append(Problem(value, f"needs `{name}`", f"Write {name} = [{entry.example}, ...]."))
             continue
         if not isinstance(column, list | tuple):
-            problems.append(Problem(column, "must be a list", f"Write {name} = [{entry.example}, ...].", (name,)))
+            problems.append(
+                Problem(column, "must be a list", f"Write {name} = [{entry.example}, ...].", (name,))
+            )
             continue
         entries = []
         for i, item in enumerate(column):
             try:
                 entries.append(entry.read(item, in_file))
             except BadValue as bad:
-                problems += [Problem(p.value, p.allowed, p.instead, (name, i, *p.inner), p.looks_like) for p in bad.problems]
+                problems += [
+                    Problem(p.value, p.allowed, p.instead, (name, i, *p.inner), p.looks_like)
+                    for p in bad.problems
+                ]
         read[name] = tuple(entries)
     if problems:
         raise BadValue(*problems)
@@ -330,7 +357,11 @@ def _read_columns(key: Key, value: dict, columns: dict[str, Key], in_file: bool)
         counts = " and ".join(f"{count} in `{name}`" for name, count in lengths.items())
         raise key.refuse(value, f"must have equally many entries in each list: {counts}")
     if min(lengths.values()) < 2:
-        raise key.refuse(value, "must have at least two entries in each list", "For one value write it alone, without a table.")
+        raise key.refuse(
+            value,
+            "must have at least two entries in each list",
+            "For one value write it alone, without a table.",
+        )
     return read
 
 
@@ -353,14 +384,21 @@ class Along(Quantity):
             return value
         if not isinstance(value, dict):
             return super().read(value, in_file)
-        one = Quantity(self.meaning, self.kind, above=self.above, at_least=self.at_least, at_most=self.at_most)
+        one = Quantity(
+            self.meaning, self.kind, above=self.above, at_least=self.at_least, at_most=self.at_most
+        )
         z = Quantity("distance from the section's start", "length", at_least=0)
-        read = _read_columns(self, value, {"z": z, "value": one}, in_file)
+        read = read_columns(self, value, {"z": z, "value": one}, in_file)
         back = _first_step_back(read["z"])
         if back is not None:
             again = value["z"][back]
             if read["z"][back] == read["z"][back - 1]:
-                raise self.refuse(again, "stands twice: a table along z cannot jump", "Make it two sections, which meet at the jump.", ("z", back))
+                raise self.refuse(
+                    again,
+                    "stands twice: a table along z cannot jump",
+                    "Make it two sections, which meet at the jump.",
+                    ("z", back),
+                )
             raise self.refuse(again, "must be larger than the z before it", inner=("z", back))
         return ZTable(read["z"], read["value"])
 
@@ -388,11 +426,19 @@ class Property(Quantity):
         if "at" in value or "exponent" in value:
             return self._read_exponential(value, one, temperature, in_file)
         if "temperature" not in value and "value" not in value:
-            raise self.refuse(value, "must be a constant or a law of temperature", f"Write {self.example}, or {self._table_example}.")
-        read = _read_columns(self, value, {"temperature": temperature, "value": one}, in_file)
+            raise self.refuse(
+                value,
+                "must be a constant or a law of temperature",
+                f"Write {self.example}, or {self._table_example}.",
+            )
+        read = read_columns(self, value, {"temperature": temperature, "value": one}, in_file)
         back = _first_step_back(read["temperature"])
         if back is not None:
-            raise self.refuse(value["temperature"][back], "must be higher than the temperature before it", inner=("temperature", back))
+            raise self.refuse(
+                value["temperature"][back],
+                "must be higher than the temperature before it",
+                inner=("temperature", back),
+            )
         return laws.Table(read["temperature"], read["value"], logarithmic=self.logarithmic)
 
     def _read_exponential(self, value: dict, one: Quantity, temperature: Quantity, in_file: bool) -> Any:
@@ -402,7 +448,9 @@ class Property(Quantity):
         for name in value:
             if name not in entries:
                 near = nearest(name, entries)
-                problems.append(Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,)))
+                problems.append(
+                    Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,))
+                )
         for name, entry in entries.items():
             if name not in value:
                 problems.append(Problem(value, f"needs `{name}`", f"Write {name} = {entry.example}."))
@@ -410,7 +458,10 @@ class Property(Quantity):
             try:
                 read[name] = entry.read(value[name], in_file)
             except BadValue as bad:
-                problems += [Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems]
+                problems += [
+                    Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like)
+                    for p in bad.problems
+                ]
         if problems:
             raise BadValue(*problems)
         return laws.Exponential(read["at"], read["value"], read["exponent"])
@@ -427,7 +478,9 @@ class Property(Quantity):
         if isinstance(value, laws.Exponential):
             at = Quantity("", "temperature").write(value.at, raw.get("at"))
             exponent = Quantity("", "per_kelvin").write(value.exponent, raw.get("exponent"))
-            return f"{{ at = {at}, value = {one.write(value.value, raw.get('value'))}, exponent = {exponent} }}"
+            return (
+                f"{{ at = {at}, value = {one.write(value.value, raw.get('value'))}, exponent = {exponent} }}"
+            )
         temperature = _write_list(Quantity("", "temperature"), value.temperature, raw.get("temperature"))
         return f"{{ temperature = {temperature}, value = {_write_list(one, value.value, raw.get('value'))} }}"
 
@@ -447,7 +500,9 @@ class ListOf(Key):
             try:
                 entries.append(self.entry.read(item, in_file))
             except BadValue as bad:
-                problems += [Problem(p.value, p.allowed, p.instead, (i, *p.inner), p.looks_like) for p in bad.problems]
+                problems += [
+                    Problem(p.value, p.allowed, p.instead, (i, *p.inner), p.looks_like) for p in bad.problems
+                ]
         if problems:
             raise BadValue(*problems)
         return tuple(entries)
@@ -480,14 +535,23 @@ class PerName(Key):
             try:
                 entries[name] = self.entry.read(item, in_file)
             except BadValue as bad:
-                problems += [Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems]
+                problems += [
+                    Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like)
+                    for p in bad.problems
+                ]
         if problems:
             raise BadValue(*problems)
         return entries
 
     def write(self, value: dict[str, Any], raw: Any = None) -> str:
         raw = raw if isinstance(raw, dict) else {}
-        return "{ " + ", ".join(f"{toml_key(name)} = {self.entry.write(item, raw.get(name))}" for name, item in value.items()) + " }"
+        return (
+            "{ "
+            + ", ".join(
+                f"{toml_key(name)} = {self.entry.write(item, raw.get(name))}" for name, item in value.items()
+            )
+            + " }"
+        )
 
     @property
     def allowed(self) -> str:
@@ -500,4 +564,8 @@ class PerName(Key):
 
 def toml_key(name: str) -> str:
     """A name as a TOML key, quoted where it needs to be."""
-    return name if name and all(mark.isascii() and (mark.isalnum() or mark in "-_") for mark in name) else toml_text(name)
+    return (
+        name
+        if name and all(mark.isascii() and (mark.isalnum() or mark in "-_") for mark in name)
+        else toml_text(name)
+    )

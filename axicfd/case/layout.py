@@ -1,4 +1,4 @@
-"""Where everything is: sections along z, layers across r, in SI. All later stages take the geometry from here."""
+"""Where everything is: sections along z, layers across r, in SI. All later stages read the geometry here."""
 
 from __future__ import annotations
 
@@ -84,7 +84,9 @@ class Layout:
     @property
     def stream_names(self) -> tuple[str, ...]:
         """Streams from the axis outward, each once."""
-        names = (layer.material for section in self.sections for layer in section.layers if layer.kind == "stream")
+        names = (
+            layer.material for section in self.sections for layer in section.layers if layer.kind == "stream"
+        )
         return tuple(dict.fromkeys(names))
 
 
@@ -124,7 +126,7 @@ def _placed_layers(case: Case, section: Section) -> tuple[PlacedLayer, ...]:
 
 
 def end_temperatures(section: Section) -> tuple[float, float] | None:
-    """The prescribed outside temperature at a section's start and end [K], or None where none is prescribed."""
+    """The prescribed outside temperature at a section's start and end [K], or None where there is none."""
     temperature = section.outside.temperature
     if temperature is None:
         return None
@@ -134,7 +136,7 @@ def end_temperatures(section: Section) -> tuple[float, float] | None:
 
 
 def _with_ramps(case: Case) -> list[Outside]:
-    """The outside conditions, with a ramp in the prescribed temperatures on both sides of each joint that has one."""
+    """The outside conditions, with the ramp of each joint that has one in the temperatures on both sides."""
     tables = [_as_points(section) for section in case.section]
     for i in range(1, len(case.section)):
         joint, left, right = case.section[i].joint_length, tables[i - 1], tables[i]
@@ -142,13 +144,20 @@ def _with_ramps(case: Case) -> list[Outside]:
             continue
         before, half = case.section[i - 1].length, joint / 2
         low, high = _value_at(left, before - half), _value_at(right, half)
-        left[:] = [point for point in left if point[0] < before - half] + [(before - half, low), (before, (low + high) / 2)]
+        left[:] = [point for point in left if point[0] < before - half] + [
+            (before - half, low),
+            (before, (low + high) / 2),
+        ]
         right[:] = [(0.0, (low + high) / 2), (half, high)] + [point for point in right if point[0] > half]
     outsides = []
     for section, points in zip(case.section, tables, strict=True):
         outside = section.outside
-        if points is not None and (isinstance(outside.temperature, ZTable) or len({value for _, value in points}) > 1):
-            outside = outside.model_copy(update={"temperature": ZTable(*map(tuple, zip(*points, strict=True)))})
+        if points is not None and (
+            isinstance(outside.temperature, ZTable) or len({value for _, value in points}) > 1
+        ):
+            outside = outside.model_copy(
+                update={"temperature": ZTable(*map(tuple, zip(*points, strict=True)))}
+            )
         outsides.append(outside)
     return outsides
 

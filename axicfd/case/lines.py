@@ -1,7 +1,7 @@
 """The line of every key, table and list entry of a TOML text.
 
-The text has been accepted by the parser before, so this walks it without judging it: it only has to know where
-strings, comments, lists and inline tables begin and end.
+The text has been accepted by the parser before, so this walks it without judging it: it only has to know
+where strings, comments, lists and inline tables begin and end.
 """
 
 from __future__ import annotations
@@ -13,7 +13,7 @@ _SCALAR = re.compile(r"[^,\]}#\n]*")
 
 
 def lines_of(text: str) -> dict[tuple[str | int, ...], int]:
-    """Way to a value -> its line, counted from 1; a table has the line of its header, a list entry its own."""
+    """Way to a value -> its line, counted from 1; a table has its header's line, a list entry its own."""
     return _Walk(text).lines
 
 
@@ -165,7 +165,7 @@ class _Walk:
                 return
 
     def _string(self) -> str:
-        """Pass a string of any of the four kinds; its text with the escapes left as they are, but for quotes."""
+        """Pass a string of any of the four kinds; its text, with only the escapes of quotes resolved."""
         mark = self.text[self.place]
         fence = mark * 3 if self._here(mark * 3) else mark
         self._step(len(fence))

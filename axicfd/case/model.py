@@ -1,8 +1,8 @@
 """The case: frozen models whose attribute names are the keys of a case file. This is the only list of keys.
 
-Inside a `Case` every quantity is an SI float and every temperature is absolute [K]. Each field declares through
-`axicfd.case.keys` what it accepts and what it means. Keys that are known but not open stand in `not_yet` of their
-table and are refused by name. Contradictions between keys are found in `axicfd.case.checks`.
+Inside a `Case` every quantity is an SI float and every temperature is absolute [K]. Each field declares
+through `axicfd.case.keys` what it accepts and what it means. Keys that are known but not open stand in
+`not_yet` of their table and are refused by name; `axicfd.case.checks` finds contradictions.
 """
 
 from __future__ import annotations
@@ -34,13 +34,16 @@ from axicfd.materials.library import FLUIDS, SOLIDS
 
 Law = laws.Constant | laws.Table | laws.Exponential | laws.IdealGasDensity
 
-GAS_BELOW_DENSITY = 50.0  # kg/m3; an own fluid lighter than this at its inlet is taken as a gas (no liquid is, few gases reach it)
+# kg/m3; an own fluid lighter than this at its inlet is taken as a gas: no liquid is, few gases reach it
+GAS_BELOW_DENSITY = 50.0
 
 
 class Part(BaseModel):
     """A table of a case file."""
 
-    model_config = ConfigDict(frozen=True, extra="forbid", arbitrary_types_allowed=True, hide_input_in_errors=True)
+    model_config = ConfigDict(
+        frozen=True, extra="forbid", arbitrary_types_allowed=True, hide_input_in_errors=True
+    )
 
     # Known keys that are not open yet, each with what it will do.
     not_yet: ClassVar[Mapping[str, str]] = {}
@@ -77,28 +80,45 @@ class Profile(Key):
         if isinstance(value, dict) and "file" in value:
             return self._from_file(value)
         if isinstance(value, dict) and value:
-            columns = {"r_m": Number("", at_least=0), "velocity": Number("", at_least=0), "temperature_K": Number("", above=0)}
-            read = keys._read_columns(self, value, columns, in_file)
+            columns = {
+                "r_m": Number("", at_least=0),
+                "velocity": Number("", at_least=0),
+                "temperature_K": Number("", above=0),
+            }
+            read = keys.read_columns(self, value, columns, in_file)
             return self._increasing(FileProfile(**read), value)
         near = keys.nearest(value, self.words) if isinstance(value, str) else None
         raise self.refuse(value, "", f'Write "{near}".' if near else "")
 
     def _from_file(self, value: dict) -> FileProfile:
         if set(value) != {"file"}:
-            raise self.refuse(value, "names a file and says more beside it", 'Write { file = "inlet.csv" } alone.')
+            raise self.refuse(
+                value, "names a file and says more beside it", 'Write { file = "inlet.csv" } alone.'
+            )
         name = value["file"]
         if not isinstance(name, str) or not name:
             raise self.refuse(name, "must be the name of a file", inner=("file",))
-        wanted = "Give a file with one header row `r_m,velocity,temperature_K` and one row per radius, with comma and decimal point."
+        wanted = (
+            "Give a file with the header row `r_m,velocity,temperature_K` and one row of numbers per radius."
+        )
         try:
-            rows = [row.split(",") for row in Path(name).read_text(encoding="utf-8-sig").splitlines() if row.strip()]
+            rows = [
+                row.split(",")
+                for row in Path(name).read_text(encoding="utf-8-sig").splitlines()
+                if row.strip()
+            ]
         except (OSError, UnicodeDecodeError) as why:
             reason = getattr(why, "strerror", None) or "it is not UTF-8 text"
             raise self.refuse(name, f"cannot be read: {reason}", wanted, ("file",)) from None
         header = [cell.strip() for cell in rows[0]] if rows else []
         names = ("r_m", "velocity", "temperature_K")
         if sorted(header) != sorted(names):
-            raise self.refuse(name, f"has the columns {', '.join(header) or 'none'} instead of {', '.join(names)}", wanted, ("file",))
+            raise self.refuse(
+                name,
+                f"has the columns {', '.join(header) or 'none'} instead of {', '.join(names)}",
+                wanted,
+                ("file",),
+            )
         columns: dict[str, list[float]] = {name: [] for name in header}
         for i, row in enumerate(rows[1:], start=2):
             try:
@@ -112,8 +132,12 @@ class Profile(Key):
         if len(rows) < 3:
             raise self.refuse(name, "has fewer than two rows of numbers", wanted, ("file",))
         if min(columns["r_m"]) < 0 or min(columns["velocity"]) < 0 or min(columns["temperature_K"]) <= 0:
-            raise self.refuse(name, "has a negative radius or velocity, or a temperature not above 0 K", wanted, ("file",))
-        return self._increasing(FileProfile(**{column: tuple(numbers) for column, numbers in columns.items()}), value)
+            raise self.refuse(
+                name, "has a negative radius or velocity, or a temperature not above 0 K", wanted, ("file",)
+            )
+        return self._increasing(
+            FileProfile(**{column: tuple(numbers) for column, numbers in columns.items()}), value
+        )
 
     def _increasing(self, profile: FileProfile, value: dict) -> FileProfile:
         if any(b <= a for a, b in zip(profile.r_m, profile.r_m[1:], strict=False)):
@@ -126,8 +150,18 @@ class Profile(Key):
         if isinstance(value, str):
             return keys.toml_text(value)
         # the columns in place of the file's name, so that the written case stands alone
-        lists = ("[" + ", ".join(repr(number) for number in column) + "]" for column in (value.r_m, value.velocity, value.temperature_K))
-        return "{ " + ", ".join(f"{name} = {text}" for name, text in zip(("r_m", "velocity", "temperature_K"), lists, strict=True)) + " }"
+        lists = (
+            "[" + ", ".join(repr(number) for number in column) + "]"
+            for column in (value.r_m, value.velocity, value.temperature_K)
+        )
+        return (
+            "{ "
+            + ", ".join(
+                f"{name} = {text}"
+                for name, text in zip(("r_m", "velocity", "temperature_K"), lists, strict=True)
+            )
+            + " }"
+        )
 
     allowed = 'must be "flat", "developed" or { file = "inlet.csv" }'
     example = '"flat"'
@@ -141,14 +175,31 @@ class Stream(Part):
 
     fluid: Annotated[str, Material("its fluid: a [fluid.NAME] of the case or a built-in one", sample="water")]
     inlet_temperature: Annotated[float, Quantity("temperature at which it comes in", "temperature")]
-    mass_flow: Annotated[float | None, Quantity("flow as mass per time", "mass_flow", at_least=0, instead=_AGAINST_Z)] = None
-    volume_flow: Annotated[
-        float | None, Quantity("flow as volume per time, at inlet temperature and outlet pressure", "volume_flow", at_least=0, instead=_AGAINST_Z)
+    mass_flow: Annotated[
+        float | None, Quantity("flow as mass per time", "mass_flow", at_least=0, instead=_AGAINST_Z)
     ] = None
-    mean_velocity: Annotated[float | None, Quantity("flow as mean velocity at the inlet", "velocity", at_least=0, instead=_AGAINST_Z)] = None
-    reynolds: Annotated[float | None, Number("flow as Reynolds number of the bore at inlet state", at_least=0, sample=500)] = None
+    volume_flow: Annotated[
+        float | None,
+        Quantity(
+            "flow as volume per time, at inlet temperature and outlet pressure",
+            "volume_flow",
+            at_least=0,
+            instead=_AGAINST_Z,
+        ),
+    ] = None
+    mean_velocity: Annotated[
+        float | None,
+        Quantity("flow as mean velocity at the inlet", "velocity", at_least=0, instead=_AGAINST_Z),
+    ] = None
+    reynolds: Annotated[
+        float | None, Number("flow as Reynolds number of the bore at inlet state", at_least=0, sample=500)
+    ] = None
     inlet_profile: Annotated[
-        str | FileProfile, Profile("shape of the velocity at the inlet: flat, developed, or from a file with r_m, velocity, temperature_K")
+        str | FileProfile,
+        Profile(
+            "shape of the velocity at the inlet: flat, developed, or from a file with r_m, velocity, "
+            "temperature_K"
+        ),
     ] = "flat"
     direction: Annotated[str, Choice("the way it flows along z", ("+z", "-z"))] = "+z"
     outlet_pressure: Annotated[
@@ -178,7 +229,8 @@ Stream.displaces = {flow: tuple(other for other in Stream.FLOWS if other != flow
 # ------------------------------------------------------------------------------------------------ materials
 
 _OUTSIDE_RANGE = Choice(
-    "what to do where a table is left: refuse the answer, hold the end value, or extend it in a straight line",
+    "what to do where a table is left: refuse the answer, hold the end value, or extend it in a "
+    "straight line",
     ("refuse", "hold", "extend"),
 )
 
@@ -189,7 +241,15 @@ class Fluid(Part):
     density: Annotated[Law, Property("density", "density", above=0)]
     specific_heat: Annotated[Law, Property("specific heat at constant pressure", "specific_heat", above=0)]
     conductivity: Annotated[Law, Property("thermal conductivity", "conductivity", above=0)]
-    viscosity: Annotated[Law, Property("dynamic viscosity; tables are interpolated in its logarithm", "viscosity", above=0, logarithmic=True)]
+    viscosity: Annotated[
+        Law,
+        Property(
+            "dynamic viscosity; tables are interpolated in its logarithm",
+            "viscosity",
+            above=0,
+            logarithmic=True,
+        ),
+    ]
     outside_range: Annotated[str, _OUTSIDE_RANGE] = "refuse"
 
     not_yet = {
@@ -223,15 +283,27 @@ class Conductivity(Property):
         problems = []
         read = {}
         # nothing along is a wall that only resists across; nothing across would cut the bore off
-        for name, key in (("r", Property(self.meaning, self.kind, above=0)), ("z", Property(self.meaning, self.kind, at_least=0))):
+        for name, key in (
+            ("r", Property(self.meaning, self.kind, above=0)),
+            ("z", Property(self.meaning, self.kind, at_least=0)),
+        ):
             if name not in value:
-                problems.append(keys.Problem(value, f"needs `{name}`", 'Write { r = "0.3 W/m/K", z = "2 W/m/K" }.'))
+                problems.append(
+                    keys.Problem(value, f"needs `{name}`", 'Write { r = "0.3 W/m/K", z = "2 W/m/K" }.')
+                )
                 continue
             try:
                 read[name] = key.read(value[name], in_file)
             except keys.BadValue as bad:
-                problems += [keys.Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems]
-        problems += [keys.Problem(value[name], "is not a known key", "", (name,)) for name in value if name not in ("r", "z")]
+                problems += [
+                    keys.Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like)
+                    for p in bad.problems
+                ]
+        problems += [
+            keys.Problem(value[name], "is not a known key", "", (name,))
+            for name in value
+            if name not in ("r", "z")
+        ]
         if problems:
             raise keys.BadValue(*problems)
         return AlongAcross(**read)
@@ -247,10 +319,15 @@ class Solid(Part):
     """A solid of the user's own."""
 
     conductivity: Annotated[
-        Law | AlongAcross, Conductivity("thermal conductivity, or { r = across, z = along }", "conductivity", above=0)
+        Law | AlongAcross,
+        Conductivity("thermal conductivity, or { r = across, z = along }", "conductivity", above=0),
     ]
-    density: Annotated[Law | None, Property("density; only a solve in time needs it", "density", above=0)] = None
-    specific_heat: Annotated[Law | None, Property("specific heat; only a solve in time needs it", "specific_heat", above=0)] = None
+    density: Annotated[Law | None, Property("density; only a solve in time needs it", "density", above=0)] = (
+        None
+    )
+    specific_heat: Annotated[
+        Law | None, Property("specific heat; only a solve in time needs it", "specific_heat", above=0)
+    ] = None
     outside_range: Annotated[str, _OUTSIDE_RANGE] = "refuse"
 
     not_yet = {"highest_allowed": "a fact that cautions need"}
@@ -296,14 +373,16 @@ class UsedSolid:
 def _continued_down(law: Law) -> Law:
     """A built-in solid's table that begins at 300 K, as handbook tables do, continued straight to 240 K.
 
-    Otherwise a tube at 20 degC would leave it. Near 300 K such conductivities are straight lines to a few per cent
-    (common practice, no source).
+    Otherwise a tube at 20 degC would leave it. Near 300 K such conductivities are straight lines to a few
+    per cent (common practice, no source).
     """
     low, begins = 240.0, 300.0
     if not isinstance(law, laws.Table) or law.temperature[0] != begins:
         return law
     (T0, T1), (k0, k1) = law.temperature[:2], law.value[:2]
-    return laws.Table((low, *law.temperature), (k0 + (k1 - k0) * (low - T0) / (T1 - T0), *law.value), law.logarithmic)
+    return laws.Table(
+        (low, *law.temperature), (k0 + (k1 - k0) * (low - T0) / (T1 - T0), *law.value), law.logarithmic
+    )
 
 
 def _common_span(*of: Law) -> tuple[float, float]:
@@ -319,19 +398,39 @@ class Layer(Part):
 
     name: Annotated[str, Text("its name; left out, that of its stream or solid", name=True)] = ""
     stream: Annotated[str | None, Text("the stream that flows in it", name=True, sample="water")] = None
-    solid: Annotated[str | None, Material("its solid: a [solid.NAME] of the case or a built-in one", sample="copper")] = None
-    void: Annotated[bool, Switch("a perfect insulator: no heat crosses it")] = False
-    diameter: Annotated[float | None, Quantity("outer diameter of the layer on the axis (the bore)", "length", above=0)] = None
-    thickness: Annotated[float | None, Quantity(
-            "thickness of a layer that is not on the axis", "length", above=0,
-            instead="Give the thickness of this layer alone, or its `outer_diameter`.",
-        ),] = None
-    outer_diameter: Annotated[float | None, Quantity("outer diameter, instead of the thickness", "length", above=0)] = None
-    contact_resistance: Annotated[
-        float | None, Quantity("thermal resistance at its inner face, fouling on a wetted face too", "contact_resistance", at_least=0)
+    solid: Annotated[
+        str | None, Material("its solid: a [solid.NAME] of the case or a built-in one", sample="copper")
     ] = None
-    heat_per_volume: Annotated[float | None, Quantity("heat generated in it, per volume", "heat_per_volume")] = None
-    cells_across: Annotated[int | None, Number("number of cells across it", whole=True, at_least=1, at_most=2000, sample=12)] = None
+    void: Annotated[bool, Switch("a perfect insulator: no heat crosses it")] = False
+    diameter: Annotated[
+        float | None, Quantity("outer diameter of the layer on the axis (the bore)", "length", above=0)
+    ] = None
+    thickness: Annotated[
+        float | None,
+        Quantity(
+            "thickness of a layer that is not on the axis",
+            "length",
+            above=0,
+            instead="Give the thickness of this layer alone, or its `outer_diameter`.",
+        ),
+    ] = None
+    outer_diameter: Annotated[
+        float | None, Quantity("outer diameter, instead of the thickness", "length", above=0)
+    ] = None
+    contact_resistance: Annotated[
+        float | None,
+        Quantity(
+            "thermal resistance at its inner face, fouling on a wetted face too",
+            "contact_resistance",
+            at_least=0,
+        ),
+    ] = None
+    heat_per_volume: Annotated[
+        float | None, Quantity("heat generated in it, per volume", "heat_per_volume")
+    ] = None
+    cells_across: Annotated[
+        int | None, Number("number of cells across it", whole=True, at_least=1, at_most=2000, sample=12)
+    ] = None
 
     displaces = {
         "thickness": ("outer_diameter",),
@@ -360,11 +459,14 @@ class Layer(Part):
 
 
 def layer_name(data: Mapping) -> str:
-    """The name of a layer given as a table: its own, or that of its stream or solid without signs a path cannot hold."""
+    """The name of a layer given as a table: its own, or its stream's or solid's in signs a path can hold."""
     given = data.get("name")
     if isinstance(given, str):
         return given
-    content = next((data[what] for what in ("stream", "solid") if isinstance(data.get(what), str)), "void" if data.get("void") else "layer")
+    content = next(
+        (data[what] for what in ("stream", "solid") if isinstance(data.get(what), str)),
+        "void" if data.get("void") else "layer",
+    )
     plain = "".join(mark if mark.isascii() and (mark.isalnum() or mark in " -_") else " " for mark in content)
     return " ".join(plain.split()) or "layer"
 
@@ -376,21 +478,41 @@ class Outside(Part):
     """
 
     insulated: Annotated[bool, Switch("no heat crosses")] = False
-    temperature: Annotated[float | ZTable | None, Along("prescribed temperature: a plate, a clamp, condensing steam", "temperature")] = None
+    temperature: Annotated[
+        float | ZTable | None,
+        Along("prescribed temperature: a plate, a clamp, condensing steam", "temperature"),
+    ] = None
     contact_resistance: Annotated[
-        float | ZTable | None, Along("thermal resistance between that temperature and the surface", "contact_resistance", at_least=0)
+        float | ZTable | None,
+        Along(
+            "thermal resistance between that temperature and the surface", "contact_resistance", at_least=0
+        ),
     ] = None
     heat_flux: Annotated[float | ZTable | None, Along("heat brought in per area", "heat_flux")] = None
     heat: Annotated[float | None, Quantity("heat brought in, total over the section", "heat")] = None
-    heat_per_length: Annotated[float | ZTable | None, Along("heat brought in per length", "heat_per_length")] = None
-    film_coefficient: Annotated[
-        float | ZTable | None, Along("heat transfer coefficient to the surroundings at `ambient`", "film_coefficient", at_least=0)
+    heat_per_length: Annotated[
+        float | ZTable | None, Along("heat brought in per length", "heat_per_length")
     ] = None
-    ambient: Annotated[float | ZTable | None, Along("temperature of the surroundings, with `film_coefficient`", "temperature")] = None
+    film_coefficient: Annotated[
+        float | ZTable | None,
+        Along("heat transfer coefficient to the surroundings at `ambient`", "film_coefficient", at_least=0),
+    ] = None
+    ambient: Annotated[
+        float | ZTable | None,
+        Along("temperature of the surroundings, with `film_coefficient`", "temperature"),
+    ] = None
 
     HEATS: ClassVar[tuple[str, ...]] = ("heat_flux", "heat", "heat_per_length")
     displaces = {
-        "insulated": ("temperature", "contact_resistance", "heat_flux", "heat", "heat_per_length", "film_coefficient", "ambient"),
+        "insulated": (
+            "temperature",
+            "contact_resistance",
+            "heat_flux",
+            "heat",
+            "heat_per_length",
+            "film_coefficient",
+            "ambient",
+        ),
         "temperature": ("insulated", "heat_flux", "heat", "heat_per_length", "film_coefficient", "ambient"),
         "contact_resistance": ("insulated",),
         "heat_flux": ("insulated", "temperature", "contact_resistance", "heat", "heat_per_length"),
@@ -414,15 +536,23 @@ class EndFace(Outside):
 
     temperature: Annotated[float | None, Quantity("prescribed temperature", "temperature")] = None
     contact_resistance: Annotated[
-        float | None, Quantity("thermal resistance between that temperature and the face", "contact_resistance", at_least=0)
+        float | None,
+        Quantity(
+            "thermal resistance between that temperature and the face", "contact_resistance", at_least=0
+        ),
     ] = None
     heat_flux: Annotated[float | None, Quantity("heat brought in per area", "heat_flux")] = None
     heat: Annotated[float | None, Quantity("heat brought in, total over the face", "heat")] = None
     heat_per_length: Annotated[None, Quantity("not for an end face", "heat_per_length")] = None
     film_coefficient: Annotated[
-        float | None, Quantity("heat transfer coefficient to the surroundings at `ambient`", "film_coefficient", at_least=0)
+        float | None,
+        Quantity(
+            "heat transfer coefficient to the surroundings at `ambient`", "film_coefficient", at_least=0
+        ),
     ] = None
-    ambient: Annotated[float | None, Quantity("temperature of the surroundings, with `film_coefficient`", "temperature")] = None
+    ambient: Annotated[
+        float | None, Quantity("temperature of the surroundings, with `film_coefficient`", "temperature")
+    ] = None
 
 
 class Section(Part):
@@ -432,11 +562,19 @@ class Section(Part):
     length: Annotated[float, Quantity("its length along z", "length", above=0)]
     outside: Outside
     generated: Annotated[
-        dict[str, float], PerName("heat generated in the named layer within this section", Quantity("heat", "heat"), name="LAYER")
+        dict[str, float],
+        PerName(
+            "heat generated in the named layer within this section", Quantity("heat", "heat"), name="LAYER"
+        ),
     ] = {}
     joint_length: Annotated[
         float | None,
-        Quantity("length of the linear ramp between two prescribed temperatures, centred on the joint at this section's start", "length", above=0),
+        Quantity(
+            "length of the linear ramp between two prescribed temperatures, centred on the joint at "
+            "this section's start",
+            "length",
+            above=0,
+        ),
     ] = None
     layer: tuple[Layer, ...] | None = None
 
@@ -477,7 +615,13 @@ class Sensor(Part):
     """A place to read."""
 
     z: Annotated[float, Quantity("distance from the tube's start", "length", at_least=0)]
-    at: Annotated[str, Text('where in the cross-section: "outside", "axis", "bulk", "LAYER inner" or "LAYER outer"', sample="outside")]
+    at: Annotated[
+        str,
+        Text(
+            'where in the cross-section: "outside", "axis", "bulk", "LAYER inner" or "LAYER outer"',
+            sample="outside",
+        ),
+    ]
 
     not_yet = {"plus_minus": "the error of a sensor"}
 
@@ -485,31 +629,57 @@ class Sensor(Part):
 class MeshChoice(Part):
     """The mesh, where the tool's own choice is not wanted."""
 
-    at_most: Annotated[int, Number("cells in all", whole=True, at_least=100, at_most=5_000_000, sample=40000)] = 40000
+    at_most: Annotated[
+        int, Number("cells in all", whole=True, at_least=100, at_most=5_000_000, sample=40000)
+    ] = 40000
     radial: Annotated[
-        int | None, Number("cells from the axis to the bore's wall, other layers in proportion", whole=True, at_least=2, at_most=2000, sample=48)
+        int | None,
+        Number(
+            "cells from the axis to the bore's wall, other layers in proportion",
+            whole=True,
+            at_least=2,
+            at_most=2000,
+            sample=48,
+        ),
     ] = None
-    axial: Annotated[int | None, Number("cells along the tube", whole=True, at_least=2, at_most=100_000, sample=600)] = None
+    axial: Annotated[
+        int | None, Number("cells along the tube", whole=True, at_least=2, at_most=100_000, sample=600)
+    ] = None
     stretch_to_walls: Annotated[
         float | None, Number("largest over smallest cell across a layer", at_least=1, at_most=1000, sample=4)
     ] = None
     stretch_to_ends: Annotated[
-        float | None, Number("largest over smallest cell along a section, towards inlets, joints and heater edges", at_least=1, at_most=10_000, sample=20)
+        float | None,
+        Number(
+            "largest over smallest cell along a section, towards inlets, joints and heater edges",
+            at_least=1,
+            at_most=10_000,
+            sample=20,
+        ),
     ] = None
 
 
 class Physics(Part):
     """Switches for single effects."""
 
-    viscous_heating: Annotated[bool, Switch("heat from friction, always together with the work of pressure")] = True
+    viscous_heating: Annotated[
+        bool, Switch("heat from friction, always together with the work of pressure")
+    ] = True
 
-    not_yet = {"buoyancy": "free convection in a vertical tube", "slip": "slip at the wall", "steady": "a solve in time"}
+    not_yet = {
+        "buoyancy": "free convection in a vertical tube",
+        "slip": "slip at the wall",
+        "steady": "a solve in time",
+    }
 
 
 class SolveChoice(Part):
     """When the solve is good enough."""
 
-    stop_below: Annotated[float, Number("normalised residual at which the solve ends", at_least=1e-13, at_most=1e-2, sample=1e-8)] = 1e-8
+    stop_below: Annotated[
+        float,
+        Number("normalised residual at which the solve ends", at_least=1e-13, at_most=1e-2, sample=1e-8),
+    ] = 1e-8
 
     not_yet = {"accuracy": "refining the mesh until the error bars are small enough"}
 
@@ -519,7 +689,9 @@ class ResultsChoice(Part):
 
     stations: Annotated[
         tuple[float, ...],
-        ListOf("places of radial profiles, from the tube's start", Quantity("distance", "length", at_least=0)),
+        ListOf(
+            "places of radial profiles, from the tube's start", Quantity("distance", "length", at_least=0)
+        ),
     ] = ()
 
 
@@ -531,7 +703,9 @@ class Case(Part):
     """
 
     title: Annotated[str, Text("what the case is about", sample="Heated water tube")] = "untitled"
-    z_axis: Annotated[str, Choice("where z points; gravity acts along z only when vertical", ("horizontal", "up", "down"))] = "horizontal"
+    z_axis: Annotated[
+        str, Choice("where z points; gravity acts along z only when vertical", ("horizontal", "up", "down"))
+    ] = "horizontal"
     stream: dict[str, Stream]
     fluid: dict[str, Fluid] = {}
     solid: dict[str, Solid] = {}
@@ -578,7 +752,9 @@ class Case(Part):
 
     def __eq__(self, other: object) -> bool:
         """Equal when every value is: how the values were written does not count."""
-        return isinstance(other, Case) and all(getattr(self, name) == getattr(other, name) for name in type(self).model_fields)
+        return isinstance(other, Case) and all(
+            getattr(self, name) == getattr(other, name) for name in type(self).model_fields
+        )
 
     __hash__ = None  # type: ignore[assignment]
 
@@ -623,9 +799,15 @@ class Case(Part):
         if own is None:
             built_in = FLUIDS[name].at_pressure(used.outlet_pressure)
             return UsedFluid(
-                name, built_in.density, built_in.specific_heat, built_in.conductivity, built_in.viscosity,
-                "refuse", built_in.is_gas, built_in.source,
-            )  # fmt: skip
+                name,
+                built_in.density,
+                built_in.specific_heat,
+                built_in.conductivity,
+                built_in.viscosity,
+                "refuse",
+                built_in.is_gas,
+                built_in.source,
+            )
         four = (own.density, own.specific_heat, own.conductivity, own.viscosity)
         is_gas = float(own.density(used.inlet_temperature)) < GAS_BELOW_DENSITY
         if own.outside_range == "extend":
@@ -639,12 +821,24 @@ class Case(Part):
             built_in = SOLIDS[name]
             conductivity = _continued_down(built_in.conductivity)
             return UsedSolid(
-                name, conductivity, conductivity, built_in.density, built_in.specific_heat, "refuse", built_in.source
+                name,
+                conductivity,
+                conductivity,
+                built_in.density,
+                built_in.specific_heat,
+                "refuse",
+                built_in.source,
             )
-        across, along = (own.conductivity.r, own.conductivity.z) if isinstance(own.conductivity, AlongAcross) else (own.conductivity,) * 2
+        across, along = (
+            (own.conductivity.r, own.conductivity.z)
+            if isinstance(own.conductivity, AlongAcross)
+            else (own.conductivity,) * 2
+        )
         if own.outside_range == "extend":
             across, along = across.extended(), along.extended()
-        return UsedSolid(name, across, along, own.density, own.specific_heat, own.outside_range, "given in the case")
+        return UsedSolid(
+            name, across, along, own.density, own.specific_heat, own.outside_range, "given in the case"
+        )
 
     def layers_of(self, section: Section) -> tuple[Layer, ...]:
         """The stack of a section: its own, or the case's."""

@@ -1,4 +1,4 @@
-"""Dotted paths into a case: find, set and list. Sections and layers go by name: "section.jacket.outside.ambient"."""
+"""Dotted paths into a case: find, set and list. Sections and layers go by name: "section.jacket.length"."""
 
 from __future__ import annotations
 
@@ -28,7 +28,9 @@ def steps_of(path: str) -> list[str]:
             name += mark
     steps.append(name.strip())
     if quoted or not all(steps):
-        raise bad_input(path, None, "is not a path", "Write names with dots between them, such as stream.water.mass_flow.")
+        raise bad_input(
+            path, None, "is not a path", "Write names with dots between them, such as stream.water.mass_flow."
+        )
     return steps
 
 
@@ -127,14 +129,20 @@ def _put(tree: Table, path: str, value: Any, set_now: list[list[str]]) -> None:
                     raise _no_such(path, str(place[0]), step, list(here))
                 here[step] = {}
             elif not isinstance(here[step], dict | list):
-                raise bad_input(path, value, f"goes into `{'.'.join(steps[: steps.index(step) + 1])}`, which is a value, not a table")
+                raise bad_input(
+                    path,
+                    value,
+                    f"goes into `{'.'.join(steps[: steps.index(step) + 1])}`, which is a value, not a table",
+                )
             here, place = here[step], (*place, step)
     last = steps[-1]
     if isinstance(here, list):
         kind = str(place[-1])
         names = [_entry_name(kind, entry, i) for i, entry in enumerate(here)]
-        raise _no_such(path, kind, last, names) if last not in names else bad_input(
-            path, value, f"is a whole {kind}", "Name the key in it that is to change."
+        raise (
+            _no_such(path, kind, last, names)
+            if last not in names
+            else bad_input(path, value, f"is a whole {kind}", "Name the key in it that is to change.")
         )
     part = part_at(place)
     if part is not None and last not in part.model_fields and last not in part.not_yet:
@@ -153,23 +161,33 @@ def _put(tree: Table, path: str, value: Any, set_now: list[list[str]]) -> None:
 def _no_such(path: str, kind: str, name: str, names: list[str]) -> InputError:
     near = keys.nearest(name, names)
     listed = ", ".join(names)
-    instead = f"Write {near}." if near else f"There are: {listed}." if listed else f"The case has no {kind} of its own there."
+    instead = (
+        f"Write {near}."
+        if near
+        else f"There are: {listed}."
+        if listed
+        else f"The case has no {kind} of its own there."
+    )
     return bad_input(path, None, f"names no {kind} of the case", instead)
 
 
 def _unknown(path: str, name: str, part: type[Part]) -> InputError:
     near = keys.nearest(name, part.model_fields)
     return bad_input(
-        path, None, f"is not a key of a case: `{name}` is not known there",
+        path,
+        None,
+        f"is not a key of a case: `{name}` is not known there",
         f"Write `{near}`." if near else f"Known there: {', '.join(part.model_fields)}.",
-    )  # fmt: skip
+    )
 
 
 def setting(text: str) -> tuple[str, Any]:
-    """ "stream.syrup.mass_flow=4 g/s" -> (path, value): split at the first `=`, the value read as TOML if it can be."""
+    """ "stream.syrup.mass_flow=4 g/s" -> (path, value), split at the first `=`."""
     path, equals, value = text.partition("=")
     if not equals or not path.strip():
-        raise bad_input("", None, f'"{text}" is not KEY=VALUE', 'Write it like "stream.water.mass_flow=4 g/s".')
+        raise bad_input(
+            "", None, f'"{text}" is not KEY=VALUE', 'Write it like "stream.water.mass_flow=4 g/s".'
+        )
     try:
         read = tomllib.loads(f"value = {value.strip()}\n")
         if list(read) == ["value"]:

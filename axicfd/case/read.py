@@ -15,7 +15,7 @@ from pydantic import BaseModel, ValidationError
 
 from axicfd.case import keys, paths
 from axicfd.case.lines import lines_of
-from axicfd.case.model import Case, Part, Stream, is_one_condition, layer_name
+from axicfd.case.model import Case, Outside, Part, Stream, is_one_condition, layer_name
 from axicfd.errors import InputError, Mistake
 
 Place = tuple[str | int, ...]  # the way to a value in the tree of a case: names of tables, indices of lists
@@ -45,7 +45,7 @@ class Source:
         return Mistake(self.file, None, key, value, allowed, instead)
 
 
-def load(case: str | os.PathLike, set: Mapping[str, Any] | None = None) -> Case:  # noqa: A002
+def load(case: str | os.PathLike, set: Mapping[str, Any] | None = None) -> Case:
     """The case in a file, in the case.toml of a results folder, or in text that holds line breaks.
 
     set : values to change, as `Case.replace` takes them, but with units as in the file
@@ -60,7 +60,9 @@ def load(case: str | os.PathLike, set: Mapping[str, Any] | None = None) -> Case:
     if set:
         before = tree
         tree = paths.replaced(tree, set)
-        settings = [place for key in set if (place := paths.place_of(tree, key) or paths.place_of(before, key))]
+        settings = [
+            place for key in set if (place := paths.place_of(tree, key) or paths.place_of(before, key))
+        ]
     _find_files(tree, directory)
     return build(tree, Source(file, lines_of(text), tuple(settings)))
 
@@ -78,7 +80,18 @@ def _text_of(case: str | os.PathLike) -> tuple[str, str | None, Path]:
     if path.is_dir():
         inside = path / "case.toml"
         if not inside.is_file():
-            raise InputError([Mistake(str(path), None, "", None, "is a folder without a case.toml in it", "Name a case file.")])
+            raise InputError(
+                [
+                    Mistake(
+                        str(path),
+                        None,
+                        "",
+                        None,
+                        "is a folder without a case.toml in it",
+                        "Name a case file.",
+                    )
+                ]
+            )
         path = inside
     try:
         return path.read_text(encoding="utf-8-sig"), str(path), path.parent
@@ -89,9 +102,13 @@ def _text_of(case: str | os.PathLike) -> tuple[str, str | None, Path]:
         hint = f"Did you mean {folder / near}?" if near else "`axicfd new NAME` writes a case to start from."
         raise InputError([Mistake(str(path), None, "", None, "does not exist", hint)]) from None
     except UnicodeDecodeError:
-        raise InputError([Mistake(str(path), None, "", None, "is not UTF-8 text", "Save it as UTF-8.")]) from None
+        raise InputError(
+            [Mistake(str(path), None, "", None, "is not UTF-8 text", "Save it as UTF-8.")]
+        ) from None
     except OSError as why:
-        raise InputError([Mistake(str(path), None, "", None, f"cannot be read: {why.strerror or why}")]) from None
+        raise InputError(
+            [Mistake(str(path), None, "", None, f"cannot be read: {why.strerror or why}")]
+        ) from None
 
 
 def _syntax_mistake(file: str | None, text: str, why: str) -> Mistake:
@@ -107,10 +124,17 @@ def _syntax_mistake(file: str | None, text: str, why: str) -> Mistake:
     read = text.splitlines()[line - 1].strip() if line and line <= len(text.splitlines()) else ""
     instead = ""
     after = read.partition("=")[2].strip()
-    if after and after[0] not in "\"'[{" and any(mark.isalpha() for mark in after) and "Cannot overwrite" not in why:
+    if (
+        after
+        and after[0] not in "\"'[{"
+        and any(mark.isalpha() for mark in after)
+        and "Cannot overwrite" not in why
+    ):
         instead = f'A quantity or a word stands in quotes: "{after.partition("#")[0].strip()}".'
     elif "Cannot overwrite" in why or "twice" in why or "declared" in why:
-        instead = "The same key or table stands twice; for several sections or layers write [[section]], [[layer]]."
+        instead = (
+            "The same key or table stands twice; for several sections or layers write [[section]], [[layer]]."
+        )
     allowed = f"is not TOML: {why[:1].lower()}{why[1:]}" + (f" in `{read}`" if read else "")
     return Mistake(file, line, "", None, allowed, instead)
 
@@ -130,7 +154,11 @@ def _find_files(tree: dict, directory: Path) -> None:
 def plain(data: Any) -> Any:
     """A copy made of dicts, lists and values only; keys whose value is None are left out."""
     if isinstance(data, BaseModel):
-        return {name: plain(getattr(data, name)) for name in type(data).model_fields if name in data.model_fields_set}
+        return {
+            name: plain(getattr(data, name))
+            for name in type(data).model_fields
+            if name in data.model_fields_set
+        }
     if isinstance(data, Mapping):
         return {key: plain(value) for key, value in data.items() if value is not None}
     if isinstance(data, list | tuple) and type(data) in (list, tuple):
@@ -162,7 +190,9 @@ def as_input_error(found: ValidationError, tree: Any, source: Source, others: li
         if kind == "bad_value":
             for problem in error["ctx"]["bad"].problems:
                 instead = _right_key(part, str(place[-1]), problem) or problem.instead
-                mistakes.append(source.mistake(tree, place + problem.inner, problem.value, problem.allowed, instead))
+                mistakes.append(
+                    source.mistake(tree, place + problem.inner, problem.value, problem.allowed, instead)
+                )
         elif kind == "missing":
             mistakes.append(_missing(tree, place, part, source))
         elif kind == "extra_forbidden":
@@ -170,8 +200,8 @@ def as_input_error(found: ValidationError, tree: Any, source: Source, others: li
         else:
             mistakes.append(_wrong_shape(tree, place, value, source))
     # keys right under [stream], where a name is missing, are one mistake and not many
-    nameless = {_NAMELESS: mistake for mistake in reversed(mistakes) if mistake.allowed == _NAMELESS}
-    mistakes = [mistake for mistake in mistakes if mistake.allowed != _NAMELESS] + list(nameless.values())
+    nameless = [mistake for mistake in mistakes if mistake.allowed == _NAMELESS]
+    mistakes = [mistake for mistake in mistakes if mistake.allowed != _NAMELESS] + nameless[:1]
     unique = {(mistake.line, mistake.key, mistake.allowed): mistake for mistake in mistakes}
     return InputError(unique.values())
 
@@ -234,7 +264,9 @@ def _missing(tree: Any, place: Place, part: type[Part] | None, source: Source) -
     name = str(place[-1])
     key = declared(part, name) if part else None
     if key:
-        return source.mistake(tree, place, None, f"is missing; it {key.allowed}", f"Write {name} = {key.example}.")
+        return source.mistake(
+            tree, place, None, f"is missing; it {key.allowed}", f"Write {name} = {key.example}."
+        )
     instead = {
         "stream": "Write a table [stream.NAME] with its fluid, inlet temperature and flow.",
         "section": "Write at least one [[section]] with `length` and `outside`.",
@@ -246,34 +278,54 @@ def _missing(tree: Any, place: Place, part: type[Part] | None, source: Source) -
 def _unknown(tree: Any, place: Place, value: Any, part: type[Part] | None, source: Source) -> Mistake:
     name = str(place[-1])
     if part and name in part.not_yet:
-        return source.mistake(tree, place, value, f"is not available yet ({part.not_yet[name]})", "Take it out.")
+        return source.mistake(
+            tree, place, value, f"is not available yet ({part.not_yet[name]})", "Take it out."
+        )
     table = _table_words(place[:-1])
     if place[:-1] and name in Case.model_fields and declared(Case, name):
-        return source.mistake(tree, place, value, f"stands inside {table}", "Move it above the first [table] of the file.")
+        return source.mistake(
+            tree, place, value, f"stands inside {table}", "Move it above the first [table] of the file."
+        )
     known = [*part.model_fields, *part.not_yet] if part else []
     if part is Case and name in Stream.model_fields:
-        return source.mistake(tree, place, value, "stands above the first table", f"Move it into {_home_of(name)}.")
+        return source.mistake(
+            tree, place, value, "stands above the first table", f"Move it into {_home_of(name)}."
+        )
     near = keys.nearest(name, known)
     if near:
         return source.mistake(tree, place, value, "is not a known key", f"Write `{near}`.")
     above = keys.nearest(name, [top for top in Case.model_fields if declared(Case, top)])
     if above and place[:-1] and not isinstance(value, dict):
         return source.mistake(
-            tree, place, value, f"is not a key of {table}", f"If `{above}` is meant, move it above the first [table]."
+            tree,
+            place,
+            value,
+            f"is not a key of {table}",
+            f"If `{above}` is meant, move it above the first [table].",
         )
     home = _home_of(name)
     if home:
         return source.mistake(tree, place, value, f"is not a key of {table}", f"It belongs into {home}.")
     listed = ", ".join(part.model_fields) if part else ""
-    return source.mistake(tree, place, value, "is not a known key", f"Known here: {listed}." if listed else "")
+    return source.mistake(
+        tree, place, value, "is not a known key", f"Known here: {listed}." if listed else ""
+    )
 
 
 _NAMELESS = "must be a table with a name"
 
 _HOMES = {
-    "stream": "[stream.NAME]", "fluid": "[fluid.NAME]", "solid": "[solid.NAME]", "layer": "[[layer]]", "section": "[[section]]",
-    "sensor": "[sensor.NAME]", "mesh": "[mesh]", "physics": "[physics]", "solve": "[solve]", "results": "[results]",
-}  # fmt: skip
+    "stream": "[stream.NAME]",
+    "fluid": "[fluid.NAME]",
+    "solid": "[solid.NAME]",
+    "layer": "[[layer]]",
+    "section": "[[section]]",
+    "sensor": "[sensor.NAME]",
+    "mesh": "[mesh]",
+    "physics": "[physics]",
+    "solve": "[solve]",
+    "results": "[results]",
+}
 
 
 def _home_of(name: str) -> str:
@@ -282,9 +334,7 @@ def _home_of(name: str) -> str:
         part = _part_in(Case.model_fields[table].annotation)
         if part and name in part.model_fields:
             return words
-        if table == "section" and name in typing.cast(Any, _part_in(part.model_fields["outside"].annotation)).model_fields:  # type: ignore[union-attr]
-            return "`outside` of a [[section]]"
-    return ""
+    return "`outside` of a [[section]]" if name in Outside.model_fields else ""
 
 
 def _table_words(place: Place) -> str:
@@ -299,12 +349,29 @@ def _wrong_shape(tree: Any, place: Place, value: Any, source: Source) -> Mistake
     first = str(place[0]) if place else ""
     if first in ("section", "layer") or "layer" in place:
         name = ".".join(str(step) for step in place if isinstance(step, str))
-        return source.mistake(tree, place, value, "must be a list of tables", f"Write [[{name}]] above each one.")
+        return source.mistake(
+            tree, place, value, "must be a list of tables", f"Write [[{name}]] above each one."
+        )
     if first in ("stream", "fluid", "solid", "sensor") and len(place) <= 2:
         return source.mistake(tree, place, value, _NAMELESS, f"Write [{first}.NAME] above its keys.")
     if "outside" in place or first == "ends":
-        return source.mistake(tree, place, value, "must be a table", "Write it in braces: { insulated = true }.")
-    return source.mistake(tree, place, value, "must be a table", f"Write [{first}] above its keys." if first else "")
+        return source.mistake(
+            tree, place, value, "must be a table", "Write it in braces: { insulated = true }."
+        )
+    return source.mistake(
+        tree, place, value, "must be a table", f"Write [{first}] above its keys." if first else ""
+    )
 
 
-__all__ = ["InputError", "Source", "as_input_error", "build", "declared", "layer_name", "load", "part_at", "plain", "with_names"]
+__all__ = [
+    "InputError",
+    "Source",
+    "as_input_error",
+    "build",
+    "declared",
+    "layer_name",
+    "load",
+    "part_at",
+    "plain",
+    "with_names",
+]

@@ -4,7 +4,10 @@ from __future__ import annotations
 
 from axicfd.case.keys import toml_text
 
-_TEXT = '''\
+# ruff: noqa: E501
+# The lines below are laid out as the user sees them.
+
+_TEXT = """\
 # What is the outlet temperature of a water tube with a heater around it, and how hot does its wall get?
 #
 # A quantity is text with a unit: "6 mm", "20 degC", "4 g/s", "1.2 kW/m^2". Lines that begin with # are explanations,
@@ -97,7 +100,7 @@ at_most = 40000                     # cells in all
 
 [solve]
 stop_below = 1e-8                   # the residual at which the solve ends
-'''
+"""
 
 
 def starter(title: str) -> str:

@@ -1,4 +1,4 @@
-"""`Case` -> text of a case file, complete: every key that acts is written, in the user's own units where he gave some.
+"""`Case` -> text of a case file, complete, in the user's own units where some were given.
 
 Reading the text again gives an equal case: a number is written with as many digits as lead back to it.
 """
@@ -70,7 +70,10 @@ def _layer(header: str, layer: Layer, raw: Any) -> str:
 
 def _section(section: Section, raw: Any) -> list[str]:
     leave_out = () if section.generated else ("generated",)
-    lines = [*_pairs(section, raw, leave_out), f"outside = {_inline(section.outside, _inside(raw, 'outside'))}"]
+    lines = [
+        *_pairs(section, raw, leave_out),
+        f"outside = {_inline(section.outside, _inside(raw, 'outside'))}",
+    ]
     blocks = [_block("[[section]]", lines)]
     for i, layer in enumerate(section.layer or ()):
         blocks.append(_layer("[[section.layer]]", layer, _inside(raw, "layer", i)))
