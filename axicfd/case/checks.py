@@ -645,7 +645,7 @@ def _end_joints(case: Case, end: str, section: Section, k: int, found: _Findings
             )
 
 
-# ---------------------------------------------------------------------------------------- places, inlets, mesh
+# --------------------------------------------------------------------------------------- places, inlets, mesh
 
 
 def _places(case: Case, sections: tuple[PlacedSection, ...], found: _Findings) -> None:

@@ -2,18 +2,16 @@
 
 from __future__ import annotations
 
-from axicfd.case.keys import toml_text
-
 # ruff: noqa: E501
 # The lines below are laid out as the user sees them.
 
-_TEXT = """\
+TEXT = """\
 # What is the outlet temperature of a water tube with a heater around it, and how hot does its wall get?
 #
 # A quantity is text with a unit: "6 mm", "20 degC", "4 g/s", "1.2 kW/m^2". Lines that begin with # are explanations,
 # or other ways of saying the same thing. `axicfd keys` lists all keys.
 
-title  = {title}
+title  = "Heated water tube"
 z_axis = "horizontal"               # or "up", "down"
 
 # ---- what flows ----------------------------------------------------------------------------------------------------
@@ -22,19 +20,19 @@ z_axis = "horizontal"               # or "up", "down"
 fluid             = "water"         # built in (`axicfd materials` lists them), or the NAME of a [fluid.NAME] below
 inlet_temperature = "20 degC"
 mass_flow         = "1.5 g/s"       # or one of: volume_flow = "90 mL/min", mean_velocity = "0.12 m/s", reynolds = 500
-inlet_profile     = "flat"          # or "developed", or {{ file = "inlet.csv" }} with columns r_m, velocity, temperature_K
+inlet_profile     = "flat"          # or "developed", or { file = "inlet.csv" } with columns r_m, velocity, temperature_K
 direction         = "+z"            # or "-z"
 outlet_pressure   = "1 atm"         # absolute
 
 # [fluid.oil]                       # a fluid of your own; each property is a constant or a law of temperature
 # density       = "880 kg/m^3"
 # specific_heat = "1900 J/kg/K"
-# conductivity  = {{ temperature = ["0 degC", "100 degC"], value = ["0.135 W/m/K", "0.128 W/m/K"] }}
-# viscosity     = {{ at = "20 degC", value = "0.1 Pa s", exponent = "0.03 1/K" }}   # value exp(-exponent (T - at))
+# conductivity  = { temperature = ["0 degC", "100 degC"], value = ["0.135 W/m/K", "0.128 W/m/K"] }
+# viscosity     = { at = "20 degC", value = "0.1 Pa s", exponent = "0.03 1/K" }   # value exp(-exponent (T - at))
 # outside_range = "refuse"          # where a table is left: "refuse", "hold" its end value, or "extend" it
 
 # [solid.liner]                     # a solid of your own
-# conductivity  = "0.25 W/m/K"      # or a law of temperature, or {{ r = "0.25 W/m/K", z = "1 W/m/K" }}
+# conductivity  = "0.25 W/m/K"      # or a law of temperature, or { r = "0.25 W/m/K", z = "1 W/m/K" }
 
 # ---- the layers, from the axis outward -----------------------------------------------------------------------------
 
@@ -54,32 +52,32 @@ thickness = "1 mm"                  # or outer_diameter = "6 mm"
 [[section]]
 name    = "lead-in"                 # long enough that the heater is not felt at the inlet
 length  = "100 mm"
-outside = {{ insulated = true }}
+outside = { insulated = true }
 
 [[section]]
 name    = "heater"
 length  = "300 mm"
-outside = {{ heat = "40 W" }}         # total over the section. Other choices:
-# outside = {{ heat_flux = "7 kW/m^2" }}                                 per outer area
-# outside = {{ heat_per_length = "130 W/m" }}
-# outside = {{ film_coefficient = "900 W/m^2/K", ambient = "60 degC" }}  may stand beside one of the heats
-# outside = {{ temperature = "60 degC", contact_resistance = "2e-4 m^2 K/W" }}
-# a value may change along the section: heat_flux = {{ z = ["0 mm", "300 mm"], value = ["5 kW/m^2", "9 kW/m^2"] }}
-# generated = {{ tube = "40 W" }}     # heat generated in the named layer within this section
+outside = { heat = "40 W" }         # total over the section. Other choices:
+# outside = { heat_flux = "7 kW/m^2" }                                 per outer area
+# outside = { heat_per_length = "130 W/m" }
+# outside = { film_coefficient = "900 W/m^2/K", ambient = "60 degC" }  may stand beside one of the heats
+# outside = { temperature = "60 degC", contact_resistance = "2e-4 m^2 K/W" }
+# a value may change along the section: heat_flux = { z = ["0 mm", "300 mm"], value = ["5 kW/m^2", "9 kW/m^2"] }
+# generated = { tube = "40 W" }     # heat generated in the named layer within this section
 # joint_length = "2 mm"             # a ramp where the prescribed temperatures of two sections meet
 
 [[section]]
 name    = "lead-out"
 length  = "200 mm"
-outside = {{ insulated = true }}
+outside = { insulated = true }
 
 [ends]                              # the end faces of the solids
-first = {{ insulated = true }}        # or a condition as in `outside`; or one per layer: first.tube = {{ ... }}
-last  = {{ insulated = true }}
+first = { insulated = true }        # or a condition as in `outside`; or one per layer: first.tube = { ... }
+last  = { insulated = true }
 
 # ---- what to read --------------------------------------------------------------------------------------------------
 
-[sensor.heater end]
+[sensor."heater end"]
 z  = "390 mm"                       # from the tube's start
 at = "outside"                      # or "axis", "bulk", "tube inner", "tube outer"
 
@@ -101,8 +99,3 @@ at_most = 40000                     # cells in all
 [solve]
 stop_below = 1e-8                   # the residual at which the solve ends
 """
-
-
-def starter(title: str) -> str:
-    """The text of a commented case with this title; it reads and solves as it stands."""
-    return _TEXT.format(title=toml_text(title)).replace("[sensor.heater end]", '[sensor."heater end"]')
