@@ -53,7 +53,7 @@ def _show_in_notebooks() -> None:
     from axicfd.output.notebook import html
     from axicfd.results.result import Result
 
-    Result._repr_html_ = html  # type: ignore[attr-defined]
+    setattr(Result, "_repr_html_", html)  # noqa: B010
 
 
 def __dir__() -> list[str]:

@@ -27,12 +27,13 @@ def first_line(tube: Any, shown: Shown) -> str:
     return f"bore {bore} {unit}, outside {outside} {unit}, {length} long"
 
 
-def to_scale(tube: Any, shown: Shown) -> Iterator[str]:
+def to_scale(case: Any, tube: Any, shown: Shown) -> Iterator[str]:
     """Lines of a drawing: to scale along z, the radius stretched; each layer at least one line thick."""
     marks = _marks(tube)
     edges = [round(section.z0 / tube.length * COLUMNS) for section in tube.sections] + [COLUMNS]
     yield _names(tube, edges)
     upper = list(_half(tube, marks, edges))
+    _write_streams(case, tube, upper)
     centre = ("- . " * COLUMNS)[:COLUMNS]
     for line in [*upper, centre, *reversed(upper)]:
         yield "  " + line
@@ -56,12 +57,11 @@ def outside_words(case: Any, section: Any) -> str:
     outside, path = section.outside, f"section.{section.name}.outside"
     parts = []
     if outside.temperature is not None:
-        parts.append(f"held at {_quantity(case, f'{path}.temperature', 'temperature', outside.temperature)}")
+        words = f"held at {_quantity(case, f'{path}.temperature', 'temperature', outside.temperature)}"
         if outside.contact_resistance is not None:
-            resistance = _quantity(
-                case, f"{path}.contact_resistance", "contact_resistance", outside.contact_resistance
-            )
-            parts.append(f"through {resistance}")
+            key = "contact_resistance"
+            words += f" through {_quantity(case, f'{path}.{key}', key, outside.contact_resistance)}"
+        parts.append(words)
     for key in ("heat_flux", "heat", "heat_per_length"):
         value = getattr(outside, key)
         if value is not None:
@@ -80,10 +80,10 @@ def _quantity(case: Any, path: str, kind: str, value: Any) -> str:
     unit = case.unit_of(path) or ("degC" if kind == "temperature" else units.KINDS[kind].si)
     ends = (value.value[0], value.value[-1]) if hasattr(value, "z") else (value,)
     try:
-        numbers = [number(float(units.convert(end, unit, kind)), 5) for end in ends]
+        numbers = [f"{float(units.convert(end, unit, kind)):.6g}" for end in ends]
     except units.UnitError:
         unit = units.KINDS[kind].si
-        numbers = [number(end, 5) for end in ends]
+        numbers = [f"{end:.6g}" for end in ends]
     return f"{' to '.join(numbers)} {unit}".replace("^2", "²")
 
 
@@ -109,6 +109,15 @@ def _half(tube: Any, marks: dict[str, str], edges: list[int]) -> Iterator[str]:
         )
         for _ in range(max(1, round(ROWS * (outer - inner) / radii[-1]))):
             yield line.rstrip() or ""
+
+
+def _write_streams(case: Any, tube: Any, upper: list[str]) -> None:
+    """The stream's name and the way it flows, in the free line nearest the axis."""
+    for name in tube.stream_names:
+        words = f"  < {name}" if case.stream[name].direction == "-z" else f"  {name} >"
+        free = [i for i, line in enumerate(upper) if not line.strip()]
+        if free:
+            upper[free[-1]] = words[:COLUMNS]
 
 
 def _mark_at(section: Any, radius: float, marks: dict[str, str]) -> str:

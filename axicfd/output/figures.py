@@ -118,7 +118,6 @@ def temperature_picture(result: Any) -> Figure:
     fluid = np.ma.masked_where(~_in_stream(fields), temperature)
     low, high = _range(temperature)
     colours = colour_map()
-    mesh = None
     for side in (1, -1):
         mesh = axes.pcolormesh(
             z, side * r_shown, fluid.T, cmap=colours, vmin=low, vmax=high, rasterized=True, zorder=1.5
@@ -134,7 +133,7 @@ def temperature_picture(result: Any) -> Figure:
     bar_axes = figure.add_axes((0.25, 0.62 / total, 0.5, 0.14 / total))
     bar = figure.colorbar(mesh, cax=bar_axes, orientation="horizontal")
     bar.outline.set_visible(False)
-    bar.formatter.set_useOffset(False)
+    bar.ax.xaxis.set_major_formatter(_plain_numbers())
     bar.ax.tick_params(labelsize=10, color=SOFT_INK)
     bar.set_label(f"temperature, {shown.unit('temperature')}", fontsize=11, color=INK)
     _heading(figure, result, f"radius × {stretch}")
@@ -212,6 +211,16 @@ def _stretch(tube: Any, share: float = TUBE_SHARE) -> int:
     """The stretch of the radius that brings the tube's height nearest to `share` of its length."""
     wanted = share * tube.length / tube.outer_diameter
     return min(STRETCHES, key=lambda stretch: abs(np.log(stretch / max(wanted, 1.0))))
+
+
+def _height_of_paper(axes: Axes) -> float:
+    """Height of the whole picture [inch]."""
+    return float(axes.get_figure(root=True).get_figheight())  # type: ignore[union-attr]
+
+
+def _plain_numbers() -> FuncFormatter:
+    """Numbers on a scale without offset or exponent."""
+    return FuncFormatter(lambda value, _: f"{value:.10g}")
 
 
 def _tube_height(tube: Any, stretch: int, ruler: float) -> float:
@@ -312,7 +321,7 @@ def _layer_labels(axes: Axes, tube: Any, shown: Shown) -> None:
     solids = [layer for layer in last.layers if layer.kind != "stream"]
     places = [shown.value("length", (layer.r_inner + layer.r_outer) / 2) for layer in solids]
     # Thin layers would print their names on top of each other: spread them upwards by a line of text each.
-    line = 2 * outer * 0.17 / (axes.get_position().height * axes.figure.get_figheight())
+    line = 2 * outer * 0.17 / (axes.get_position().height * _height_of_paper(axes))
     at = -np.inf
     for layer, r in zip(solids, places, strict=True):
         seen.add(layer.name)
@@ -380,7 +389,7 @@ def _ruler(axes: Axes, tube: Any, shown: Shown) -> None:
         labelcolor=INK,
     )
     across = axes.get_xaxis_transform()
-    height = axes.get_position().height * axes.figure.get_figheight()  # inches
+    height = axes.get_position().height * _height_of_paper(axes)  # inches
     line, words = -0.40 / height, -0.44 / height
     axes.text(1.03, -0.23 / height, shown.unit("length"), transform=axes.transAxes, fontsize=10, va="center")
     character = 0.0095 * length  # about the width of one on the ruler
@@ -471,10 +480,10 @@ def _isotherms(
     Lines are drawn through cell centres; the first and last cell in each direction are repeated at the edges
     so that lines reach the wall, the ends and the axis.
     """
-    levels = MaxNLocator(nbins=9, steps=[1, 2, 2.5, 5, 10]).tick_values(low, high)
+    ticks = MaxNLocator(nbins=9, steps=[1, 2, 2.5, 5, 10]).tick_values(low, high)
     span = high - low
-    levels = np.array([level for level in levels if low + 0.01 * span < level < high - 0.01 * span])
-    if not levels.size:
+    levels = [level for level in ticks if low + 0.01 * span < level < high - 0.01 * span]
+    if not levels:
         return
     z_points = np.concatenate([z[:1], (z[1:] + z[:-1]) / 2, z[-1:]])
     r_points = np.concatenate([r[:1], (r[1:] + r[:-1]) / 2, r[-1:]])
@@ -492,8 +501,8 @@ def _isotherms(
             zorder=3,
         )
         if side == 1:
-            digits = FuncFormatter(lambda value, _: f"{value:.10g}")
-            for text in axes.clabel(lines, fmt=digits, fontsize=9, inline=True, inline_spacing=2):
+            labels = axes.clabel(lines, fmt=_plain_numbers(), fontsize=9, inline=True, inline_spacing=2)
+            for text in labels:
                 text.set_bbox({"facecolor": "white", "edgecolor": "none", "alpha": 0.7, "pad": 0.6})
 
 

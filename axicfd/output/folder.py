@@ -136,7 +136,8 @@ def _write_files(result: Any, folder: Path) -> None:
         csv.write_columns(folder / f"axial-{file_name(stream)}.csv", columns)
     csv.write_columns(folder / "outside.csv", result.outside)
     csv.write_columns(folder / "radial.csv", result.radial)
-    np.savez(folder / FIELDS, **{key: np.asarray(value) for key, value in result.fields.items()})
+    arrays: dict[str, Any] = {key: np.asarray(value) for key, value in result.fields.items()}
+    np.savez(folder / FIELDS, **arrays)
     outlet = {
         name: stream.outlet_pressure
         for name, stream in result.case.stream.items()

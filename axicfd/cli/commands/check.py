@@ -24,23 +24,27 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(arguments: argparse.Namespace) -> int:
     from axicfd.case.layout import layout
     from axicfd.case.read import load
+
+    case = load(Path(arguments.case), set=chosen(arguments))
+
     from axicfd.cli import drawing, estimate, render
     from axicfd.output.shown import shown_units
     from axicfd.results import cautions
 
-    case = load(Path(arguments.case), set=chosen(arguments))
     tube, shown, out = layout(case), shown_units(case), render.console()
     out.print(drawing.first_line(tube, shown))
     out.print()
-    for line in drawing.to_scale(tube, shown):
+    for line in drawing.to_scale(case, tube, shown):
         out.print(line, soft_wrap=True)
     out.print()
     render.rows(
         out, ["section", "from", "to", "layers from the axis", "outside"], drawing.sections(case, tube, shown)
     )
     out.print()
-    render.rows(out, ["", "at inlet state", ""], estimate.groups(case), right=(1,))
-    out.print()
+    groups = estimate.group_rows(case, shown)
+    if groups:
+        render.rows(out, ["at inlet state", "", ""], groups, right=(1,))
+        out.print()
     for line in estimate.two_lines(case, shown):
         out.print(line)
     out.print()

@@ -25,7 +25,7 @@ def run(arguments: argparse.Namespace) -> int:
     out = render.console()
     if arguments.name is None:
         for title, found in (("fluids", FLUIDS), ("solids", SOLIDS)):
-            body = [(name, _span(_laws(material)), material.note) for name, material in found.items()]
+            body = [[name, _span(_laws(material)), material.note] for name, material in found.items()]
             render.rows(out, [title, "range", "note"], body)
             out.print()
         out.print("Show one with its source: axicfd materials NAME")

@@ -1,0 +1,51 @@
+import io
+from types import SimpleNamespace
+
+from axicfd.case.read import load
+from axicfd.cli.progress import Progress
+from axicfd.output.shown import shown_units
+from tests.output.made_up import TEXT
+
+
+class Terminal(io.StringIO):
+    def isatty(self):
+        return True
+
+
+def event(level, done, cells=40960, outlet=314.45):
+    return SimpleNamespace(
+        level=level,
+        levels=5,
+        cells=cells,
+        outlet_temperature=outlet,
+        pressure_drop=18200.0,
+        seconds=1.1,
+        residual=1e-9,
+        done=done,
+    )
+
+
+def test_one_line_per_mesh_rewritten_in_place():
+    out = Terminal()
+    progress = Progress(shown_units(load(TEXT)), out)
+    for level, done in ((1, False), (1, True), (2, False), (2, True)):
+        progress(event(level, done))
+    progress.close()
+    assert out.getvalue().count("\n") == 2
+    last = out.getvalue().rstrip("\n").split("\x1b[K")[-1]
+    assert last == "mesh 2 of 5   40 960 cells   outlet 41.30 degC   drop 18200 Pa   1.1 s"
+
+
+def test_plain_lines_elsewhere():
+    out = io.StringIO()
+    progress = Progress(shown_units(load(TEXT)), out)
+    for level, done in ((1, False), (1, True), (2, False), (2, True)):
+        progress(event(level, done))
+    progress.close()
+    assert "\x1b" not in out.getvalue() and "\r" not in out.getvalue()
+    assert sum("mesh 2 of 5" in line for line in out.getvalue().splitlines()) == 1
+
+
+def test_nothing_flowing_has_no_outlet():
+    line = Progress(shown_units(load(TEXT)), io.StringIO()).line(event(1, True, outlet=None))
+    assert "outlet" not in line
