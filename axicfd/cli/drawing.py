@@ -31,11 +31,12 @@ def to_scale(case: Any, tube: Any, shown: Shown) -> Iterator[str]:
     """Lines of a drawing: to scale along z, the radius stretched; each layer at least one line thick."""
     marks = _marks(tube)
     edges = [round(section.z0 / tube.length * COLUMNS) for section in tube.sections] + [COLUMNS]
-    yield _names(tube, edges)
-    upper = list(_half(tube, marks, edges))
+    yield from _names(tube, edges)
+    lower = list(reversed(list(_half(tube, marks, edges))))
+    upper = list(reversed(lower))
     _write_streams(case, tube, upper)
     centre = ("- . " * COLUMNS)[:COLUMNS]
-    for line in [*upper, centre, *reversed(upper)]:
+    for line in [*upper, centre, *lower]:
         yield "  " + line
     yield "  " + _ruler(edges)
     end = amount(shown, "length", tube.length)
@@ -129,12 +130,17 @@ def _mark_at(section: Any, radius: float, marks: dict[str, str]) -> str:
     return " "
 
 
-def _names(tube: Any, edges: list[int]) -> str:
-    line = ""
+def _names(tube: Any, edges: list[int]) -> Iterator[str]:
+    """Section names above their sections; those too long for theirs stand one line higher."""
+    fitting, longer = [" "] * COLUMNS, [" "] * COLUMNS
     for section, start, end in zip(tube.sections, edges, edges[1:], strict=False):
-        room = end - start
-        line += section.name[: max(room - 1, 0)].center(room)
-    return "  " + line.rstrip()
+        name = section.name[:COLUMNS]
+        line = fitting if len(name) < end - start else longer
+        first = max(0, min((start + end - len(name)) // 2, COLUMNS - len(name)))
+        line[first : first + len(name)] = name
+    for line in (longer, fitting):
+        if "".join(line).strip():
+            yield "  " + "".join(line).rstrip()
 
 
 def _ruler(edges: list[int]) -> str:

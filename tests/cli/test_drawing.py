@@ -18,7 +18,7 @@ def test_first_line_gives_the_bore_first():
 def test_the_drawing_is_to_scale_and_mirrored():
     lines = drawn()
     wall = "  " + "#" * drawing.COLUMNS
-    assert lines[1] == wall
+    assert lines[1] == wall  # below the names
     assert lines.count(wall) == 2
     ruler = next(line for line in lines if line.startswith("  |"))
     assert ruler.index("|", 3) - 2 == round(0.2 / 1.4 * drawing.COLUMNS)
@@ -44,3 +44,9 @@ def test_tables_are_shown_by_their_ends():
     case = load(TEXT.replace('{ film_coefficient = "900 W/m^2/K", ambient = "85 degC" }', table))
     words = drawing.outside_words(case, case.section[1])
     assert words.startswith("held at 60 to 85 degC through ")
+
+
+def test_a_name_longer_than_its_section_stands_one_line_higher():
+    lines = drawn(TEXT.replace("lead-in", "a long lead-in").replace('"0.2 m"', '"0.02 m"'))
+    assert lines[0].strip() == "a long lead-in"
+    assert lines[1].strip() == "jacket"

@@ -1,0 +1,20 @@
+from axicfd.output.notebook import html
+from tests.output.made_up import TEXT, made_up
+
+
+def test_the_headline_is_a_table():
+    text = html(made_up())
+    assert "<table>" in text
+    assert "outlet temperature (bulk)" in text and "56.20 degC" in text
+    assert "the flow still changes at the outlet" in text
+    assert "NOT CONVERGED" not in text
+
+
+def test_words_of_users_are_escaped():
+    text = html(made_up(TEXT.replace("Syrup line in", "<script>alert(1)</script> &")))
+    assert "<script>" not in text
+    assert "&lt;script&gt;" in text
+
+
+def test_what_did_not_converge_says_so():
+    assert "NOT CONVERGED" in html(made_up(converged=False))
