@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import copy
-import tomllib
 from collections.abc import Mapping
 from typing import Any
 
@@ -179,22 +178,6 @@ def _unknown(path: str, name: str, part: type[Part]) -> InputError:
         f"is not a key of a case: `{name}` is not known there",
         f"Write `{near}`." if near else f"Known there: {', '.join(part.model_fields)}.",
     )
-
-
-def setting(text: str) -> tuple[str, Any]:
-    """ "stream.syrup.mass_flow=4 g/s" -> (path, value), split at the first `=`."""
-    path, equals, value = text.partition("=")
-    if not equals or not path.strip():
-        raise bad_input(
-            "", None, f'"{text}" is not KEY=VALUE', 'Write it like "stream.water.mass_flow=4 g/s".'
-        )
-    try:
-        read = tomllib.loads(f"value = {value.strip()}\n")
-        if list(read) == ["value"]:
-            return path.strip(), read["value"]
-    except tomllib.TOMLDecodeError:
-        pass
-    return path.strip(), value.strip()
 
 
 def values_in(case: Case) -> list[str]:
