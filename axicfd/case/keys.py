@@ -132,8 +132,11 @@ class Quantity(_Bounded):
     """A number with a unit. `kind` is a key of `units.KINDS`; the model keeps the SI value."""
 
     kind: str = ""
+    later_words: tuple[str, ...] = field(default=(), kw_only=True)  # words that are known but not open yet
 
     def read(self, value: Any, in_file: bool) -> float:
+        if value in self.later_words if isinstance(value, str) else _is_spread(value):
+            raise self.refuse(value, "is not available yet", f"Write {self.example}.")
         if isinstance(value, str):
             try:
                 number = units.parse(value, self.kind)
@@ -179,6 +182,11 @@ class Quantity(_Bounded):
     @property
     def example(self) -> str:
         return toml_text(units.KINDS[self.kind].example)
+
+
+def _is_spread(value: Any) -> bool:
+    """Whether a value is given with its tolerance, { value = ..., plus_minus = ... } or std."""
+    return isinstance(value, dict) and bool({"plus_minus", "std"} & set(value))
 
 
 @dataclass(frozen=True)
@@ -382,7 +390,7 @@ class Along(Quantity):
     def read(self, value: Any, in_file: bool) -> Any:
         if isinstance(value, ZTable):
             return value
-        if not isinstance(value, dict):
+        if not isinstance(value, dict) or _is_spread(value):
             return super().read(value, in_file)
         one = Quantity(
             self.meaning, self.kind, above=self.above, at_least=self.at_least, at_most=self.at_most
@@ -419,7 +427,7 @@ class Property(Quantity):
     def read(self, value: Any, in_file: bool) -> Any:
         if isinstance(value, laws.Constant | laws.Table | laws.Exponential):
             return value
-        if not isinstance(value, dict):
+        if not isinstance(value, dict) or _is_spread(value):
             return laws.Constant(super().read(value, in_file))
         one = Quantity(self.meaning, self.kind, above=self.above, at_least=self.at_least)
         temperature = Quantity("temperature", "temperature")

@@ -495,7 +495,12 @@ class Outside(Part):
     ] = None
     film_coefficient: Annotated[
         float | ZTable | None,
-        Along("heat transfer coefficient to the surroundings at `ambient`", "film_coefficient", at_least=0),
+        Along(
+            "heat transfer coefficient to the surroundings at `ambient`",
+            "film_coefficient",
+            at_least=0,
+            later_words=("still air",),
+        ),
     ] = None
     ambient: Annotated[
         float | ZTable | None,
@@ -727,25 +732,26 @@ class Case(Part):
     }
 
     _tree: dict = PrivateAttr(default_factory=dict)
-    _source: Any = PrivateAttr(default=None)
 
     @model_validator(mode="wrap")
     @classmethod
     def _read_and_checked(cls, data: Any, handler: Any, info: Any) -> Any:
         """Everything wrong with the case at once, in our own words."""
-        from axicfd.case import checks, read
+        from axicfd.case import checks, presence, read
 
         source = (info.context or {}).get("source") or read.Source()
-        if isinstance(data, Case):
-            return data
+        if not isinstance(data, dict):
+            return handler(data)
         tree = read.with_names(read.plain(data))
-        mistakes = checks.presence(tree, source)
+        structure = presence.in_structure(tree, source)
+        mistakes = structure + presence.in_conditions(tree, source)
         try:
             case = handler(tree)
         except ValidationError as found:
             raise read.as_input_error(found, tree, source, mistakes) from None
-        case._tree, case._source = tree, source
-        mistakes += checks.contradictions(case, source)
+        case._tree = tree
+        if not structure:
+            mistakes += checks.contradictions(case, source)
         if mistakes:
             raise read.InputError(mistakes)
         return case
