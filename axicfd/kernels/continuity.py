@@ -13,13 +13,13 @@ from axicfd.kernels._jit import kernel
 
 
 @kernel
-def mass_defect(mz, mr, open_p, b):
-    """Net inflow of each cell [kg/s], b (nz, nr); returns the sum of its absolute values."""
+def mass_defect(mz, mr, open_p, fc, b):
+    """Net inflow of each cell plus a source fc [kg/s], b (nz, nr); returns the sum of its absolute values."""
     nz, nr = b.shape
     total = 0.0
     for i in range(nz):
         for j in range(nr):
-            b[i, j] = open_p[i, j] * (mz[i, j] - mz[i + 1, j] + mr[i, j] - mr[i, j + 1])
+            b[i, j] = open_p[i, j] * (fc[i, j] + mz[i, j] - mz[i + 1, j] + mr[i, j] - mr[i, j + 1])
             total += abs(b[i, j])
     return total
 
@@ -139,23 +139,6 @@ def restrict_residual(cz, cr, b, x, pair_r, coarse_b):
             if j < nr - 1:
                 r += cr[i, j + 1] * x[i, j + 1]
             coarse_b[i // 2, j // pair_r] += r
-
-
-@kernel
-def prolong_add(coarse_x, zi, zw, ri, rw, open_p, x):
-    """Add the bilinear interpolation of coarse_x to x. zi, ri: lower coarse neighbour of each fine cell; zw, rw: weight
-    of the upper one."""
-    nz, nr = x.shape
-    coarse_nz, coarse_nr = coarse_x.shape
-    for i in range(nz):
-        a = zi[i]
-        b = min(a + 1, coarse_nz - 1)
-        for j in range(nr):
-            c = ri[j]
-            d = min(c + 1, coarse_nr - 1)
-            low = coarse_x[a, c] + rw[j] * (coarse_x[a, d] - coarse_x[a, c])
-            high = coarse_x[b, c] + rw[j] * (coarse_x[b, d] - coarse_x[b, c])
-            x[i, j] += open_p[i, j] * (low + zw[i] * (high - low))
 
 
 @kernel

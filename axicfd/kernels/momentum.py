@@ -27,6 +27,8 @@ class FlowMesh(NamedTuple):
 
     nz: int
     nr: int
+    z: np.ndarray  # (nz + 1,) axial faces
+    r: np.ndarray  # (nr + 1,) radial faces
     dz: np.ndarray  # (nz,)
     dzu: np.ndarray  # (nz + 1,) length of the control volume of u
     area: np.ndarray  # (nr,) axial face areas
@@ -69,8 +71,9 @@ def mass_fluxes(m, rho, u, v, mz, mr):
 
 
 @kernel
-def explicit_terms(m, mu, u, v, mz, mr, su, sv):
-    """What is not in the coefficients: second-order convection minus upwind, and the cross terms of the stress.
+def explicit_terms(m, mu, u, v, mz, mr, fu, fv, su, sv):
+    """What is not in the coefficients: second-order convection minus upwind, the cross terms of the stress, and given
+    sources fu, fv.
 
     su (nz + 1, nr), sv (nz, nr + 1) [N], to be added to the right-hand side.
     """
@@ -93,10 +96,10 @@ def explicit_terms(m, mu, u, v, mz, mr, su, sv):
                 extra = 0.5 * flow * (central_up * (b - a) + up * (a - u[cu, j]))
             else:
                 extra = 0.5 * flow * (central_down * (a - b) + down * (b - u[cd, j]))
-            su[c, j] = before[j] - extra
+            su[c, j] = fu[c, j] + before[j] - extra
             before[j] = extra
     for j in range(nr):
-        su[nz, j] = before[j]
+        su[nz, j] = fu[nz, j] + before[j]
     # u along r, and the stress mu dv/dz on the same faces
     for i in range(1, nz + 1):
         west, east = i - 1, min(i, nz - 1)
@@ -135,7 +138,7 @@ def explicit_terms(m, mu, u, v, mz, mr, su, sv):
                 else:
                     extra += flow * (central_down * (a - b) + 0.5 * down * (b - v[idn, j]))
             if i > 0:
-                sv[i - 1, j] = before[j] - extra
+                sv[i - 1, j] = fv[i - 1, j] + before[j] - extra
             before[j] = extra
     # v along r: faces are cells j - 1 and j
     for i in range(nz):

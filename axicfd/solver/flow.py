@@ -8,11 +8,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from axicfd.kernels import continuity, momentum
+from axicfd.kernels import continuity, momentum, transfer
 from axicfd.kernels.momentum import FlowMesh, Viscosity
 from axicfd.mesh.grid import STREAM, Array, Grid
 
 RELAX_MOMENTUM = 0.92  # between 0.8 and 0.97 every case tried converges; the best value moves little with the mesh
+RELAX_SMOOTHER = 0.8  # as the smoother of a multigrid cycle: short waves only
 RELAX_SIMPLE = 0.7, 0.3  # momentum and pressure, if SIMPLEC is not wanted
 CORRECTION_DROP = 0.05  # the pressure correction is solved until its residual fell to this share
 CORRECTION_CYCLES = 8
@@ -21,13 +22,20 @@ CLOSING_PASSES = 6
 COARSEST = 4  # cells along z where the pressure multigrid stops
 
 
-def flow_mesh(grid: Grid, stream: str, mirrored: bool) -> FlowMesh:
-    """Geometry of the radial segment of `stream`, turned so that the stream runs towards +z."""
+def stream_mesh(grid: Grid, stream: str, mirrored: bool) -> FlowMesh:
+    """The radial segment of `stream` on a grid, turned so that the stream runs towards +z."""
     j0, j1 = grid.streams[stream]
     z = grid.layout.length - grid.z[::-1] if mirrored else grid.z
     fluid = (grid.kind[:, j0:j1] == STREAM).astype(float)
-    fluid = np.ascontiguousarray(fluid[::-1] if mirrored else fluid)
-    r = grid.r[j0 : j1 + 1]
+    return flow_mesh(z, grid.r[j0 : j1 + 1], np.ascontiguousarray(fluid[::-1] if mirrored else fluid))
+
+
+def flow_mesh(z: Array, r: Array, fluid: Array) -> FlowMesh:
+    """Geometry for the kernels.
+
+    z (nz + 1,), r (nr + 1,) : faces [m]        fluid : (nz, nr) 1 in cells where the stream flows, 0 in blocked ones
+    """
+    z, r = np.array(z), np.array(r)  # own copies of one layout: kernels are compiled once
     nz, nr = fluid.shape
     zc, rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
     dz, dr = np.diff(z), np.diff(r)
@@ -76,6 +84,8 @@ def flow_mesh(grid: Grid, stream: str, mirrored: bool) -> FlowMesh:
     return FlowMesh(
         nz=nz,
         nr=nr,
+        z=z,
+        r=r,
         dz=dz,
         dzu=dzu,
         area=area,
@@ -118,8 +128,7 @@ class PressureCorrection:
     """Line multigrid for the pressure correction on the mesh of one stream."""
 
     def __init__(self, mesh: FlowMesh):
-        z = np.concatenate([[0.0], np.cumsum(mesh.dz)])
-        r = np.concatenate([[0.0], np.cumsum(np.diff(mesh.ring) / (2 * np.pi))])
+        z, r = mesh.z, mesh.r
         self.levels: list[_Level] = []
         open_p = mesh.open_p
         while True:
@@ -139,9 +148,9 @@ class PressureCorrection:
                 return
             level.pair_r = 2 if nr % 2 == 0 and nr > 4 else 1
             z = np.append(z[:-1:2], z[-1])
-            r = r[:: level.pair_r]
+            r = r[:: level.pair_r].copy()
             coarse_zc, coarse_rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
-            level.down = (*_neighbours(zc, coarse_zc), *_neighbours(rc, coarse_rc))
+            level.down = (*neighbours(zc, coarse_zc), *neighbours(rc, coarse_rc))
             open_p = np.ones((len(z) - 1, len(r) - 1))
 
     def solve(self, drop: float = CORRECTION_DROP, cycles: int = CORRECTION_CYCLES) -> Array:
@@ -172,7 +181,7 @@ class PressureCorrection:
         continuity.restrict_residual(level.cz, level.cr, level.b, level.x, level.pair_r, coarse.b)
         coarse.x[...] = 0.0
         self._cycle(k + 1)
-        continuity.prolong_add(coarse.x, *level.down, level.open_p, level.x)
+        transfer.prolong_add(coarse.x, *level.down, level.open_p, level.x)
         continuity.line_sweep(level.cz, level.cr, level.b, level.x, False)
 
 
@@ -181,7 +190,7 @@ def _distances(faces: Array, centres: Array) -> Array:
     return np.diff(np.concatenate([faces[:1], centres, faces[-1:]]))
 
 
-def _neighbours(fine: Array, coarse: Array) -> tuple[Array, Array]:
+def neighbours(fine: Array, coarse: Array) -> tuple[Array, Array]:
     """For each fine centre the lower coarse neighbour and the weight of the upper one; constant beyond the ends."""
     lower = np.clip(np.searchsorted(coarse, fine) - 1, 0, max(len(coarse) - 2, 0))
     if len(coarse) == 1:
@@ -212,10 +221,12 @@ class Flow:
         self.u[1:] = mesh.open_u[1:] * (self.mass_flow / density / sections[1:])[:, None]
         self.mz, self.mr = np.zeros_like(self.u), np.zeros_like(self.v)
         self._su, self._sv = np.zeros_like(self.u), np.zeros_like(self.v)
-        self._ru, self._rv = np.zeros_like(self.u), np.zeros_like(self.v)
+        self._ru, self._rv, self._rc = np.zeros_like(self.u), np.zeros_like(self.v), np.zeros_like(self.p)
         self._du, self._dv = np.zeros_like(self.u), np.zeros_like(self.v)
+        # sources of the coarse-mesh equations of a multigrid cycle (N, N, kg/s); zero on the finest mesh
+        self.fu, self.fv, self.fc = np.zeros_like(self.u), np.zeros_like(self.v), np.zeros_like(self.p)
         self._correction = PressureCorrection(mesh)
-        self._refresh_mass()
+        self.refresh_mass()
 
     def start_from(self, u: Array, v: Array, p: Array) -> None:
         """Take fields carried over from another mesh; the inlet plane stays, and each section's flow is made exact."""
@@ -226,12 +237,17 @@ class Flow:
         self.u[1:] += m.open_u[1:] * ((self.mass_flow - flow[1:]) / self.density / sections[1:])[:, None]
         self.v[...] = v * m.open_v
         self.p[...] = p * m.open_p
-        self._refresh_mass()
+        self.refresh_mass()
+
+    def as_smoother(self, yes: bool) -> None:
+        """Relax for a multigrid cycle, or for iterating on this mesh alone."""
+        if self.consistent:
+            self.relax = RELAX_SMOOTHER if yes else RELAX_MOMENTUM
 
     def step(self) -> None:
         """One iteration: momentum with the present pressure, then the pressure correction."""
         m, mu = self.mesh, self.viscosity
-        momentum.explicit_terms(m, mu, self.u, self.v, self.mz, self.mr, self._su, self._sv)
+        self._explicit_terms()
         momentum.predict(
             m,
             mu,
@@ -247,36 +263,41 @@ class Flow:
             self._du,
             self._dv,
         )
-        self._refresh_mass()
+        self.refresh_mass()
         top = self._correction.levels[0]
-        continuity.mass_defect(self.mz, self.mr, m.open_p, top.b)
+        continuity.mass_defect(self.mz, self.mr, m.open_p, self.fc, top.b)
         continuity.coefficients(self.density, m.area, m.ring, m.dz, self._du, self._dv, top.cz, top.cr)
         x = self._correction.solve()
         continuity.correct(x, self._du, self._dv, m.open_p, self.relax_p, self.u, self.v, self.p)
-        self._refresh_mass()
+        self.refresh_mass()
 
     def close_continuity(self) -> None:
         """Correct the velocities until mass is conserved to round-off; the pressure is left as it is."""
         m = self.mesh
         top = self._correction.levels[0]
         for _ in range(CLOSING_PASSES):
-            defect = continuity.mass_defect(self.mz, self.mr, m.open_p, top.b)
+            defect = continuity.mass_defect(self.mz, self.mr, m.open_p, self.fc, top.b)
             if defect <= CLOSED * self.mass_flow:
                 return
             x = self._correction.solve(drop=1e-4, cycles=30)
             continuity.correct(x, self._du, self._dv, m.open_p, 0.0, self.u, self.v, self.p)
-            self._refresh_mass()
+            self.refresh_mass()
+
+    def residuals(self) -> tuple[Array, Array, Array]:
+        """What is left of the momentum equations [N] and of continuity [kg/s]; shapes of u, v, p; overwritten later."""
+        m = self.mesh
+        self._explicit_terms()
+        momentum.residuals(
+            m, self.viscosity, self.u, self.v, self.p, self.mz, self.mr, self._su, self._sv, self._ru, self._rv
+        )
+        continuity.mass_defect(self.mz, self.mr, m.open_p, self.fc, self._rc)
+        return self._ru, self._rv, self._rc
 
     def residual(self) -> float:
         """Largest of the three normalised residuals: momenta over inlet momentum flux + wall friction, mass over flow."""
-        m, mu = self.mesh, self.viscosity
-        momentum.explicit_terms(m, mu, self.u, self.v, self.mz, self.mr, self._su, self._sv)
-        momentum.residuals(
-            m, mu, self.u, self.v, self.p, self.mz, self.mr, self._su, self._sv, self._ru, self._rv
-        )
+        ru, rv, rc = self.residuals()
         scale = self.momentum_scale()
-        defect = continuity.mass_defect(self.mz, self.mr, m.open_p, np.empty_like(self.p))
-        parts = np.abs(self._ru).sum() / scale, np.abs(self._rv).sum() / scale, defect / abs(self.mass_flow)
+        parts = np.abs(ru).sum() / scale, np.abs(rv).sum() / scale, np.abs(rc).sum() / self.mass_flow
         return float(np.max(parts))
 
     def momentum_scale(self) -> float:
@@ -288,5 +309,11 @@ class Flow:
         m = self.mesh
         return self.viscosity.corner[:, m.nr] * m.gu_r[:, m.nr] * self.u[:, -1]
 
-    def _refresh_mass(self) -> None:
+    def _explicit_terms(self) -> None:
+        momentum.explicit_terms(
+            self.mesh, self.viscosity, self.u, self.v, self.mz, self.mr, self.fu, self.fv, self._su, self._sv
+        )
+
+    def refresh_mass(self) -> None:
+        """Mass fluxes from the velocities."""
         momentum.mass_fluxes(self.mesh, self.density, self.u, self.v, self.mz, self.mr)

@@ -11,12 +11,15 @@ from axicfd.mesh.grid import Array, Grid
 from axicfd.mesh.nest import carry
 from axicfd.solver import boundary, developed, properties
 from axicfd.solver.convergence import Watch
+from axicfd.solver.cycle import FlowCycle
 from axicfd.solver.energy import Energy
-from axicfd.solver.flow import Flow, flow_mesh
+from axicfd.solver.flow import Flow, stream_mesh
 from axicfd.solver.state import HeatFields, Solution, StreamFields
 
-FLOW_STEPS = 5  # flow iterations between two looks at the residual, or between two energy steps
+FLOW_STEPS = 5  # plain flow iterations between two looks at the residual, or between two energy steps
 HEAT_STEPS = 60  # energy steps at a given flow
+
+TROUBLE = "diverged", "no further progress", "iteration limit"
 
 OnCheck = Callable[[int, float], None]
 
@@ -53,6 +56,7 @@ class _Run:
         self._set_up_energy(start)
         self.flow = self._set_up_flow(start) if self.mass_flow > 0.0 else None
         self.coupled = self.flow is not None and not self.fluid.viscosity.is_constant
+        self.cycle = FlowCycle(self.flow) if self.flow is not None else None
 
     # ------------------------------------------------------------------ set-up
 
@@ -74,7 +78,7 @@ class _Run:
 
     def _set_up_flow(self, start: Solution | None) -> Flow:
         grid = self.grid
-        mesh = flow_mesh(grid, self.name, self.mirrored)
+        mesh = stream_mesh(grid, self.name, self.mirrored)
         shape = developed.velocity(mesh, self.density, self.mass_flow)
         rc = grid.rc[self.j0 : self.j1]
         u_in = boundary.inlet_velocity(self.case, self.name, self.mass_flow, self.density, rc, mesh.area, shape)
@@ -102,9 +106,30 @@ class _Run:
     # ------------------------------------------------------------------ the loop
 
     def go(self) -> Solution:
-        self._refresh_viscosity()
-        reason = self._solve_flow_and_heat() if self.coupled else self._solve_one_after_the_other()
+        begin = self._fields()
+        reason = self._attempt()
+        if reason in TROUBLE and self.cycle is not None:
+            # multigrid is fast and usually enough; the plain iteration is slow and sure
+            self._fields(begin)
+            self.cycle = None
+            self.watch = Watch(self.watch.stop_below)
+            reason = self._attempt()
         return self._solution(reason)
+
+    def _attempt(self) -> str:
+        self._refresh_viscosity()
+        return self._solve_flow_and_heat() if self.coupled else self._solve_one_after_the_other()
+
+    def _fields(self, restore: list[Array] | None = None) -> list[Array]:
+        """The unknowns, copied; or put back from such a copy."""
+        now = [self.flow.u, self.flow.v, self.flow.p, self.energy.t] if self.flow is not None else [self.energy.t]
+        if restore is not None:
+            for array, old in zip(now, restore, strict=True):
+                array[...] = old
+            if self.flow is not None:
+                self.flow.as_smoother(False)
+                self.flow.refresh_mass()
+        return [array.copy() for array in now]
 
     def _solve_one_after_the_other(self) -> str:
         """Flow first, where temperature does not act on it, then heat."""
@@ -114,7 +139,7 @@ class _Run:
             self._flow_steps()
             flow_residual = self.flow.residual()
             reason = self._check(flow_residual, 0.0)
-        if reason in ("diverged", "no further progress", "iteration limit"):
+        if reason in TROUBLE:
             return str(reason)
         self._hand_over_flow()
         error = self.energy.error()
@@ -139,6 +164,10 @@ class _Run:
         return reason
 
     def _flow_steps(self) -> None:
+        if self.cycle is not None:
+            self.cycle.cycle()
+            self.iteration += 1
+            return
         for _ in range(FLOW_STEPS):
             self.flow.step()
         self.iteration += FLOW_STEPS
@@ -159,6 +188,8 @@ class _Run:
         wall = self._turned(self.energy.conductors.face_minus[:, self.j1])
         inner = self._turned(self.energy.conductors.face_plus[:, self.j0]) if self.grid.r[self.j0] > 0.0 else None
         self.flow.viscosity = properties.viscosity(self.fluid.viscosity, t, wall, inner, m.gz, m.gr, self.t_in)
+        if self.cycle is not None:
+            self.cycle.refresh_viscosity()
 
     def _hand_over_flow(self) -> None:
         """Mass fluxes and volume heat from the flow to the energy equation."""
