@@ -122,7 +122,9 @@ def test_the_sentence_that_mends_can_be_followed():
             units.parse(caught.value.instead.split('"')[1], kind)
 
 
-@pytest.mark.parametrize("text", ["10**10**10 m", "5 m**99999999", "1 m^9^9^9", "1 (((((((m", "9" * 5000 + " m"])
+@pytest.mark.parametrize(
+    "text", ["10**10**10 m", "5 m**99999999", "1 m^9^9^9", "1 (((((((m", "9" * 5000 + " m"]
+)
 def test_nothing_hangs(text):
     """The first of these once ran for ever in the unit library."""
     begun = time.perf_counter()
@@ -145,7 +147,10 @@ def test_written_text_reads_back_exactly(kind, value, which):
 
 
 @settings(deadline=None, max_examples=300)
-@given(st.text(alphabet="0123456789.eE+-*/^()· mkgKWdegCPas°²_%\"'\\\n", max_size=30), st.sampled_from(sorted(units.KINDS)))
+@given(
+    st.text(alphabet="0123456789.eE+-*/^()· mkgKWdegCPas°²_%\"'\\\n", max_size=30),
+    st.sampled_from(sorted(units.KINDS)),
+)
 def test_any_text_is_read_or_refused_in_words(text, kind):
     try:
         value = units.parse(text, kind)

@@ -69,7 +69,15 @@ def in_conditions(tree: dict, source: Source) -> list[Mistake]:
     for end, faces in _tables(tree.get("ends")):
         per_layer = any(isinstance(value, dict) for value in faces.values())
         for face, condition in faces.items() if per_layer else [("", faces)]:
-            _condition(found, ("ends", end, face) if face else ("ends", end), condition)
+            place: Place = ("ends", end, face) if face else ("ends", end)
+            _condition(found, place, condition)
+            if isinstance(condition, dict) and "heat_per_length" in condition:
+                found.add(
+                    (*place, "heat_per_length"),
+                    condition["heat_per_length"],
+                    "is for a length of tube",
+                    "An end face takes `heat` or `heat_flux`.",
+                )
         at_end = [section for _, section in _entries(sections)][0 if end == "first" else -1 :][:1]
         for section in at_end:
             _end_names(found, ("ends", end), faces, section.get("layer", tree.get("layer")))

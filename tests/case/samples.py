@@ -23,7 +23,7 @@ outlet_pressure   = "1 atm"
 density       = "880 kg/m^3"
 specific_heat = "1900 J/kg/K"
 conductivity  = "0.14 W/m/K"
-viscosity     = { temperature = ["0 degC", "50 degC", "150 degC"], value = ["0.4 Pa s", "0.04 Pa s", "4 mPa s"] }
+viscosity     = { temperature = ["0 degC", "50 degC", "150 degC"], value = ["0.4 Pa s", "40 mPa s", "4 cP"] }
 outside_range = "refuse"
 
 [solid.liner]
