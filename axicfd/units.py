@@ -2,7 +2,7 @@
 
 The number and the unit are split here and only the unit reaches the unit library: given the whole string it
 reads "50 W/m^2/degC" as an offset temperature, hangs on "10**10**10 m" and evaluates more than a unit.
-Whether a temperature is absolute or a difference is decided by the kind asked for, never guessed from the text.
+Whether a temperature is absolute or a difference is decided by the kind asked for, never guessed.
 """
 
 from __future__ import annotations

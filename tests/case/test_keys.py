@@ -1,4 +1,4 @@
-"""Every declared key is fed bad values made from its own declaration; each answer names the key and its line."""
+"""Every declared key is fed bad values made from its declaration; each answer names the key and its line."""
 
 from __future__ import annotations
 

@@ -45,7 +45,8 @@ def test_odd_but_right_toml():
     lines = lines_of(text)
     expected = {
         ("a", "b", "c.d"): 2, ("text",): 3, ("literal",): 7, ("list",): 8, ("list", 0): 9, ("list", 1): 10,
-        ("list", 1, "y", "z"): 10, ("list", 1, "y", "z", 1): 11, ("t", "u v", "w"): 13, ("t", "u v", "w", "k"): 14,
+        ("list", 1, "y", "z"): 10, ("list", 1, "y", "z", 1): 11, ("t", "u v", "w"): 13,
+        ("t", "u v", "w", "k"): 14,
         ("s", 0): 16, ("s", 0, "n"): 17, ("s", 0, "layer", 0): 18, ("s", 0, "layer", 0, "m"): 19,
         ("s", 0, "layer", 1, "m"): 21, ("s", 1): 22, ("s", 1, "sub", "q"): 24, ("s", 1, "layer", 0): 25,
         ("s", 1, "layer", 0, "m"): 26,
