@@ -55,6 +55,10 @@ def test_odd_but_right_toml():
     assert ("inside",) not in lines and ("not", "a", "table") not in lines
 
 
+def test_a_line_that_goes_on_after_a_backslash_counts():
+    assert lines_of('a = """one \\\n  two"""\nb = 1\n') == {("a",): 1, ("b",): 3}
+
+
 def ways(tree, way=()):
     """Every way to a key, table or list entry in a tree."""
     entries = tree.items() if isinstance(tree, dict) else enumerate(tree) if isinstance(tree, list) else ()
