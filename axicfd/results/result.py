@@ -1,0 +1,133 @@
+"""Result: the case, its fields, curves and headline quantities; read-only."""
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from axicfd.case.layout import Layout
+from axicfd.case.model import Case
+from axicfd.mesh.grid import NOTHING, frozen
+from axicfd.results import axial, cautions, summary
+from axicfd.solver.state import Solution
+
+
+@dataclass(frozen=True, eq=False)
+class Result:
+    """A solved case.
+
+    summary : the tree of summary.json: `result.summary["stream"]["oil"]["outlet_temperature_K"]`
+    axial   : stream name -> columns of axial-STREAM.csv; outside, radial: columns of those files
+    fields  : arrays of fields.npz
+    history : (mesh level, cells, iterations, residual) of every mesh climbed, coarsest first
+    solution: everything the solver left on the finest mesh
+    """
+
+    case: Case
+    layout: Layout
+    version: str
+    summary: dict[str, Any]
+    axial: dict[str, dict[str, np.ndarray]]
+    outside: dict[str, np.ndarray]
+    radial: dict[str, list]
+    fields: dict[str, Any]
+    history: list[tuple[int, int, int, float]]
+    solution: Solution
+
+    @property
+    def converged(self) -> bool:
+        return bool(self.summary["converged"])
+
+    def __getitem__(self, quantity: str) -> float | None:
+        """A headline quantity by its dotted path with unit suffix: result["stream.oil.outlet_temperature_K"]."""
+        node: Any = self.summary
+        for part in quantity.split("."):
+            node = node[part]
+        return node
+
+    def __repr__(self) -> str:
+        state = "" if self.converged else " not converged,"
+        return f"<Result of {self.case.title!r}:{state} {self.summary['cells']} cells>"
+
+
+def make_result(
+    case: Case, layout: Layout, solution: Solution, history: list[tuple[int, int, int, float]], seconds: float, version: str
+) -> Result:
+    """Interpret the solution of the finest mesh."""
+    tree = summary.summary(case, layout, solution)
+    curves = {name: axial.stream_curves(axial.stream_view(case, solution, name)) for name in solution.grid.streams}
+    head: dict[str, Any] = {
+        "title": case.title,
+        "converged": solution.converged,
+        "stop_reason": solution.stop_reason,
+        "iterations": solution.iterations,
+        "residual": solution.residual,
+        "seconds": seconds,
+        "cells": solution.grid.cells,
+        "version": version,
+    }
+    found = cautions.after(case, layout, {**head, **tree}, curves, solution)
+    refused = cautions.refusal(case, layout, solution)
+    full = head | ({"refused": refused} if refused else {}) | {"cautions": found} | tree
+    outside = axial.outside_curves(case, solution)
+    for columns in (outside, *curves.values()):
+        for column in columns.values():
+            frozen(column)
+    fields = _fields(case, solution)
+    return Result(
+        case, layout, version, full, curves, outside, axial.radial_profiles(case, solution), fields, history, solution
+    )
+
+
+def _fields(case: Case, solution: Solution) -> dict[str, Any]:
+    """What fields.npz holds: enough to recompute every residual."""
+    grid, heat = solution.grid, solution.heat
+    t_in = next(iter(case.stream.values())).inlet_temperature
+    names: list[str] = []
+    material = np.full(grid.shape, -1, dtype=np.int64)
+    for piece in grid.pieces:
+        if piece.layer.kind == "void":
+            continue
+        stream = piece.layer.kind == "stream"
+        name = f"stream:{piece.layer.material}" if stream else piece.layer.name
+        if name not in names:
+            names.append(name)
+        material[piece.cells] = names.index(name)
+    fields: dict[str, Any] = {
+        "z_faces": grid.z,
+        "r_faces": grid.r,
+        "T": heat.t,
+        "T_z_faces": heat.tz,
+        "T_inner_side": heat.minus,
+        "T_outer_side": heat.plus,
+        "inlet_temperature": t_in,
+        "material": material,
+        "material_names": names,
+        "layer_names": list(dict.fromkeys(p.layer.name for p in grid.pieces)),
+        "volume_heat": heat.generated + heat.viscous + heat.pressure_work,
+    }
+    for name, s in solution.streams.items():
+        j0, _ = grid.streams[name]
+        fields |= {f"u.{name}": s.u, f"v.{name}": s.v, f"p.{name}": s.p, f"j0.{name}": j0}
+    for label, values in _properties(case, solution).items():
+        fields[f"property.{label}"] = values
+    for value in fields.values():
+        if isinstance(value, np.ndarray):
+            frozen(value)
+    return fields
+
+
+def _properties(case: Case, solution: Solution) -> dict[str, np.ndarray]:
+    """(nz, nr) conductivity across and viscosity at the cells' temperatures; nan where there is none."""
+    grid = solution.grid
+    conductivity, viscosity = np.full(grid.shape, np.nan), np.full(grid.shape, np.nan)
+    t_in = next(iter(case.stream.values())).inlet_temperature
+    for piece in grid.pieces:
+        t = solution.heat.t[piece.cells] + t_in
+        if piece.layer.kind == "stream":
+            fluid = case.fluid_of(piece.layer.material)
+            conductivity[piece.cells], viscosity[piece.cells] = fluid.conductivity(t), fluid.viscosity(t)
+        elif piece.layer.kind == "solid":
+            conductivity[piece.cells] = case.solid_of(piece.layer.material).conductivity_r(t)
+    conductivity[grid.kind == NOTHING] = np.nan
+    return {"conductivity_W_mK": conductivity, "viscosity_Pa_s": viscosity}
