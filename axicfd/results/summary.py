@@ -108,7 +108,7 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
 
 
 def _is_heated(section: PlacedSection) -> bool:
-    return not section.outside.insulated or any(section.heat_density(p) for p in section.layers if p.kind == "solid")
+    return not section.outside.insulated or any(section.heat_density(p) for p in section.layers)
 
 
 def _from_start(view: StreamView, z: float) -> float:
@@ -194,7 +194,7 @@ def developed_nusselt(case: Case, solution: Solution, view: StreamView, section:
     """
     outside = section.outside
     tables = [v for v in vars(outside).values() if isinstance(v, ZTable)]
-    generates = any(section.heat_density(p) for p in section.layers if p.kind == "solid")
+    generates = any(section.heat_density(p) for p in section.layers)
     heats = any(getattr(outside, key) is not None for key in outside.HEATS)
     if tables or (heats and outside.film_coefficient is not None):
         return None
@@ -315,7 +315,7 @@ def _ledger(case: Case, layout: Layout, solution: Solution) -> dict[str, Any]:
     }
     generated: dict[str, float] = {}
     for piece in grid.pieces:
-        if piece.layer.kind == "solid":
+        if piece.layer.kind != "void":
             name = piece.layer.name
             generated[name] = generated.get(name, 0.0) + float(heat.generated[piece.cells].sum())
     streams, outlets, mass = {}, {}, {}
