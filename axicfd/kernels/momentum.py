@@ -301,7 +301,7 @@ def dissipation(m, mu, u, v, phi):
     """Viscous heat of each cell [W], phi (nz, nr): the stresses of the momentum equations times their strain rates.
 
     Phi = 2 mu ((du/dz)^2 + (dv/dr)^2 + (v/r)^2) + mu (du/dr + dv/dz)^2. Shear lives at corners, v/r at radial faces;
-    the cells around share them equally.
+    the cells around where the stream flows share them equally.
     """
     nz, nr = m.nz, m.nr
     for i in range(nz):
@@ -320,7 +320,12 @@ def dissipation(m, mu, u, v, phi):
             if i < nz:
                 dv = v[i, f] - (v[i - 1, f] if i > 0 else 0.0)
             heat = mu.corner[i, f] * (m.gu_r[i, f] * du * du + 2.0 * m.ring[f] * du * dv + m.gv_z[i, f] * dv * dv)
-            share = heat / ((last - first + 1) * (outer - inner + 1))
+            around = 0.0
             for a in range(first, last + 1):
                 for b in range(inner, outer + 1):
-                    phi[a, b] += share
+                    around += m.open_p[a, b]
+            if around == 0.0:
+                continue
+            for a in range(first, last + 1):
+                for b in range(inner, outer + 1):
+                    phi[a, b] += heat * m.open_p[a, b] / around
