@@ -44,9 +44,7 @@ class Random:
             self.u = -np.abs(self.u)
         self.v = rng.normal(0.0, 0.5, (nz, nr + 1)) * m.open_v
         self.p = rng.normal(0.0, 500.0, shape) * self.fluid
-        self.mu = Viscosity(
-            *(0.1 * 20.0 ** rng.random(s) for s in (shape, (nz + 1, nr + 1), (nz, nr + 1)))
-        )
+        self.mu = Viscosity(*(0.1 * 20.0 ** rng.random(s) for s in (shape, (nz + 1, nr + 1), (nz, nr + 1))))
         self.mz, self.mr = np.zeros_like(self.u), np.zeros_like(self.v)
         momentum.mass_fluxes(m, self.rho, self.u, self.v, self.mz, self.mr)
 
@@ -118,7 +116,8 @@ def test_a_line_of_coefficients_is_the_derivative_of_its_residual():
     i, step = 2, 1e-6
     k, moved = np.zeros((5, 6)), np.zeros((5, 6))
     momentum.u_line(m, fields.mu, fields.u, fields.p, fields.mz, fields.mr, none_u, i, k)
-    for column, (a, b) in {momentum.N: (0, 1), momentum.S: (0, -1), momentum.W: (-1, 0), momentum.E: (1, 0)}.items():
+    neighbours = {momentum.N: (0, 1), momentum.S: (0, -1), momentum.W: (-1, 0), momentum.E: (1, 0)}
+    for column, (a, b) in neighbours.items():
         u = fields.u.copy()
         u[i + a, 2 + b] += step
         momentum.u_line(m, fields.mu, u, fields.p, fields.mz, fields.mr, none_u, i, moved)

@@ -2,10 +2,10 @@
 
     sum over faces of [ m h(T_face) + conducted heat ]  =  sources + heat through the outside and the ends
 
-Conduction between two nodes is a row of resistances: the rest of the one cell, a contact resistance, the start of the
-other. Across a solid the rest is ln(r_2/r_1)/(2 pi k dz), in a stream (r_2 - r_1)/(2 pi r_face k dz). A uniform source
-in a solid adds the exact particular solution -s r^2/(4 k). It judges the kernels and the solver, so it shares nothing
-with them.
+Conduction between two nodes is a row of resistances: the rest of the one cell, a contact resistance, the start
+of the other. Across a solid the rest is ln(r_2/r_1)/(2 pi k dz), in a stream (r_2 - r_1)/(2 pi r_face k dz). A
+uniform source in a solid adds the exact particular solution -s r^2/(4 k). It judges the kernels and the solver,
+so it shares nothing with them.
 """
 
 from dataclasses import dataclass, field
@@ -21,10 +21,9 @@ class PlainEnergy:
     """One grid with its temperatures.
 
     z (nz + 1,), r (nr + 1,) : faces [m]
-    kind (nz, nr)            : NOTHING, STREAM or SOLID; the outside surface is that of the outermost cell that is not
-                               beyond the tube, `outer` its face number per station
+    kind (nz, nr)            : NOTHING, STREAM or SOLID
     t (nz, nr)               : temperatures [K]
-    k_r, k_z                 : function of (cell, other cell or None) -> conductivity [W/(m K)] of `cell` on its side
+    k_r, k_z                 : function of (cell, other cell or None) -> conductivity [W/(m K)] of `cell`
     contact (nz, nr + 1)     : [m2 K/W] at radial faces
     source (nz, nr)          : generated [W/m3];  extra (nz, nr): other heat, no shape within the cell [W]
     mz (nz + 1, nr), mr (nz, nr + 1) : mass flow [kg/s] towards rising z and r
@@ -32,6 +31,7 @@ class PlainEnergy:
     inflow_first, inflow_last: (nr,) [K] of fluid that enters through the first and last plane
     upwind                   : axial faces with linear upwind in place of Fromm's scheme
     flux, surroundings, film : (nz,) [W/m2], [K], [m2 K/W or None] of the outside
+    outer                    : (nz,) number of the radial face that is the outer surface
     """
 
     z: np.ndarray
@@ -76,7 +76,7 @@ class PlainEnergy:
         return (high - low) / (2 * pi * self.r[face] * k * self.dz(i))
 
     def rise(self, i, j, face):
-        """[K] by which the source of a solid cell lifts its face over the node, beyond what the flux at the face says."""
+        """[K] by which the source of a solid cell lifts its face over what node and face flux alone say."""
         if self.kind[i, j] != SOLID:
             return 0.0
         a, b = self.r[face], self.rc[j]

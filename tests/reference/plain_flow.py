@@ -1,11 +1,12 @@
-"""Momentum and continuity of one stream, slow and plain: loops over control volumes, written from the equations.
+"""Momentum and continuity of one stream, slow and plain: loops over control volumes, from the equations.
 
     d(rho u u)/dz + (1/r) d(r rho v u)/dr = -dp/dz + d(2 mu du/dz)/dz + (1/r) d(r mu (du/dr + dv/dz))/dr
-    d(rho u v)/dz + (1/r) d(r rho v v)/dr = -dp/dr + d(mu (dv/dz + du/dr))/dz + (1/r) d(2 r mu dv/dr)/dr - 2 mu v / r^2
+    d(rho u v)/dz + (1/r) d(r rho v v)/dr = -dp/dr + d(mu (dv/dz + du/dr))/dz + (1/r) d(2 r mu dv/dr)/dr
+                                            - 2 mu v / r^2
 
-Each is integrated over the control volume of its velocity. What a control volume loses by convection is counted as
-sum of m (phi_face - phi_here): the advective form, the same as the conservative one where mass is conserved.
-It judges the kernels, so it shares nothing with them.
+Each is integrated over the control volume of its velocity. What a control volume loses by convection is
+counted as sum of m (phi_face - phi_here): the advective form, the same as the conservative one where mass is
+conserved. It judges the kernels, so it shares nothing with them.
 """
 
 from math import pi
@@ -21,8 +22,8 @@ class PlainFlow:
     rho                           : density [kg/m3]
     u (nz + 1, nr), v (nz, nr + 1): velocities [m/s] on axial and radial faces
     p (nz, nr)                    : pressure in motion [Pa], zero in the outlet plane
-    mu_cell (nz, nr), mu_corner (nz + 1, nr + 1), mu_face (nz, nr + 1): viscosity [Pa s] in cells, at corners and on
-                                    radial faces
+    mu_cell (nz, nr), mu_corner (nz + 1, nr + 1), mu_face (nz, nr + 1): viscosity [Pa s] in cells, at corners
+                                    and on radial faces
     """
 
     def __init__(self, z, r, fluid, rho, u, v, p, mu_cell, mu_corner, mu_face):
@@ -60,7 +61,7 @@ class PlainFlow:
     # ------------------------------------------------------------------ stresses
 
     def du_dr(self, i, j):
-        """At corner (i, j). Where one of the two velocities lies inside solid, the wall with u = 0 is at r_j."""
+        """At corner (i, j). Where one of the two velocities lies in solid, the wall with u = 0 is at r_j."""
         inside = self.is_fluid(i - 1, j - 1) or self.is_fluid(i, j - 1)
         outside = self.is_fluid(i - 1, j) or self.is_fluid(i, j)
         if j == 0 and self.r[0] == 0.0:
@@ -181,7 +182,10 @@ class PlainFlow:
     # ------------------------------------------------------------------ viscous heat
 
     def dissipation(self):
-        """Viscous heat of the whole stream [W]: 2 mu (du_dz^2 + dv_dr^2 + (v/r)^2) + mu (du/dr + dv/dz)^2 over volumes."""
+        """Viscous heat of the whole stream [W].
+
+        2 mu (du_dz^2 + dv_dr^2 + (v/r)^2) + mu (du/dr + dv/dz)^2, each over the volumes where it lives.
+        """
         total = 0.0
         for i in range(self.nz):
             dz = self.z[i + 1] - self.z[i]
@@ -202,7 +206,7 @@ class PlainFlow:
         return total
 
     def corner_heat(self, i, j):
-        """[W] of the shear stress in the volume around corner (i, j), between the nearest nodes or the wall."""
+        """[W] of the shear stress in the volume around corner (i, j), between nearest nodes or the wall."""
         z = [self.zc[i - 1] if i > 0 else self.z[0], self.zc[i] if i < self.nz else self.z[-1]]
         r = [self.rc[j - 1] if j > 0 else self.r[0], self.rc[j] if j < self.nr else self.r[-1]]
         if not any(self.is_fluid(a, b) for a in (i - 1, i) for b in (j - 1, j)):
@@ -228,7 +232,7 @@ class PlainFlow:
 
     @staticmethod
     def fromm(flow, x, points, before, after):
-        """Half central interpolation, half linear extrapolation from upstream; central where one cell is upstream.
+        """Half central interpolation, half linear extrapolation from upstream; central at the first face.
 
         points: (place, value) along z; x lies between number `before` and number `after`.
         """
