@@ -10,7 +10,7 @@ CAPACITY = 4000.0
 
 
 class Random:
-    """A stream, a wall with a one-cell layer in it, a void and a shorter stack, on a strongly graded random mesh."""
+    """A stream, a wall with a one-cell layer, a void and a shorter stack, on a strongly graded mesh."""
 
     def __init__(self, seed, nz=9, nr=8, sign=1):
         rng = np.random.default_rng(seed)

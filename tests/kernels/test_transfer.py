@@ -45,7 +45,7 @@ def test_restricted_residuals_keep_their_sum(nz, pair_r):
     cru, crv, crc = np.zeros((cnz + 1, cnr)), np.zeros((cnz, cnr + 1)), np.zeros((cnz, cnr))
     transfer.restrict_residuals(ru, rv, rc, 2, pair_r, cru, crv, crc)
     assert crc.sum() == pytest.approx(rc.sum(), rel=1e-13)
-    # half of the residual of the first inner face belongs to the inlet plane, and half of a wall's v to the wall
+    # half of the first inner face's residual belongs to the inlet plane, half of the v beside a wall to it
     assert cru.sum() == pytest.approx(ru.sum() - 0.5 * ru[1].sum(), rel=1e-13)
     lost = 0.5 * (rv[:, 1].sum() + rv[:, -2].sum()) if pair_r == 2 else 0.0
     assert crv.sum() == pytest.approx(rv.sum() - lost, rel=1e-13)

@@ -2,10 +2,10 @@
 
     sum over faces of [ m h(T_face) + conducted heat ]  =  sources + heat through the outside and the ends
 
-Conduction between two nodes is a row of resistances: the rest of the one cell, a contact resistance, the start
-of the other. Across a solid the rest is ln(r_2/r_1)/(2 pi k dz), in a stream (r_2 - r_1)/(2 pi r_face k dz). A
-uniform source in a solid adds the exact particular solution -s r^2/(4 k). It judges the kernels and the solver,
-so it shares nothing with them.
+Conduction between two nodes is a row of resistances: the rest of the one cell, a contact resistance, the
+start of the other. Across a solid the rest is ln(r_2/r_1)/(2 pi k dz), in a stream
+(r_2 - r_1)/(2 pi r_face k dz). A uniform source in a solid adds the exact particular solution -s r^2/(4 k).
+It judges the kernels and the solver, so it shares nothing with them.
 """
 
 from dataclasses import dataclass, field
