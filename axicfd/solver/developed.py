@@ -10,6 +10,8 @@ from scipy.linalg import eigh, solve_banded
 from axicfd.kernels.momentum import FlowMesh
 from axicfd.mesh.grid import Array
 
+SETTLED = 1e-9  # relative change of the decay rate; with a weak film its round-off is not far below
+
 
 def velocity(mesh: FlowMesh, density: float, mass_flow: float) -> Array:
     """(nr,) [m/s] developed axial velocity of a fluid of uniform viscosity.
@@ -65,7 +67,7 @@ def nusselt_third_kind(mesh: FlowMesh, u: Array, biot: float, peclet: float) -> 
     g = 0.0
     for _ in range(200):
         values, vectors = eigh(matrix, np.diag(flow + g * mesh.area), subset_by_index=[0, 0])
-        done = abs(values[0] - g) < 1e-12 * values[0]
+        done = abs(values[0] - g) < SETTLED * values[0]
         g = 0.5 * (g + values[0]) if g else values[0]
         if done:
             break
