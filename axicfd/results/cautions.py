@@ -1,7 +1,7 @@
 """Cautions: where the model, or the answer, stops being good, as a list of rules.
 
-A rule is a generator of `Caution`s; adding one means writing a function and naming it in BEFORE or AFTER. A rule that
-could not judge says so with `checked = False`. Nothing else in the package warns.
+A rule is a generator of `Caution`s; adding one means writing a function and naming it in BEFORE or AFTER. A
+rule that could not judge says so with `checked = False`. Nothing else in the package warns.
 """
 
 from __future__ import annotations
@@ -28,7 +28,8 @@ from axicfd.solver.state import Solution
 from axicfd.theory import duct_heat, groups
 
 SAFETY = (
-    "Heat and pressure can hurt. These results support, and do not replace, design to the local codes by licensed "
+    "Heat and pressure can hurt. These results support, and do not replace, design to the local codes by "
+    "licensed "
     "practice. With flow stopped the wall can get far hotter than shown."
 )
 
@@ -64,11 +65,13 @@ GRAVITY = 9.81  # m/s2, rounded standard gravity
 class Caution:
     """One caution.
 
-    code   : short name, the same for every case       found, limit : the number and its limit, SI; None without one
-    place  : where, in words                           source       : of the limit
-    text   : one or two sentences: number, place, limit, which way the answer errs, what to do
-    checked: False where the case does not say enough to judge
-    weight : about how far the answer may be off, in per cent of its scale; a judgement that only orders the list
+    code         : short name, the same for every case
+    text         : one or two sentences: number, place, limit, which way the answer errs, what to do
+    place        : where, in words
+    found, limit : the number and its limit, SI; None without one
+    source       : of the limit
+    checked      : False where the case does not say enough to judge
+    weight       : about how far the answer may be off, in per cent of its scale; a judgement, it only orders
     """
 
     code: str
@@ -82,7 +85,7 @@ class Caution:
 
 
 def before(case: Case) -> list[dict[str, Any]]:
-    """Cautions known before a solve, the heaviest first. Raises `RefusedModel` for a flow that cannot be laminar."""
+    """Cautions known before a solve, heaviest first. Raises `RefusedModel` for a flow that is not laminar."""
     ahead = Ahead(case, layout(case))
     return _sorted(caution for rule in BEFORE for caution in rule(ahead))
 
@@ -110,14 +113,16 @@ def refusal(case: Case, layout: Layout, solution: Solution) -> str | None:
     for left in _left_ranges(found):
         if left.policy == "refuse":
             return left.sentence(case) + (
-                ' Give a wider table, or change the heating or the flow; outside_range = "hold" or "extend" in a '
+                ' Give a wider table, or change the heating or the flow; outside_range = "hold" or "extend" '
+                "in a "
                 "material of the case lets the answer stand with a caution."
             )
     largest, z = _largest_reynolds(found)
     if largest > REYNOLDS_REFUSED:
         return (
             f"The Reynolds number of {found.name} reaches {_g(largest)} at z = {_length(case, z)}, above "
-            f"{_g(REYNOLDS_REFUSED)}: the flow is not laminar there. Lower the flow, widen the bore or heat less."
+            f"{_g(REYNOLDS_REFUSED)}: the flow is not laminar there. Lower the flow, widen the bore or heat "
+            "less."
         )
     if found.fluid.is_gas and not found.fluid.density.is_constant and found.flows:
         change, z = _density_change(found)
@@ -134,7 +139,7 @@ def _sorted(cautions: Iterator[Caution]) -> list[dict[str, Any]]:
     return [asdict(caution) for caution in sorted(cautions, key=lambda caution: -caution.weight)]
 
 
-# ------------------------------------------------------------------------------------------------ what rules look at
+# ----- what rules look at
 
 
 @dataclass(frozen=True)
@@ -200,7 +205,7 @@ class Ahead:
     def bulk_reach(self) -> tuple[float, float]:
         """(lowest, highest) bulk temperature [K] that is possible.
 
-        All prescribed heat goes into the stream, and held temperatures act on the bore itself along their sections.
+        All prescribed heat goes into the stream, and held temperatures act on the bore itself.
         """
         if not self.flows:
             return self.t_in, self.t_in
@@ -222,11 +227,11 @@ class Ahead:
         return any(_acts(section, self.t_in) for section in self.layout.sections)
 
     def reach_upstream(self, section: PlacedSection) -> float:
-        """Length [m] over which the warmth of the wall fades towards the inlet (by a factor e); inf if it never does.
+        """Length [m] over which the wall's warmth fades towards the inlet by a factor e; inf if never.
 
-        Wall and fluid of a straight, outside only weakly cooled tube, theta ~ exp(z g): k A g^2 theta = h P (theta -
-        T) + G theta and m cp g T = h P (theta - T), with Nu = 48/11. Limits: k A / (m cp) where wall and fluid exchange
-        heat well, the fin length sqrt(k A / (h P)) where they do not.
+        Wall W and fluid T from the inlet temperature, both ~ exp(g z), with a loss G to the outside:
+        k A g^2 W = h P (W - T) + G W and m cp g T = h P (W - T), Nu = 48/11. Limits: k A / (m cp) where wall
+        and fluid exchange heat well, the fin length sqrt(k A / (h P)) where they do not.
         """
         carried = _along(self.case, section, self.t_in)
         k = float(self.fluid.conductivity(self.t_in))
@@ -271,7 +276,7 @@ class Found(Ahead):
 
     @cached_property
     def heat(self) -> float:
-        """The case's heat [W]: the largest of what crosses its boundaries, is generated, or the stream takes up."""
+        """Heat of the case [W]: the largest of what crosses its boundaries, is made, or is taken up."""
         h = self.solution.heat
         crossing = sum(float(np.abs(q).sum()) for q in (h.outside, h.first, h.last))
         made = [float(np.abs(q).sum()) for q in (h.generated, h.viscous)]
@@ -360,11 +365,16 @@ def _temperatures(solution: Solution, piece: Piece) -> Array:
     return np.column_stack([inner, cells, heat.minus[rows, piece.j1]])
 
 
-# ------------------------------------------------------------------------------------------------ numbers in words
+# ----- numbers in words
 
 
 def _g(value: float) -> str:
     return f"{value:.3g}" if not 1e3 <= abs(value) < 1e6 else f"{value:.0f}"
+
+
+def _about(value: float) -> str:
+    """Two digits, with thousands apart."""
+    return f"{float(f'{value:.2g}'):,.0f}".replace(",", " ") if value >= 10 else f"{value:.2g}"
 
 
 def _percent(share: float) -> str:
@@ -379,13 +389,15 @@ def _temperature(case: Case, T: float) -> str:
 
 
 def _length(case: Case, z: float) -> str:
-    """A length in the unit of the longest section, otherwise mm below 1 m."""
+    """A length in the unit of the longest section, otherwise in m; small ones in mm."""
     longest = max(case.section, key=lambda section: section.length)
-    unit = case.unit_of(f"section.{longest.name}.length") or ("mm" if abs(z) < 1.0 else "m")
+    unit = case.unit_of(f"section.{longest.name}.length") or "m"
+    if unit == "m" and abs(z) < 0.1:
+        unit = "mm"
     return f"{units.convert(z, unit, 'length'):.3g} {unit}"
 
 
-# ------------------------------------------------------------------------------------------------ rules: the numbers
+# ----- rules: the numbers
 
 
 def _not_converged(found: Found) -> Iterator[Caution]:
@@ -395,7 +407,8 @@ def _not_converged(found: Found) -> Iterator[Caution]:
     yield Caution(
         "not-converged",
         f"The solve ended with the residual {found.solution.residual:.1e} ({reason}) above "
-        f"{found.case.solve.stop_below:.1e}: the numbers are where the iteration stopped and may be off either way. "
+        f"{found.case.solve.stop_below:.1e}: the numbers are where the iteration stopped and may be off "
+        "either way. "
         "Use them only to see what goes wrong.",
         place="whole tube",
         found=found.solution.residual if math.isfinite(found.solution.residual) else None,
@@ -422,7 +435,8 @@ def _balance(found: Found) -> Iterator[Caution]:
         elif off > target:
             yield Caution(
                 "balance",
-                f"The balance of {what} misses by {off:.1e} of its largest part, above {target:.0e}: the fields are not "
+                f"The balance of {what} misses by {off:.1e} of its largest part, above {target:.0e}: the "
+                "fields are not "
                 "solved far enough. Lower stop_below in [solve], and distrust differences smaller than this.",
                 place="whole tube",
                 found=float(off),
@@ -432,13 +446,14 @@ def _balance(found: Found) -> Iterator[Caution]:
             )
 
 
-# ------------------------------------------------------------------------------------------------ rules: the flow
+# ----- rules: the flow
 
 
 def _reynolds_caution(what: str, largest: float, place: str) -> Caution:
     return Caution(
         "reynolds",
-        f"{what}, above {_g(REYNOLDS_CAUTION)}: the flow may be turbulent there, and heat transfer and pressure drop "
+        f"{what}, above {_g(REYNOLDS_CAUTION)}: the flow may be turbulent there, and heat transfer and "
+        "pressure drop "
         "are then higher than shown. Lower the flow, or use a turbulent correlation beside this answer.",
         place=place,
         found=largest,
@@ -452,7 +467,8 @@ def _reynolds_ahead(ahead: Ahead) -> Iterator[Caution]:
     at_inlet = float(ahead.reynolds(ahead.t_in))
     if at_inlet > REYNOLDS_REFUSED:
         raise RefusedModel(
-            f"The Reynolds number of {ahead.name} is {_g(at_inlet)} at the inlet, above {_g(REYNOLDS_REFUSED)}: the flow "
+            f"The Reynolds number of {ahead.name} is {_g(at_inlet)} at the inlet, above "
+            f"{_g(REYNOLDS_REFUSED)}: the flow "
             "is not laminar, and laminar flow is all that is computed here. Lower the flow or widen the bore."
         )
     if at_inlet > REYNOLDS_CAUTION:
@@ -460,7 +476,7 @@ def _reynolds_ahead(ahead: Ahead) -> Iterator[Caution]:
         return
     possible = max(float(ahead.reynolds(T)) for T in ahead.bulk_reach)
     if possible > REYNOLDS_CAUTION:
-        what = f"The Reynolds number is {_g(at_inlet)} at the inlet and could reach {_g(possible)} along the tube"
+        what = f"The Reynolds number, {_g(at_inlet)} at the inlet, could reach {_g(possible)} along the tube"
         yield _reynolds_caution(what, possible, "outlet")
 
 
@@ -485,8 +501,10 @@ def _small_peclet(ahead: Ahead) -> Iterator[Caution]:
     if ahead.flows and ahead.peclet < SMALLEST_PECLET:
         yield Caution(
             "peclet",
-            f"The Péclet number is {_g(ahead.peclet)}, below {_g(SMALLEST_PECLET)}: the stream conducts more heat than it "
-            "carries, so bulk temperature, film coefficient and Nusselt number mean little. Read temperatures at sensors.",
+            f"The Péclet number is {_g(ahead.peclet)}, below {_g(SMALLEST_PECLET)}: the stream conducts more "
+            "heat than it "
+            "carries, so bulk temperature, film coefficient and Nusselt number mean little. Read "
+            "temperatures at sensors.",
             place="whole tube",
             found=ahead.peclet,
             limit=SMALLEST_PECLET,
@@ -502,8 +520,10 @@ def _gas_density_ahead(ahead: Ahead) -> Iterator[Caution]:
     if change > GAS_DENSITY_CAUTION:
         yield Caution(
             "gas-density",
-            f"The density of the gas could change by {_percent(change)}, above {_percent(GAS_DENSITY_CAUTION)}, and is "
-            "held at its inlet value: a heated gas then moves faster and loses more pressure than shown. A solve that "
+            f"The density of the gas could change by {_percent(change)}, above "
+            f"{_percent(GAS_DENSITY_CAUTION)}, and is "
+            "held at its inlet value: a heated gas then moves faster and loses more pressure than shown. A "
+            "solve that "
             f"finds more than {_percent(GAS_DENSITY_CHANGE)} is refused.",
             place="outlet",
             found=change,
@@ -518,7 +538,7 @@ def _gas_density(fluid: UsedFluid) -> Callable[[Any], Any]:
 
 
 def _density_change(found: Found) -> tuple[float, float]:
-    """Largest change of a gas's density from its inlet value, relative, with temperature and pressure; and its z."""
+    """Largest relative change of a gas's density from the inlet's, by temperature and pressure; its z."""
     law, view = _gas_density(found.fluid), found.view
     pressure = 1.0 + view.p / found.case.stream[found.name].outlet_pressure
     ratio = law(view.t + found.t_in) / law(found.t_in) * pressure
@@ -534,9 +554,12 @@ def _gas_density_found(found: Found) -> Iterator[Caution]:
     if change > GAS_DENSITY_CAUTION:
         yield Caution(
             "gas-density",
-            f"The density of the gas would change by {_percent(change)} at z = {_length(found.case, z)}, above "
-            f"{_percent(GAS_DENSITY_CAUTION)}, and is held at its inlet value: where the gas is warmer than at the inlet "
-            "it moves faster and loses more pressure than shown, where it is colder or under more pressure less.",
+            f"The density of the gas would change by {_percent(change)} at z = {_length(found.case, z)}, "
+            "above "
+            f"{_percent(GAS_DENSITY_CAUTION)}, and is held at its inlet value: where the gas is warmer than "
+            "at the inlet "
+            "it moves faster and loses more pressure than shown, where it is colder or under more pressure "
+            "less.",
             place=f"z = {_length(found.case, z)}",
             found=change,
             limit=GAS_DENSITY_CAUTION,
@@ -552,8 +575,10 @@ def _reverse_flow(found: Found) -> Iterator[Caution]:
     if share > 0.0:
         yield Caution(
             "reverse-flow",
-            f"Fluid runs backwards through the outlet ({_percent(share)} of the flow), and what comes in there is not "
-            "known: temperatures and pressure near the outlet are doubtful. Lengthen the tube behind the last change.",
+            f"Fluid runs backwards through the outlet ({_percent(share)} of the flow), and what comes in "
+            "there is not "
+            "known: temperatures and pressure near the outlet are doubtful. Lengthen the tube behind the "
+            "last change.",
             place="outlet",
             found=share,
             limit=0.0,
@@ -572,9 +597,12 @@ def _outlet_flow(found: Found) -> Iterator[Caution]:
     if change > OUTLET_CHANGE:
         yield Caution(
             "outlet-not-developed",
-            f"The velocity profile still changes by {_percent(change)} over the last {_length(found.case, along[-1] - start)} "
-            f"before the outlet, above {_percent(OUTLET_CHANGE)}: the outlet condition (uniform pressure, no flow across) "
-            "does not fit, and what the last diameter adds to the pressure drop is doubtful. Lengthen the last section.",
+            f"The velocity profile still changes by {_percent(change)} over the last "
+            f"{_length(found.case, along[-1] - start)} "
+            f"before the outlet, above {_percent(OUTLET_CHANGE)}: the outlet condition (uniform pressure, no "
+            "flow across) "
+            "does not fit, and what the last diameter adds to the pressure drop is doubtful. Lengthen the "
+            "last section.",
             place="outlet",
             found=change,
             limit=OUTLET_CHANGE,
@@ -582,7 +610,7 @@ def _outlet_flow(found: Found) -> Iterator[Caution]:
         )
 
 
-# ------------------------------------------------------------------------------------------------ rules: the ends
+# ----- rules: the ends
 
 
 def _insulated_solids(case: Case, section: PlacedSection, end: str) -> list[str]:
@@ -613,8 +641,12 @@ def _lead_in(ahead: Ahead) -> Iterator[Caution]:
     start = f"has {_length(ahead.case, lead_in)} before it" if lead_in else "begins right at the inlet"
     yield Caution(
         "warm-end",
-        f"Heat runs upstream over about {text} (a factor e), and the heated part {start}: what would run past the inlet "
-        f"is cut off there. Give an insulated lead-in of {_length(ahead.case, needed)}, or say in [ends] what the wall "
+        f"Heat runs upstream over about {text} (a factor e), and the heated part {start}: what would run "
+        "past "
+        "the inlet "
+        f"is cut off there. Give an insulated lead-in of {_length(ahead.case, needed)}, or say in [ends] "
+        "what "
+        "the wall "
         "meets.",
         place="inlet end",
         found=lead_in,
@@ -625,7 +657,7 @@ def _lead_in(ahead: Ahead) -> Iterator[Caution]:
 
 
 def _warm_inlet(found: Found) -> Iterator[Caution]:
-    """Wall or fluid whose temperature at the inlet end differs from the inlet's: heat would go on upstream."""
+    """Wall or fluid at the inlet end that is not at the inlet temperature: heat would go on upstream."""
     if found.span == 0.0:
         return
     end, row = ("last", -1) if found.mirrored else ("first", 0)
@@ -633,7 +665,7 @@ def _warm_inlet(found: Found) -> Iterator[Caution]:
     warm = _wall_at_end(found, section, end, row)
     what, carried = "The wall", _along(found.case, section, found.t_in)
     if found.flows:
-        # the flow-weighted temperature in the plane follows from what is conducted just behind it (Danckwerts)
+        # flow-weighted in the plane: from what is conducted just behind it, as nothing is in the plane
         k = found.view.conducted[1]
         fluid = -float(k) / found.capacity_flow
         if abs(fluid) > abs(warm):
@@ -655,7 +687,8 @@ def _warm_inlet(found: Found) -> Iterator[Caution]:
         )
     yield Caution(
         "warm-end",
-        f"{what} is {_g(abs(warm))} K {'warmer' if warm > 0 else 'colder'} than the inlet temperature where the tube "
+        f"{what} is {_g(abs(warm))} K {'warmer' if warm > 0 else 'colder'} than the inlet temperature where "
+        "the tube "
         f"begins ({_percent(share)} of the span, limit {_percent(WARM_END)}): a real tube would carry about "
         f"{_percent(leaving)} of the heat on upstream, and the wall near this end is shown too "
         f"{'hot' if warm > 0 else 'cold'}. {advice}",
@@ -667,7 +700,7 @@ def _warm_inlet(found: Found) -> Iterator[Caution]:
 
 
 def _wall_at_end(found: Found, section: PlacedSection, end: str, row: int) -> float:
-    """[K] the largest difference from the inlet temperature among solids that conduct along z and just stop there."""
+    """[K] largest difference from the inlet temperature of solids that conduct along z and stop there."""
     stopping = _insulated_solids(found.case, section, end)
     warm = 0.0
     for piece in _end_pieces(found, row):
@@ -686,29 +719,34 @@ def _end_pieces(found: Found, row: int) -> Iterator[Piece]:
     return (piece for piece in found.solution.grid.pieces if piece.i0 <= i < piece.i1)
 
 
-def _heated_to_outlet(found: Found) -> Iterator[Caution]:
-    """A wall that is not at the bulk temperature at the outlet end: heat would go on along it."""
+def _wall_to_outlet(found: Found) -> Iterator[Caution]:
+    """Heat that a real wall would carry on past the outlet end."""
     if not found.flows or found.heat == 0.0:
         return
     end, row = ("first", 0) if found.mirrored else ("last", -1)
     section = found.layout.sections[row]
     stopping = _insulated_solids(found.case, section, end)
-    carried = _along(found.case, section, found.t_in)
-    walls = [p for p in _end_pieces(found, row) if p.layer.name in stopping]
-    if not walls or carried == 0.0:
+    walls = [piece for piece in _end_pieces(found, row) if piece.layer.name in stopping]
+    if not walls or _along(found.case, section, found.t_in) == 0.0:
         return
-    means = [float(found.solution.heat.t[row, p.j0 : p.j1].mean()) for p in walls]
-    bulk = float(found.bulk[-1]) - found.t_in
-    difference = max((mean - bulk for mean in means), key=abs)
+    grid, heat = found.solution.grid, found.solution.heat
     reach = found.reach_downstream(section)
-    share = carried * abs(difference) / reach / found.heat
+    entering = float(heat.outside[row]) + sum(float(heat.generated[row, p.j0 : p.j1].sum()) for p in walls)
+    # what runs along the wall one reach before the end, as faded at the end
+    back = min(reach, 0.5 * section.length)
+    i = int(np.argmin(np.abs(grid.z - (back if found.mirrored else found.layout.length - back))))
+    running = sum(float(heat.qz[i, p.j0 : p.j1].sum()) for p in walls) * (-1.0 if found.mirrored else 1.0)
+    on = max(entering / float(grid.dz[row]) * reach, running * math.exp(-back / reach), key=abs)
+    share = abs(on) / found.heat
     if share > HEAT_PAST_END:
         yield Caution(
             "warm-end",
-            f"The wall is {_g(abs(difference))} K {'warmer' if difference > 0 else 'colder'} than the bulk where the tube "
-            f"ends: a real wall would carry about {_percent(share)} of the heat on (limit {_percent(HEAT_PAST_END)}), and "
-            f"the wall near this end is shown too {'hot' if difference > 0 else 'cold'}. Add an insulated lead-out of "
-            f"{_length(found.case, FADED * reach)}, or say in [ends] what the wall meets.",
+            f"A real wall would carry about {_percent(share)} of the heat on past the end of the tube (limit "
+            f"{_percent(HEAT_PAST_END)}), and the wall near this end is shown too "
+            f"{'hot' if on > 0 else 'cold'}. "
+            f"Add an insulated lead-out of {_length(found.case, FADED * reach)}, or say in [ends] what the "
+            "wall "
+            "meets.",
             place=f"{end} end",
             found=share,
             limit=HEAT_PAST_END,
@@ -727,9 +765,12 @@ def _outlet_heat(found: Found) -> Iterator[Caution]:
     if share > HEAT_ALONG_OUTLET:
         yield Caution(
             "outlet-not-developed",
-            f"Within a diameter of the outlet the stream conducts {_percent(share)} of the heat along itself (limit "
-            f"{_percent(HEAT_ALONG_OUTLET)}, Péclet number {_g(found.peclet)}), which the outlet condition cuts off: "
-            "temperatures near the outlet are off by about that share. Add an insulated lead-out of a few diameters.",
+            f"Within a diameter of the outlet the stream conducts {_percent(share)} of the heat along itself "
+            "(limit "
+            f"{_percent(HEAT_ALONG_OUTLET)}, Péclet number {_g(found.peclet)}), which the outlet condition "
+            "cuts off: "
+            "temperatures near the outlet are off by about that share. Add an insulated lead-out of a few "
+            "diameters.",
             place="outlet",
             found=share,
             limit=HEAT_ALONG_OUTLET,
@@ -737,12 +778,12 @@ def _outlet_heat(found: Found) -> Iterator[Caution]:
         )
 
 
-# ------------------------------------------------------------------------------------------------ rules: materials
+# ----- rules: materials
 
 
 @dataclass(frozen=True)
 class LeftRange:
-    """Laws of one material that are left on one side: by which temperature [K], from which bound, and where."""
+    """Laws of one material that are left on one side: by which temperature [K], which bound, where."""
 
     material: str
     laws: tuple[str, ...]
@@ -765,13 +806,14 @@ class LeftRange:
         )  # fmt: skip
         verb = "is" if len(self.laws) == 1 else "are"
         return (
-            f"{' and '.join(self.laws).capitalize()} of {self.material} {verb} known {known}, and {self.layer} is {side}: "
+            f"{' and '.join(self.laws).capitalize()} of {self.material} {verb} known {known}, and "
+            f"{self.layer} is {side}: "
             f"{_temperature(case, self.T)} at z = {_length(case, self.z)}."
         )
 
 
 def _left_ranges(found: Found) -> list[LeftRange]:
-    """Every material whose laws the found field leaves by more than the tolerance, the farthest place of each.
+    """Every material whose laws the found field leaves by more than the tolerance, with its farthest place.
 
     The density of a stream does not count: it is held at its inlet value.
     """
@@ -827,7 +869,9 @@ def _property_range(found: Found) -> Iterator[Caution]:
         what = (
             "The answer is not to be used. Give a wider table, or change the heating or the flow."
             if left.policy == "refuse"
-            else f"Beyond that the case says to {DOES[left.policy]}, so the answer may err either way. Give a wider table."
+            else f"Beyond that the case says to {DOES[left.policy]}, so the answer may err either way. "
+            "Give a "
+            "wider table."
         )
         excess = abs(left.T - left.bound)
         yield Caution(
@@ -858,8 +902,10 @@ def _property_range_ahead(ahead: Ahead) -> Iterator[Caution]:
         )
         yield Caution(
             "property-range",
-            f"The stream could come to {_temperature(ahead.case, T)}, and the properties of {fluid.name} are known "
-            f"{'up to' if bound == high else 'from'} {_temperature(ahead.case, bound)}{'' if bound == high else ' on'}. "
+            f"The stream could come to {_temperature(ahead.case, T)}, and the properties of {fluid.name} are "
+            "known "
+            f"{'up to' if bound == high else 'from'} "
+            f"{_temperature(ahead.case, bound)}{'' if bound == high else ' on'}. "
             f"{then}",
             place="wetted wall",
             found=T,
@@ -882,8 +928,10 @@ def _copper(ahead: Ahead) -> Iterator[Caution]:
     pure, tube = (float(SOLIDS[name].conductivity(300.0)) for name in ("copper", "deoxidised copper"))
     yield Caution(
         "copper-kind",
-        f'"copper" is pure copper ({_g(pure)} W/m/K at 300 K); drawn tube is mostly deoxidised copper with about '
-        f'{_g(tube)} W/m/K, which spreads heat less than shown. Write solid = "deoxidised copper" if that is meant.',
+        f'"copper" is pure copper ({_g(pure)} W/m/K at 300 K); drawn tube is mostly deoxidised copper with '
+        "about "
+        f'{_g(tube)} W/m/K, which spreads heat less than shown. Write solid = "deoxidised copper" if that is '
+        "meant.",
         place=", ".join(sorted(layers)),
         found=pure,
         limit=tube,
@@ -892,12 +940,12 @@ def _copper(ahead: Ahead) -> Iterator[Caution]:
     )
 
 
-# ------------------------------------------------------------------------------------------------ rules: not checked
+# ----- rules: not checked
 
 
 def _free_convection_caution(ahead: Ahead, rayleigh: float | None, place: str) -> Caution:
     size = (
-        f"the Rayleigh number of the bore is about {_g(rayleigh)}"
+        f"the Rayleigh number of the bore is about {_about(rayleigh)}"
         if rayleigh is not None
         else "the case gives no density that changes with temperature, so its strength is not known"
     )
@@ -907,7 +955,9 @@ def _free_convection_caution(ahead: Ahead, rayleigh: float | None, place: str) -
         rises = (ahead.case.z_axis == "up") != ahead.mirrored
         effect = (
             f"it {'speeds up' if rises else 'slows down'} the flow along a hot wall"
-            f"{'' if rises else ', down to reverse flow,'} and {'cools' if rises else 'heats'} that wall more than shown"
+            f"{'' if rises else ', down to reverse flow,'} and {'cools' if rises else 'heats'} that wall "
+            "more "
+            "than shown"
         )
     return Caution(
         "free-convection",
@@ -981,8 +1031,10 @@ def _phase_change(found: Found) -> Iterator[Caution]:
     T = float(wall[i]) + found.t_in
     yield Caution(
         "phase-change",
-        f"Whether there is {what} was not checked (the key for it is not available yet): the wetted wall comes to "
-        f"{_temperature(found.case, T)} at z = {_length(found.case, z)}. Compare it by hand at the lowest pressure there.",
+        f"Whether there is {what} was not checked (the key for it is not available yet): the wetted wall "
+        "comes to "
+        f"{_temperature(found.case, T)} at z = {_length(found.case, z)}. Compare it by hand at the lowest "
+        "pressure there.",
         place=f"z = {_length(found.case, z)}",
         found=T,
         source="no criterion applied",
@@ -1010,7 +1062,7 @@ AFTER: tuple[Callable[[Found], Iterator[Caution]], ...] = (
     _outlet_flow,
     _outlet_heat,
     _warm_inlet,
-    _heated_to_outlet,
+    _wall_to_outlet,
     _property_range,
     _free_convection,
     _phase_change,
