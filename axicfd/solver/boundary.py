@@ -94,19 +94,22 @@ def _brought(condition: Outside, z0: float, z: Array, area: Array, length: float
 
 
 def end_faces(case: Case, grid: Grid, end: str, t_in: float) -> Exchange:
-    """The condition of the solids' end faces in the "first" or "last" plane, one entry per radial cell."""
+    """The condition of the solids' end faces in the "first" or "last" plane, one entry per radial cell.
+
+    A heat stated for all layers is shared by area.
+    """
     exchange = no_exchange(grid.nr)
     i = 0 if end == "first" else grid.nz - 1
-    for piece in grid.pieces:
-        if piece.layer.kind != "solid" or not piece.i0 <= i < piece.i1:
-            continue
-        condition = case.ends.of(end, piece.layer.name)
+    at_end = [piece for piece in grid.pieces if piece.layer.kind == "solid" and piece.i0 <= i < piece.i1]
+    conditions = [case.ends.of(end, piece.layer.name) for piece in at_end]
+    for piece, condition in zip(at_end, conditions, strict=True):
         here = slice(piece.j0, piece.j1)
         area = grid.area_z[here]
         if condition.heat_flux is not None:
             exchange.brought[here] = condition.heat_flux * area
         elif condition.heat is not None:
-            exchange.brought[here] = condition.heat * area / area.sum()
+            sharing = [p.layer.area for p, c in zip(at_end, conditions, strict=True) if c is condition]
+            exchange.brought[here] = condition.heat * area / sum(sharing)
         if condition.film_coefficient and condition.ambient is not None:
             exchange.temperature[here] = condition.ambient - t_in
             exchange.resistance[here] = 1.0 / (condition.film_coefficient * area)
