@@ -53,9 +53,8 @@ ENERGY_TARGET = 1e-8
 SMALLEST_RAYLEIGH = (
     1.0  # buoyant motion then spreads less heat across the bore than conduction (order of magnitude)
 )
-NOTICED = (
-    1.0  # K by which a wall must differ from the inlet for boiling, freezing or condensing to be mentioned
-)
+MATTERS = 1e-3  # K; smaller differences raise no caution, as in the scale of the heat balance
+NOTICED = 1.0  # K between wall and inlet from which boiling, freezing or condensing is mentioned
 FADED = 4.0  # reaches after which the warmth of a wall is down to 2 %
 SHORT = 0.01  # share of the tube's length that no advice is given about before a solve
 GRAVITY = 9.81  # m/s2, rounded standard gravity
@@ -281,6 +280,11 @@ class Found(Ahead):
         crossing = sum(float(np.abs(q).sum()) for q in (h.outside, h.first, h.last))
         made = [float(np.abs(q).sum()) for q in (h.generated, h.viscous)]
         return max(crossing, *made, abs(float(self.view.enthalpy[-1] - self.view.enthalpy[0])))
+
+    @property
+    def carries_heat(self) -> bool:
+        """Whether the stream flows, and the heat is more than what changes it by a millikelvin."""
+        return self.flows and self.heat > self.capacity_flow * MATTERS
 
     @cached_property
     def bulk(self) -> Array:
@@ -657,41 +661,48 @@ def _lead_in(ahead: Ahead) -> Iterator[Caution]:
 
 
 def _warm_inlet(found: Found) -> Iterator[Caution]:
-    """Wall or fluid at the inlet end that is not at the inlet temperature: heat would go on upstream."""
-    if found.span == 0.0:
-        return
-    end, row = ("last", -1) if found.mirrored else ("first", 0)
-    section = found.layout.sections[row]
-    warm = _wall_at_end(found, section, end, row)
-    what, carried = "The wall", _along(found.case, section, found.t_in)
+    """Wall or fluid at the inlet end that is not at the inlet temperature: heat would go on upstream.
+
+    Where nothing flows, either end is looked at.
+    """
+    ends = [("first", 0), ("last", -1)]
     if found.flows:
-        # flow-weighted in the plane: from what is conducted just behind it, as nothing is in the plane
-        k = found.view.conducted[1]
-        fluid = -float(k) / found.capacity_flow
-        if abs(fluid) > abs(warm):
-            warm, what = fluid, "The fluid"
-            carried = float(found.fluid.conductivity(found.t_in)) * groups.tube_area(found.bore)
+        ends = ends[1:] if found.mirrored else ends[:1]
+    for end, row in ends:
+        section = found.layout.sections[row]
+        warm, what = _wall_at_end(found, section, end, row), "The wall"
+        carried = _along(found.case, section, found.t_in)
+        if found.flows:
+            # flow-weighted in the plane: from what is conducted just behind it, as nothing is in the plane
+            fluid = -float(found.view.conducted[1]) / found.capacity_flow
+            if abs(fluid) > abs(warm):
+                warm, what = fluid, "The fluid"
+                carried = float(found.fluid.conductivity(found.t_in)) * groups.tube_area(found.bore)
+        if abs(warm) > max(WARM_END * found.span, MATTERS):
+            yield _warm_end(found, section, end, what, warm, carried)
+
+
+def _warm_end(
+    found: Found, section: PlacedSection, end: str, what: str, warm: float, carried: float
+) -> Caution:
+    """The caution for an end that is `warm` [K] off the inlet temperature; carried: k A [W m/K] of what is."""
     share = abs(warm) / found.span
-    if share <= WARM_END:
-        return
     reach = found.reach_upstream(section)
-    leaving = carried * abs(warm) / reach / found.heat if found.heat and math.isfinite(reach) else 0.0
-    advice = (
-        "Nothing that flows carries it back, so no lead-in is long enough; say in [ends] what the wall meets."
-    )
     if math.isfinite(reach):
-        missing = reach * math.log(share / WARM_END)
+        leaving = carried * abs(warm) / reach / found.heat if found.heat else 0.0
         advice = (
-            f"Lengthen the lead-in by {_length(found.case, missing)} (the warmth fades by a factor e in "
+            f"A real tube would carry about {_percent(leaving)} of the heat on. Lengthen this end by "
+            f"{_length(found.case, reach * math.log(share / WARM_END))} (the warmth fades by a factor e in "
             f"{_length(found.case, reach)}), or say in [ends] what the wall meets."
         )
-    yield Caution(
+    else:
+        leaving = 1.0
+        advice = "With neither flow nor loss no length is enough: say in [ends] what the wall meets."
+    return Caution(
         "warm-end",
-        f"{what} is {_g(abs(warm))} K {'warmer' if warm > 0 else 'colder'} than the inlet temperature where "
-        "the tube "
-        f"begins ({_percent(share)} of the span, limit {_percent(WARM_END)}): a real tube would carry about "
-        f"{_percent(leaving)} of the heat on upstream, and the wall near this end is shown too "
-        f"{'hot' if warm > 0 else 'cold'}. {advice}",
+        f"{what} is {_g(abs(warm))} K {'warmer' if warm > 0 else 'colder'} than the inlet temperature at the "
+        f"{end} end ({_percent(share)} of the span, limit {_percent(WARM_END)}), and is shown too "
+        f"{'hot' if warm > 0 else 'cold'} near it. {advice}",
         place=f"{end} end",
         found=share,
         limit=WARM_END,
@@ -721,7 +732,7 @@ def _end_pieces(found: Found, row: int) -> Iterator[Piece]:
 
 def _wall_to_outlet(found: Found) -> Iterator[Caution]:
     """Heat that a real wall would carry on past the outlet end."""
-    if not found.flows or found.heat == 0.0:
+    if not found.carries_heat:
         return
     end, row = ("first", 0) if found.mirrored else ("last", -1)
     section = found.layout.sections[row]
@@ -757,15 +768,19 @@ def _wall_to_outlet(found: Found) -> Iterator[Caution]:
 def _outlet_heat(found: Found) -> Iterator[Caution]:
     """Heat conducted along the stream near the outlet, where the outlet condition lets none through."""
     conducted, z = found.curve("axial_conduction_W"), found.curve("z_m")
-    if not found.flows or found.heat == 0.0 or conducted is None or z is None:
+    if not found.carries_heat or conducted is None or z is None:
         return
     along = np.abs(z - z[0])
-    near = along >= max(along[-1] - found.bore, 0.5 * along[-1])
+    # the cut itself flattens the temperature as far upstream as heat can run
+    section = found.layout.sections[0 if found.mirrored else -1]
+    seen = min(max(found.bore, found.reach_upstream(section)), 0.5 * along[-1])
+    near = along >= along[-1] - seen
     share = float(np.nanmax(np.abs(conducted[near]))) / found.heat
     if share > HEAT_ALONG_OUTLET:
         yield Caution(
             "outlet-not-developed",
-            f"Within a diameter of the outlet the stream conducts {_percent(share)} of the heat along itself "
+            f"Within {_length(found.case, seen)} of the outlet the stream conducts {_percent(share)} of "
+            "the heat along itself "
             "(limit "
             f"{_percent(HEAT_ALONG_OUTLET)}, Péclet number {_g(found.peclet)}), which the outlet condition "
             "cuts off: "
@@ -998,7 +1013,7 @@ def _free_convection_ahead(ahead: Ahead) -> Iterator[Caution]:
 def _free_convection(found: Found) -> Iterator[Caution]:
     fluid = np.column_stack([found.view.t, found.view.wall])
     difference = fluid.max(axis=1) - fluid.min(axis=1)
-    if difference.max() < RANGE_TOLERANCE * max(found.span, 1e-9) or difference.max() < 1e-6:
+    if difference.max() < MATTERS:
         return
     middle = 0.5 * (fluid.max(axis=1) + fluid.min(axis=1)) + found.t_in
     rayleigh = _rayleigh(found, middle, difference)
