@@ -189,7 +189,7 @@ def test_a_heated_end_and_a_given_temperature_are_places():
     f = family_of(BASE)
     kinds = {p.name: p.singular for p in f.places}
     assert kinds["last end"] is False  # heat and a film
-    assert kinds["joint heater | plate"] is True
+    assert kinds["joint plate | hotter"] is True
     assert kinds["joint lead-in | heater"] is False
 
 
