@@ -685,11 +685,11 @@ def _warm_inlet(found: Found) -> Iterator[Caution]:
 def _warm_end(
     found: Found, section: PlacedSection, end: str, what: str, warm: float, carried: float
 ) -> Caution:
-    """The caution for an end that is `warm` [K] off the inlet temperature; carried: k A [W m/K] of what is."""
+    """The caution for an end that is `warm` [K] off the inlet temperature; carried: its k A [W m/K]."""
     share = abs(warm) / found.span
     reach = found.reach_upstream(section)
     if math.isfinite(reach):
-        leaving = carried * abs(warm) / reach / found.heat if found.heat else 0.0
+        leaving = min(1.0, carried * abs(warm) / reach / found.heat) if found.heat else 0.0
         advice = (
             f"A real tube would carry about {_percent(leaving)} of the heat on. Lengthen this end by "
             f"{_length(found.case, reach * math.log(share / WARM_END))} (the warmth fades by a factor e in "
@@ -706,7 +706,7 @@ def _warm_end(
         place=f"{end} end",
         found=share,
         limit=WARM_END,
-        weight=100.0 * min(1.0, leaving),
+        weight=100.0 * leaving,
     )
 
 
