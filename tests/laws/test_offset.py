@@ -4,12 +4,17 @@ import re
 
 from tests.laws import tubes
 
-SECTIONS = tubes.SECTIONS + """
+SECTIONS = (
+    tubes.SECTIONS
+    + """
 [[section]]
 name    = "plate"
 length  = "30 mm"
-outside = { temperature = { z = ["0 mm", "30 mm"], value = ["60 degC", "30 degC"] }, contact_resistance = "2e-4 m^2 K/W" }
+[section.outside]
+contact_resistance = "2e-4 m^2 K/W"
+temperature        = { z = ["0 mm", "30 mm"], value = ["60 degC", "30 degC"] }
 """
+)
 ENDS = '[ends]\nfirst = { temperature = "25 degC", contact_resistance = "1e-4 m^2 K/W" }\n'
 MESH = (8, 4, 4), (8, 16, 16, 16)
 

@@ -1,9 +1,9 @@
 """Reciprocity: what a source at one place does at another is what the same source there would do here.
 
-Conduction: exact for any mesh, whatever the materials, contacts and directions. With a developed flow: the response is
-exchanged when the flow is reversed as well (the adjoint of convection runs backwards; the inlet plane, which brings in
-the enthalpy of its own temperature, and the outlet plane, through which nothing is conducted, change roles), here up to
-the error of the mesh.
+Conduction: exact for any mesh, whatever the materials, contacts and directions. With a developed flow: the
+response is exchanged when the flow is reversed as well (the adjoint of convection runs backwards; the inlet
+plane, which brings in the enthalpy of its own temperature, and the outlet plane, through which nothing is
+conducted, change roles), here up to the error of the mesh.
 """
 
 import numpy as np

@@ -1,7 +1,7 @@
 """Tubes of equal dimensionless groups have equal dimensionless fields, whatever their size and fluid.
 
-Equal: lengths and radii over the bore, Reynolds, Prandtl and Brinkman number, conductivities over the fluid's,
-contact and film resistances over the fluid's, the exponent of viscosity times the temperature scale.
+Equal: lengths and radii over the bore, Reynolds, Prandtl and Brinkman number, conductivities over the
+fluid's, contact and film resistances over the fluid's, the exponent of viscosity times the temperature scale.
 A constant hidden in the solver, or a temperature taken from an absolute zero, would break it.
 """
 
@@ -15,7 +15,8 @@ MESH = (8, 4, 4), (8, 16, 16)
 
 
 def tube(bore, k, density, cp, scale, inlet) -> str:
-    """bore [m], k [W/m/K], density [kg/m3], cp [J/kg/K], temperature scale [K], inlet [K]; viscosity from Prandtl."""
+    """bore [m], k [W/m/K], density [kg/m3], cp [J/kg/K], temperature scale [K], inlet [K]; viscosity from
+    Prandtl."""
     viscosity = PRANDTL * k / cp
     velocity = REYNOLDS * viscosity / (density * bore)
     # Brinkman number mu U^2 / (k scale) is set by the bore that goes with the fluid
@@ -31,7 +32,10 @@ def tube(bore, k, density, cp, scale, inlet) -> str:
 density       = "{density:.17g} kg/m^3"
 specific_heat = "{cp:.17g} J/kg/K"
 conductivity  = "{k:.17g} W/m/K"
-viscosity     = {{ at = "{inlet:.17g} K", value = "{viscosity:.17g} Pa s", exponent = "{1.5 / scale:.17g} 1/K" }}
+[fluid.liquid.viscosity]
+at       = "{inlet:.17g} K"
+value    = "{viscosity:.17g} Pa s"
+exponent = "{1.5 / scale:.17g} 1/K"
 """
     solids = f"""
 [solid.metal]
@@ -63,15 +67,29 @@ outside = {{ insulated = true }}
 [[section]]
 name    = "heater"
 length  = {length(8)}
-outside = {{ heat = "{9.0 * k * bore * scale:.17g} W", film_coefficient = "{2 * k / bore:.17g} W/m^2/K", ambient = {temperature(0.1)} }}
+[section.outside]
+heat             = "{9.0 * k * bore * scale:.17g} W"
+film_coefficient = "{2 * k / bore:.17g} W/m^2/K"
+ambient          = {temperature(0.1)}
 [[section]]
 name    = "plate"
 length  = {length(6)}
 outside = {{ temperature = {temperature(1)}, contact_resistance = "{0.2 * bore / k:.17g} m^2 K/W" }}
 """
-    ends = f"[ends]\nlast.sleeve = {{ temperature = {temperature(0.5)}, contact_resistance = \"{bore / k:.17g} m^2 K/W\" }}\n"
+    ends = f"""
+[ends.last.sleeve]
+temperature        = {temperature(0.5)}
+contact_resistance = "{bore / k:.17g} m^2 K/W"
+"""
     return tubes.text(
-        f'mean_velocity = "{velocity:.17g} m/s"', fluid, layers, sections, solids, ends, viscous=True, inlet="X"
+        f'mean_velocity = "{velocity:.17g} m/s"',
+        fluid,
+        layers,
+        sections,
+        solids,
+        ends,
+        viscous=True,
+        inlet="X",
     ).replace('"X"', f'"{inlet:.17g} K"')
 
 
@@ -82,8 +100,8 @@ def bore_for(k, density, cp, scale):
 
 
 def test_equal_groups_equal_fields():
-    water_like = dict(k=0.6, density=1000.0, cp=4000.0, scale=30.0)
-    other = dict(k=3.1, density=47.0, cp=613.0, scale=0.7)
+    water_like = {"k": 0.6, "density": 1000.0, "cp": 4000.0, "scale": 30.0}
+    other = {"k": 3.1, "density": 47.0, "cp": 613.0, "scale": 0.7}
     runs = []
     for fluid, inlet in (water_like, 290.0), (other, 431.0):
         bore = bore_for(**fluid)
@@ -97,7 +115,10 @@ def test_equal_groups_equal_fields():
     assert tubes.relative(b.flow.v / u_b, a.flow.v / u_a) < 1e-10
     pressures = (b.flow.p / (f_b["density"] * u_b**2), a.flow.p / (f_a["density"] * u_a**2))
     assert tubes.relative(*pressures) < 1e-10
-    heats = (b.heat.viscous / (f_b["k"] * bore_b * f_b["scale"]), a.heat.viscous / (f_a["k"] * bore_a * f_a["scale"]))
+    heats = (
+        b.heat.viscous / (f_b["k"] * bore_b * f_b["scale"]),
+        a.heat.viscous / (f_a["k"] * bore_a * f_a["scale"]),
+    )
     assert tubes.relative(*heats) < 1e-10
     stream_a, stream_b = a.summary["stream"]["water"], b.summary["stream"]["water"]
     for key in "reynolds", "prandtl", "peclet", "graetz", "largest_reynolds":

@@ -1,5 +1,5 @@
-"""What a tube is called in the case file changes nothing: a layer cut in two, a section cut in two, a void around it, the
-tube written upside down. On the same faces the answers agree to round-off."""
+"""What a tube is called in the case file changes nothing: a layer cut in two, a section cut in two, a void
+around it, the tube written upside down. On the same faces the answers agree to round-off."""
 
 import numpy as np
 import pytest
@@ -16,8 +16,12 @@ viscosity     = { at = "20 degC", value = "20 mPa s", exponent = "0.03 1/K" }
 SOLIDS = tubes.SOLIDS.replace(
     '"0.3 W/m/K"', '{ temperature = ["0 degC", "200 degC"], value = ["0.3 W/m/K", "0.5 W/m/K"] }'
 )
-ENDS = '[ends]\nfirst.sleeve = { temperature = "30 degC", contact_resistance = "1e-3 m^2 K/W" }\nlast.sleeve = { heat = "0.2 W" }\n'
-BASE = dict(fluid=VARYING, solids=SOLIDS, viscous=True)
+ENDS = """
+[ends]
+first.sleeve = { temperature = "30 degC", contact_resistance = "1e-3 m^2 K/W" }
+last.sleeve = { heat = "0.2 W" }
+"""
+BASE = {"fluid": VARYING, "solids": SOLIDS, "viscous": True}
 
 
 def same(found: tubes.Run, expected: tubes.Run, columns=slice(None), turned=False) -> None:
@@ -30,7 +34,9 @@ def same(found: tubes.Run, expected: tubes.Run, columns=slice(None), turned=Fals
     assert tubes.relative(p, expected.flow.p) < 1e-9
     keys = "pressure_drop_Pa", "heat_gain_W", "outlet_temperature_K", "hottest_wetted_wall_K"
     for key in keys:
-        assert found.summary["stream"]["water"][key] == pytest.approx(expected.summary["stream"]["water"][key], rel=1e-9)
+        assert found.summary["stream"]["water"][key] == pytest.approx(
+            expected.summary["stream"]["water"][key], rel=1e-9
+        )
 
 
 @pytest.fixture(scope="module")
@@ -89,13 +95,17 @@ def test_void_around_the_tube_of_an_insulated_section(place):
     void = '[[layer]]\nname = "vacuum"\nvoid = true\nthickness = "1 mm"\n'
     expected = tubes.run(tubes.text(sections=heated, **BASE), *MESH)
     if place == "everywhere":
-        found = tubes.run(tubes.text(sections=heated, layers=tubes.THICK_WALL + void, **BASE), (*MESH[0], 1), MESH[1])
+        found = tubes.run(
+            tubes.text(sections=heated, layers=tubes.THICK_WALL + void, **BASE), (*MESH[0], 1), MESH[1]
+        )
         same(found, expected, slice(0, 20))
         return
     stack = (tubes.THICK_WALL + void).replace("[[layer]]", "[[section.layer]]")
-    first, _, others = heated.partition("[[section]]\nname    = \"heater\"")
+    first, _, others = heated.partition('[[section]]\nname    = "heater"')
     found = tubes.run(
-        tubes.text(sections=first + stack + '[[section]]\nname    = "heater"' + others, **BASE), (*MESH[0], 1), MESH[1]
+        tubes.text(sections=first + stack + '[[section]]\nname    = "heater"' + others, **BASE),
+        (*MESH[0], 1),
+        MESH[1],
     )
     # the change of the stack counts as a joint for the scheme, as does the joint of the case without the void
     assert tubes.relative(found.t[:, :20], expected.t) < 5e-3
@@ -123,11 +133,15 @@ def test_tube_written_upside_down(profile):
     for one, other in ("first", "last"), ("last", "first"):
         assert a["ledger"]["ends"][one] == pytest.approx(b["ledger"]["ends"][other], rel=1e-9)
     for name in a["section"]:
-        assert a["section"][name]["heat_in_W"] == pytest.approx(b["section"][name]["heat_in_W"], rel=1e-9, abs=1e-12)
+        assert a["section"][name]["heat_in_W"] == pytest.approx(
+            b["section"][name]["heat_in_W"], rel=1e-9, abs=1e-12
+        )
     stream_a, stream_b = a["stream"]["water"], b["stream"]["water"]
     place = found.layout.length - stream_b["hottest_wetted_wall_z_m"]
     assert place == pytest.approx(stream_a["hottest_wetted_wall_z_m"], rel=1e-6)
-    assert stream_b["largest_wall_shear_stress_Pa"] == pytest.approx(stream_a["largest_wall_shear_stress_Pa"], rel=1e-9)
+    assert stream_b["largest_wall_shear_stress_Pa"] == pytest.approx(
+        stream_a["largest_wall_shear_stress_Pa"], rel=1e-9
+    )
 
 
 def test_curves_of_the_tube_upside_down():
@@ -142,4 +156,6 @@ def test_curves_of_the_tube_upside_down():
             continue
         turned = other[name][::-1] * (-1.0 if name == "axial_conduction_W" else 1.0)
         assert np.array_equal(np.isnan(column), np.isnan(turned)), name
-        np.testing.assert_allclose(turned, column, rtol=1e-7, atol=1e-9 * np.nanmax(np.abs(column)), err_msg=name)
+        np.testing.assert_allclose(
+            turned, column, rtol=1e-7, atol=1e-9 * np.nanmax(np.abs(column)), err_msg=name
+        )

@@ -1,5 +1,5 @@
-"""With constant properties T is linear in all sources and surrounding temperatures: it would not be if one of them
-were scaled twice, or acted on another."""
+"""With constant properties T is linear in all sources and surrounding temperatures: it would not be if one of
+them were scaled twice, or acted on another."""
 
 import numpy as np
 import pytest
@@ -34,7 +34,11 @@ def rise(sections_text: str, **rest) -> np.ndarray:
     return tubes.run(tubes.text(sections=sections_text, **rest), *MESH).t
 
 
-END = '[ends]\nfirst = { temperature = "%s", contact_resistance = "1e-4 m^2 K/W" }\nlast.sleeve = { heat_flux = "%s" }\n'
+END = """
+[ends]
+first = { temperature = "%s", contact_resistance = "1e-4 m^2 K/W" }
+last.sleeve = { heat_flux = "%s" }
+"""
 
 
 @pytest.mark.parametrize("key", HEATER)
@@ -62,7 +66,11 @@ def test_heat_bath_ends_and_generation_add_up(key, viscous):
 def test_the_same_watts_heat_alike_whichever_key_says_them():
     """5 W over 30 mm of a surface of 10 mm diameter, said in three ways."""
     area = np.pi * 10e-3 * 30e-3
-    ways = ['heat = "5 W", ', f'heat_flux = "{5.0 / area:.17g} W/m^2", ', f'heat_per_length = "{5.0 / 0.03:.17g} W/m", ']
+    ways = [
+        'heat = "5 W", ',
+        f'heat_flux = "{5.0 / area:.17g} W/m^2", ',
+        f'heat_per_length = "{5.0 / 0.03:.17g} W/m", ',
+    ]
     first, *others = (rise(sections(way)) for way in ways)
     for other in others:
         assert tubes.relative(other, first) < 1e-12

@@ -145,7 +145,8 @@ def run(
 ) -> Run:
     """Solve a case, climbing `levels` meshes.
 
-    radial, axial : even cells of every stretch between interfaces and of every section; None takes the case's own
+    radial, axial : even cells of every stretch between interfaces and of every section; None takes the case's
+    own
                     graded mesh
     """
     case = load(case_text)
