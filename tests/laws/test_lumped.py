@@ -94,7 +94,8 @@ def test_rod_at_rest_between_its_ends(walled):
         conducting += K_WALL * AREA_WALL
         ends = (
             "[ends]\n"
-            f'first.wall = {{ temperature = "{293.15 + plate} K", contact_resistance = "{contact} m^2 K/W" }}\n'
+            f'first.wall.temperature = "{20 + plate} degC"\n'
+            f'first.wall.contact_resistance = "{contact} m^2 K/W"\n'
             f'last.wall = {{ heat = "{heat} W" }}\n'
         )
         per_kelvin = AREA_WALL / contact
