@@ -8,7 +8,7 @@ from axicfd.case.model import Case
 from axicfd.results.result import Result
 
 FOLDER = Path(__file__).parent.parent / "cases"
-NAMES = sorted(path.stem for path in FOLDER.glob("*.toml") if path.stem != "expected")
+NAMES = sorted(path.stem for path in FOLDER.glob("*.toml"))
 COARSE = {"mesh.radial": 16, "mesh.axial": 96}
 
 
