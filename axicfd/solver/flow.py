@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from axicfd.kernels import continuity, momentum, transfer
+from axicfd.kernels import continuity, momentum
 from axicfd.kernels.momentum import FlowMesh, Viscosity
 from axicfd.mesh.grid import STREAM, Array, Grid
 
@@ -16,7 +16,7 @@ RELAX_MOMENTUM = 0.92  # between 0.8 and 0.97 every case tried converges; the be
 RELAX_SMOOTHER = 0.8  # as the smoother of a multigrid cycle: short waves only
 RELAX_SIMPLE = 0.7, 0.3  # momentum and pressure, if SIMPLEC is not wanted
 CORRECTION_DROP = 0.05  # the pressure correction is solved until its residual fell to this share
-CORRECTION_CYCLES = 8
+CORRECTION_CYCLES = 12
 CLOSED = 1e-12  # share of the mass flow that may be missing in all cells together, before heat is carried by it
 CLOSING_PASSES = 6
 COARSEST = 4  # cells along z where the pressure multigrid stops
@@ -111,83 +111,73 @@ def flow_mesh(z: Array, r: Array, fluid: Array) -> FlowMesh:
 
 @dataclass
 class _Level:
-    """One mesh of the pressure multigrid."""
+    """One mesh of the pressure multigrid; pair_r cells are joined along r on the way to the next one."""
 
     cz: Array
     cr: Array
     b: Array
     x: Array
-    open_p: Array
-    dist_z: Array
-    dist_r: Array
     pair_r: int = 1
-    down: tuple = ()  # zi, zw, ri, rw: where the cells of this mesh lie among those of the next coarser one
 
 
 class PressureCorrection:
-    """Line multigrid for the pressure correction on the mesh of one stream."""
+    """Conjugate gradients with a line multigrid cycle, for the pressure correction on the mesh of one stream."""
 
     def __init__(self, mesh: FlowMesh):
-        z, r = mesh.z, mesh.r
+        nz, nr = mesh.nz, mesh.nr
         self.levels: list[_Level] = []
-        open_p = mesh.open_p
         while True:
-            nz, nr = len(z) - 1, len(r) - 1
-            zc, rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
-            level = _Level(
-                np.zeros((nz + 1, nr)),
-                np.zeros((nz, nr + 1)),
-                np.zeros((nz, nr)),
-                np.zeros((nz, nr)),
-                open_p,
-                _distances(z, zc),
-                _distances(r, rc),
-            )
+            level = _Level(np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1)), np.zeros((nz, nr)), np.zeros((nz, nr)))
             self.levels.append(level)
             if nz <= COARSEST:
-                return
+                break
             level.pair_r = 2 if nr % 2 == 0 and nr > 4 else 1
-            z = np.append(z[:-1:2], z[-1])
-            r = r[:: level.pair_r].copy()
-            coarse_zc, coarse_rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
-            level.down = (*neighbours(zc, coarse_zc), *neighbours(rc, coarse_rc))
-            open_p = np.ones((len(z) - 1, len(r) - 1))
+            nz, nr = (nz + 1) // 2, nr // level.pair_r
+        self._x, self._ap = np.zeros((mesh.nz, mesh.nr)), np.zeros((mesh.nz, mesh.nr))
 
     def solve(self, drop: float = CORRECTION_DROP, cycles: int = CORRECTION_CYCLES) -> Array:
-        """Solve the finest level's cz, cr, b to a share `drop` of the starting defect."""
+        """Solve the finest level's cz, cr, b to a share `drop` of the starting defect; its b is used up."""
         for fine, coarse in zip(self.levels[:-1], self.levels[1:], strict=True):
-            continuity.coarsen(
-                fine.cz, fine.cr, fine.dist_z, coarse.dist_z, fine.pair_r, fine.dist_r, coarse.dist_r, coarse.cz, coarse.cr
-            )
+            continuity.coarsen(fine.cz, fine.cr, fine.pair_r, coarse.cz, coarse.cr)
+        top, x, ap = self.levels[0], self._x, self._ap
+        r = top.b
+        x[...] = 0.0
+        start = np.abs(r).sum()
+        old, p = 0.0, np.zeros_like(x)
+        for k in range(cycles):
+            if np.abs(r).sum() <= drop * start:
+                break
+            z = self._preconditioned()
+            new = float(np.vdot(r, z))
+            if not new > 0.0:
+                break
+            p = z + (new / old) * p if k else z.copy()
+            old = new
+            continuity.apply(top.cz, top.cr, p, ap)
+            step = new / float(np.vdot(p, ap))
+            x += step * p
+            r -= step * ap
+        return x
+
+    def _preconditioned(self) -> Array:
+        """One symmetric cycle on the finest level's b, from zero."""
         top = self.levels[0]
         top.x[...] = 0.0
-        start = np.abs(top.b).sum()
-        for _ in range(cycles):
-            if continuity.station_shift(top.cz, top.cr, top.b, top.x) <= drop * start:
-                break
-            self._cycle(0)
+        continuity.station_shift(top.cz, top.cr, top.b, top.x)
+        self._cycle(0)
+        continuity.station_shift(top.cz, top.cr, top.b, top.x)
         return top.x
 
     def _cycle(self, k: int) -> None:
         level = self.levels[k]
-        if k == len(self.levels) - 1:
-            for _ in range(4):
-                continuity.station_shift(level.cz, level.cr, level.b, level.x)
-                continuity.line_sweep(level.cz, level.cr, level.b, level.x, True)
-                continuity.line_sweep(level.cz, level.cr, level.b, level.x, False)
-            return
         continuity.line_sweep(level.cz, level.cr, level.b, level.x, True)
-        coarse = self.levels[k + 1]
-        continuity.restrict_residual(level.cz, level.cr, level.b, level.x, level.pair_r, coarse.b)
-        coarse.x[...] = 0.0
-        self._cycle(k + 1)
-        transfer.prolong_add(coarse.x, *level.down, level.open_p, level.x)
+        if k < len(self.levels) - 1:
+            coarse = self.levels[k + 1]
+            continuity.restrict_residual(level.cz, level.cr, level.b, level.x, level.pair_r, coarse.b)
+            coarse.x[...] = 0.0
+            self._cycle(k + 1)
+            continuity.extend(coarse.x, level.pair_r, level.x)
         continuity.line_sweep(level.cz, level.cr, level.b, level.x, False)
-
-
-def _distances(faces: Array, centres: Array) -> Array:
-    """Distance of the centres beside each face (half a cell at the ends)."""
-    return np.diff(np.concatenate([faces[:1], centres, faces[-1:]]))
 
 
 def neighbours(fine: Array, coarse: Array) -> tuple[Array, Array]:

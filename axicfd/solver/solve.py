@@ -157,6 +157,8 @@ class _Run:
         reason: str | None = None
         while reason is None:
             self._flow_steps()
+            if not np.isfinite(self.flow.residual()):
+                return "diverged"
             self._hand_over_flow()
             self.energy.step()
             self._refresh_viscosity()
