@@ -14,6 +14,7 @@ from axicfd.case.model import Case, Law
 from axicfd.kernels.momentum import Viscosity
 from axicfd.mesh.grid import NOTHING, SOLID, STREAM, Array, Grid
 from axicfd.solver import boundary
+from axicfd.solver.edges import edge_factors
 
 FACE_PASSES = 2  # refreshes of the face temperatures per call; the outer iteration does the rest
 
@@ -68,6 +69,7 @@ class Conductors:
         self._same_r &= self._contact[:, 1:-1] == 0.0
         self._shape_in, self._shape_out = _radial_shapes(grid)
         self._rise_in, self._rise_out = _rise_shapes(grid)
+        self._edges = edge_factors(case, grid, t_in)
         self.face_minus = np.zeros((grid.nz, grid.nr + 1))  # temperature on the inner side of each radial face
         self.face_plus = np.zeros((grid.nz, grid.nr + 1))
         self._fixed: Conduction | None = None
@@ -87,7 +89,7 @@ class Conductors:
         k = np.ones(self.grid.shape)
         for m in self.materials:
             law = getattr(m, direction)
-            k[m.cells] = law.value if law.is_constant and hasattr(law, "value") else law(t[m.cells] + self.t_in)
+            k[m.cells] = float(law(self.t_in)) if law.is_constant else law(t[m.cells] + self.t_in)
         return k
 
     def _conductances(self, t: Array) -> Conduction:
@@ -114,6 +116,10 @@ class Conductors:
             half_w, half_e = half / self._k("along", k_w), half / self._k("along", k_e)
             linked = conducts[1:] & conducts[:-1]
             gz[1:-1] = np.where(linked, 1.0 / (half_w[:-1] + half_e[1:]), 0.0)
+        if self._edges is not None:
+            gz, gr = gz * self._edges.z, gr * self._edges.r
+            rows, last = np.arange(grid.nz), grid.outer - 1
+            half_out[rows, last] /= self._edges.r[rows, grid.outer]
         k = self._k("across", t)
         source = self.generated / grid.volume
         return Conduction(
