@@ -79,6 +79,16 @@ def apply(cz, cr, x, y):
 
 
 @kernel
+def dot(a, b):
+    """Sum of products; a threaded library routine would wait for cores longer than this takes."""
+    s = 0.0
+    for i in range(a.shape[0]):
+        for j in range(a.shape[1]):
+            s += a[i, j] * b[i, j]
+    return s
+
+
+@kernel
 def line_sweep(cz, cr, b, x, downstream):
     """One Gauss-Seidel sweep over radial lines, each solved exactly."""
     nz, nr = b.shape

@@ -148,13 +148,13 @@ class PressureCorrection:
             if np.abs(r).sum() <= drop * start:
                 break
             z = self._preconditioned()
-            new = float(np.vdot(r, z))
+            new = continuity.dot(r, z)
             if not new > 0.0:
                 break
             p = z + (new / old) * p if k else z.copy()
             old = new
             continuity.apply(top.cz, top.cr, p, ap)
-            step = new / float(np.vdot(p, ap))
+            step = new / continuity.dot(p, ap)
             x += step * p
             r -= step * ap
         return x
