@@ -1,9 +1,9 @@
-"""Where a prescribed temperature begins beside a surface without one: conductances that know the singular field.
+"""Where a prescribed temperature begins beside a surface without one: conductances for the singular field.
 
 Next to such a joint the temperature goes with the square root of the distance: T = T_w + C Im sqrt(s + i n),
 s along the surface (s > 0 under the prescribed temperature), n the depth below it (separation of variables).
-The flux grows as s^(-1/2), and differences of cell values miss it by a share that no refinement lowers, so that
-every heat of the section would converge at first order only. The conductances of the faces near the joint are
+The flux grows as s^(-1/2); differences of cell values miss it by a share that no refinement lowers, so that
+every heat of the section would converge at first order only. The conductances of faces near the joint are
 therefore multiplied by the ratio of the exact heat of this field through the face to its difference quotient.
 The ratio tends to 1 away from the joint, and nothing changes where the mesh does not resolve the square root.
 """
@@ -23,7 +23,7 @@ RESOLVED = 2.0  # cells beside the joint that must fit into the reach
 
 @dataclass(frozen=True)
 class Edges:
-    """Factors of conductances: along z (nz + 1, nr), along r (nz, nr + 1); the surface stands at grid.outer."""
+    """Factors of conductances: along z (nz + 1, nr), along r (nz, nr + 1); the surface is at grid.outer."""
 
     z: Array
     r: Array
@@ -69,7 +69,7 @@ def _prescribed(section: PlacedSection) -> bool:
 
 
 def _depth_ratio(case: Case, layer: PlacedLayer, t_in: float) -> float | None:
-    """What depths are multiplied by so that the layer conducts alike both ways; None if it does not along z."""
+    """Multiplier of depths with which the layer conducts alike both ways; None if it does not along z."""
     if layer.kind == "stream":
         return 1.0
     solid = case.solid_of(layer.material)

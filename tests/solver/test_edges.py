@@ -34,7 +34,7 @@ def joint(between: str = "", sections: str = JOINT, **changes):
         "profile": "developed",
         "mesh": MESH,
     } | changes
-    return tube(sections=sections % between, mesh=MESH, **case)
+    return tube(sections=sections % between, **case)
 
 
 def factors(case):
