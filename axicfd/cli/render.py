@@ -20,10 +20,6 @@ STANDING = (
     "Errors of properties and film coefficients are usually larger than those of the mesh. "
     "Density is held at its inlet value."
 )
-SAFETY = (
-    "These results support, and do not replace, design to the local codes by licensed practice. "
-    "With flow stopped the wall can get far hotter than shown."
-)
 # From here on heat or pressure can hurt. Common practice, no source: about what a hand bears for a moment on
 # metal, and half a bar above the surroundings.
 HURTS_ABOVE = 333.15  # K
@@ -90,6 +86,8 @@ def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, wher
     out.print(STANDING)
     print_cautions(out, summary["cautions"], verbose)
     if can_hurt(result):
+        from axicfd.results.cautions import SAFETY
+
         out.print(SAFETY)
     _print_effort(out, summary, where)
 

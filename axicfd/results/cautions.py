@@ -28,8 +28,7 @@ from axicfd.solver.state import Solution
 from axicfd.theory import duct_heat, groups
 
 SAFETY = (
-    "Heat and pressure can hurt. These results support, and do not replace, design to the local codes by "
-    "licensed "
+    "Heat and pressure can hurt. These results support, and do not replace, design to the local codes by licensed "
     "practice. With flow stopped the wall can get far hotter than shown."
 )
 
