@@ -138,3 +138,55 @@ def test_stream_at_rest_carries_heat_along_itself():
     expected = -slope * K_FLUID * AREA_FLUID
     assert run.heat.outside[run.in_section(0)].sum() == pytest.approx(expected, rel=1e-6)
     assert run.heat.outside[run.in_section(2)].sum() == pytest.approx(-expected, rel=1e-6)
+
+
+def test_second_order_along_z():
+    """A stream of well mixed fluid warms towards the surroundings: halving the cells quarters the error,
+    a little less on the coarsest cells, where the scheme beside the inlet counts."""
+    fluid = FLUID.replace('"0.5 W/m/K"', '"50 W/m/K"')
+    carried, lost, ambient = 2e-4 * CP, 400.0 * np.pi * BORE, 30.0
+    case = tubes.text(
+        'mass_flow = "0.2 g/s"\ninlet_profile = "developed"',
+        fluid=fluid,
+        layers=STREAM_ONLY,
+        sections=one_section(f'film_coefficient = "400 W/m^2/K", ambient = "{20 + ambient} degC"'),
+    )
+    fine = tubes.run(case, (8,), (640,), levels=4)
+    expected = closed_form(
+        fine.grid.zc,
+        50.0 * AREA_FLUID,
+        carried,
+        lost,
+        0.0,
+        ambient,
+        (carried, -50.0 * AREA_FLUID, 0.0),
+        (0, 1, 0),
+    )
+    assert np.abs(mean(fine) - expected).max() < 0.02 * ambient
+    # in the middle: at the outlet a layer of K / C = 0.8 mm hides behind the coarser cells
+    middles = [tubes.run(case, (8,), (n,), levels=2).view.bulk[n // 2] for n in (20, 40, 80)]
+    errors = [abs(t - fine.view.bulk[320]) for t in middles]
+    assert errors[0] / errors[2] > 9.0 and errors[1] / errors[2] > 3.2, errors
+
+
+@pytest.mark.parametrize("direction", ["+z", "-z"])
+def test_specific_heat_that_changes_twofold(direction):
+    """Mixed by its own conductivity, the stream leaves at the temperature to which the heat brings its
+    enthalpy: the integral of a specific heat that rises from 4000 to 8000 J/(kg K) over 60 K."""
+    fluid = FLUID.replace('"0.5 W/m/K"', '"0.5 kW/m/K"').replace(
+        '"4000 J/kg/K"', '{ temperature = ["20 degC", "80 degC"], value = ["4000 J/kg/K", "8000 J/kg/K"] }'
+    )
+    heat, flow = 50.0, 2e-4
+    case = tubes.text(
+        f'mass_flow = "{flow} kg/s"\ninlet_profile = "developed"\ndirection = "{direction}"',
+        fluid=fluid,
+        layers=STREAM_ONLY,
+        sections=one_section(f'heat = "{heat} W"'),
+    )
+    run = tubes.run(case, (8,), (80,))
+    # 4000 T + 4000 / 60 T^2 / 2 = heat / flow
+    rise = (-4000.0 + np.sqrt(4000.0**2 + 4 * 4000.0 / 120.0 * heat / flow)) / (2 * 4000.0 / 120.0)
+    assert 40.0 < rise < 60.0
+    outlet = -1 if direction == "+z" else 0
+    assert run.view.bulk[-1] == pytest.approx(rise, rel=1e-8)
+    assert float(mean(run)[outlet]) == pytest.approx(rise, rel=5e-3)

@@ -95,9 +95,7 @@ def test_void_around_the_tube_of_an_insulated_section(place):
     void = '[[layer]]\nname = "vacuum"\nvoid = true\nthickness = "1 mm"\n'
     expected = tubes.run(tubes.text(sections=heated, **BASE), *MESH)
     if place == "everywhere":
-        found = tubes.run(
-            tubes.text(sections=heated, layers=tubes.THICK_WALL + void, **BASE), (*MESH[0], 1), MESH[1]
-        )
+        found = tubes.run(tubes.text(sections=heated, layers=tubes.THICK_WALL + void, **BASE), (*MESH[0], 1), MESH[1])
         same(found, expected, slice(0, 20))
         return
     stack = (tubes.THICK_WALL + void).replace("[[layer]]", "[[section.layer]]")
@@ -133,15 +131,11 @@ def test_tube_written_upside_down(profile):
     for one, other in ("first", "last"), ("last", "first"):
         assert a["ledger"]["ends"][one] == pytest.approx(b["ledger"]["ends"][other], rel=1e-9)
     for name in a["section"]:
-        assert a["section"][name]["heat_in_W"] == pytest.approx(
-            b["section"][name]["heat_in_W"], rel=1e-9, abs=1e-12
-        )
+        assert a["section"][name]["heat_in_W"] == pytest.approx(b["section"][name]["heat_in_W"], rel=1e-9, abs=1e-12)
     stream_a, stream_b = a["stream"]["water"], b["stream"]["water"]
     place = found.layout.length - stream_b["hottest_wetted_wall_z_m"]
     assert place == pytest.approx(stream_a["hottest_wetted_wall_z_m"], rel=1e-6)
-    assert stream_b["largest_wall_shear_stress_Pa"] == pytest.approx(
-        stream_a["largest_wall_shear_stress_Pa"], rel=1e-9
-    )
+    assert stream_b["largest_wall_shear_stress_Pa"] == pytest.approx(stream_a["largest_wall_shear_stress_Pa"], rel=1e-9)
 
 
 def test_curves_of_the_tube_upside_down():
@@ -156,6 +150,4 @@ def test_curves_of_the_tube_upside_down():
             continue
         turned = other[name][::-1] * (-1.0 if name == "axial_conduction_W" else 1.0)
         assert np.array_equal(np.isnan(column), np.isnan(turned)), name
-        np.testing.assert_allclose(
-            turned, column, rtol=1e-7, atol=1e-9 * np.nanmax(np.abs(column)), err_msg=name
-        )
+        np.testing.assert_allclose(turned, column, rtol=1e-7, atol=1e-9 * np.nanmax(np.abs(column)), err_msg=name)

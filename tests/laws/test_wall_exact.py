@@ -20,8 +20,7 @@ LAYERS = "[[layer]]\nstream = 'water'\ndiameter = '4 mm'\n" + "".join(
     for name, r, c in zip(("metal", "plastic", "cover"), R[1:], CONTACT, strict=True)
 )
 SOLIDS = "".join(
-    f"[solid.{name}]\nconductivity = '{k} W/m/K'\n"
-    for name, k in zip(("metal", "plastic", "cover"), K, strict=True)
+    f"[solid.{name}]\nconductivity = '{k} W/m/K'\n" for name, k in zip(("metal", "plastic", "cover"), K, strict=True)
 )
 GENERATED = "generated = { metal = '0.7 W', plastic = '2 W' }\n"
 
