@@ -20,7 +20,7 @@ class Watch:
         """The stop reason, or None to go on. Residuals are normalised; the larger one counts."""
         self.history.append((iteration, flow, energy))
         worst = max(flow, energy)
-        if not worst < float("inf"):
+        if not (flow < float("inf") and energy < float("inf")):  # max() may pass over what is not a number
             return "diverged"
         if worst < self.stop_below:
             return "converged"

@@ -17,6 +17,9 @@ from axicfd.solver.properties import Conductors
 UPWIND_REACH = 2  # stations on each side of a joint or inlet where linear upwind replaces Fromm's scheme
 SLOW = 0.2  # a step that leaves more than this share of the residual makes the next one factorise anew
 ONE_MILLIKELVIN = 1e-3  # smallest temperature change that the heat scale counts, times m cp
+# Round-off leaves residuals of about 5e-17 of the sum of conductance times |T|: with a scale below this share of it, no
+# solution could show 1e-8 (a tube at rest in a bath of one temperature exchanges no heat at all).
+RESOLVABLE = 2e-8
 
 
 class Energy:
@@ -94,11 +97,14 @@ class Energy:
 
     def scale(self) -> float:
         """[W] the largest of: absolute heats through all boundaries, generation, viscous heat, enthalpy change of the
-        streams, m cp times one millikelvin."""
+        streams, m cp times one millikelvin, and what round-off lets see."""
         boundaries = np.abs(self.q_outside).sum() + np.abs(self.q_first).sum() + np.abs(self.q_last).sum()
         enthalpy = abs(self.hz[-1].sum() - self.hz[0].sum())
         trickle = 0.5 * float(np.abs(self._cp(self.tz[[0, -1]]) * self.mz[[0, -1]]).sum()) * ONE_MILLIKELVIN
-        parts = boundaries, np.abs(self.generated).sum(), np.abs(self.volume_heat).sum(), enthalpy, trickle
+        c = self._conduction
+        links = c.gz[:-1] + c.gz[1:] + c.gr[:, :-1] + c.gr[:, 1:] + self._loss
+        seen = RESOLVABLE * float((links * np.abs(self.t)).sum())
+        parts = boundaries, np.abs(self.generated).sum(), np.abs(self.volume_heat).sum(), enthalpy, trickle, seen
         return float(max(*parts, 1e-300))
 
     def error(self) -> float:
@@ -112,19 +118,18 @@ class Energy:
         """
         before = self.error()
         if self._lu is None or self._stale:
-            self._factorise()
+            self._lu, self._stale = self._factorised(), False
         change = self._lu.solve(self._r.ravel()).reshape(self.grid.shape)
         self.t = self.t + change
         after = self.error()
         self._stale = after > SLOW * before and after > 1e-12
         return after
 
-    def _factorise(self) -> None:
+    def _factorised(self) -> SuperLU:
         grid, c = self.grid, self._conduction
         wz, wr = self.mz * self._cp(self.tz), self.mr * self._cp(self.tr)
         size = 7 * grid.cells
         rows, cols, vals = np.empty(size, np.int32), np.empty(size, np.int32), np.empty(size)
         n = kernel.stencil(c.gz, c.gr, wz, wr, self._weights, self._g, self._loss, self._empty, rows, cols, vals)
         matrix = coo_matrix((vals[:n], (rows[:n], cols[:n])), shape=(grid.cells, grid.cells)).tocsc()
-        self._lu = splu(matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.1, options={"SymmetricMode": True})
-        self._stale = False
+        return splu(matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.1, options={"SymmetricMode": True})
