@@ -14,6 +14,8 @@ from __future__ import annotations
 from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
+from axicfd.version import VERSION
+
 if TYPE_CHECKING:
     from axicfd.case.model import Case
     from axicfd.case.read import load
@@ -21,7 +23,7 @@ if TYPE_CHECKING:
     from axicfd.pipeline import solve
     from axicfd.results.result import Result
 
-__version__ = "0.1.0"
+__version__ = VERSION
 
 __all__ = ["AxicfdError", "Case", "Result", "load", "solve"]
 

@@ -8,7 +8,6 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
 
-from axicfd import __version__
 from axicfd.case.layout import layout
 from axicfd.case.model import Case
 from axicfd.errors import RefusedModel
@@ -18,6 +17,7 @@ from axicfd.results.axial import stream_view
 from axicfd.results.result import Result, make_result
 from axicfd.solver.solve import solve_on
 from axicfd.solver.state import Solution
+from axicfd.version import VERSION
 
 START_BELOW = 1e-5  # residual at which a coarse mesh hands over to the next one
 
@@ -70,20 +70,18 @@ def solve(case: Case, on_progress: OnProgress | None = None, *, halvings: int = 
             if on_progress is not None:
                 on_progress(Progress(number, levels, cells, *shown, time.perf_counter() - begun, residual, done))
 
-        solution = solve_on(
-            case,
-            grid,
-            solution,
-            case.solve.stop_below if finest else max(START_BELOW, case.solve.stop_below),
-            lambda _, residual, tell=tell: tell(residual, False),
-        )
+        def looked(_: int, residual: float, tell: Callable[[float, bool], None] = tell) -> None:
+            tell(residual, False)
+
+        below = case.solve.stop_below if finest else max(START_BELOW, case.solve.stop_below)
+        solution = solve_on(case, grid, solution, below, looked)
         history.append((number, grid.cells, solution.iterations, solution.residual))
         shown = _headline(case, solution)
         tell(solution.residual, True)
         if solution.stop_reason == "diverged":
             break
     assert solution is not None
-    return make_result(case, place, solution, history, time.perf_counter() - begun, __version__)
+    return make_result(case, place, solution, history, time.perf_counter() - begun, VERSION)
 
 
 def _headline(case: Case, solution: Solution) -> tuple[float | None, float | None]:

@@ -22,7 +22,7 @@ ORDER = (
     ("theory", "materials", "kernels"),
     ("glossary",),
     ("units",),
-    ("errors",),
+    ("errors", "version"),
 )
 RANK = {name: rank for rank, names in enumerate(ORDER) for name in names}
 HEAVY = ("numpy", "scipy", "numba", "matplotlib", "pyvista", "pint", "pydantic")

@@ -7,6 +7,7 @@ direction; rows are returned by increasing z.
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from axicfd.case.model import Case, UsedFluid
 from axicfd.mesh.grid import Array, Grid
@@ -113,7 +114,7 @@ def stream_view(case: Case, solution: Solution, name: str) -> StreamView:
     mirrored = stream.direction == "-z"
     turn = -1.0 if mirrored else 1.0
 
-    def own(values: Array) -> Array:
+    def own(values: NDArray) -> NDArray:
         return values[::-1] if mirrored else values
 
     z = own(grid.layout.length - grid.z if mirrored else grid.z)

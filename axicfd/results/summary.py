@@ -216,10 +216,11 @@ def developed_nusselt(case: Case, solution: Solution, view: StreamView, section:
             resistance += math.log(layer.r_outer / layer.r_inner) / (2.0 * math.pi * wall)
             resistance += layer.contact_resistance / (2.0 * math.pi * layer.r_inner)
     outer = section.layers[-1].r_outer
-    if outside.film_coefficient:
-        resistance += 1.0 / (2.0 * math.pi * outer * outside.film_coefficient)
-    elif outside.contact_resistance:
-        resistance += outside.contact_resistance / (2.0 * math.pi * outer)
+    film, contact = outside.film_coefficient, outside.contact_resistance
+    if isinstance(film, float) and film > 0.0:
+        resistance += 1.0 / (2.0 * math.pi * outer * film)
+    elif isinstance(contact, float):
+        resistance += contact / (2.0 * math.pi * outer)
     biot = 2.0 * bore / (2.0 * math.pi * bore * resistance * k) if resistance > 0.0 else math.inf
     peclet = view.mean_velocity * view.density * cp * view.diameter / k
     return developed.nusselt_third_kind(mesh, u, biot, peclet)
@@ -258,7 +259,9 @@ def _section(k: int, section: PlacedSection, solution: Solution, views: dict[str
     grid, heat = solution.grid, solution.heat
     i0, i1 = (int(i) for i in np.searchsorted(grid.section, [k, k + 1]))
     tree: dict[str, Any] = {"heat_in_W": float(heat.outside[i0:i1].sum())}
-    bulk, pressure, taken = {}, {}, {}
+    bulk: dict[str, float | None] = {}
+    pressure: dict[str, float | None] = {}
+    taken: dict[str, float] = {}
     for name, view in views.items():
         j1 = grid.streams[name][1]
         bare = grid.outer[i0] == j1

@@ -7,6 +7,7 @@ is strongly coupled along r is solved, and the rest has to get coarse first.
 """
 
 import numpy as np
+from numpy.typing import NDArray
 
 from axicfd.kernels import transfer
 from axicfd.kernels.momentum import FlowMesh, Viscosity
@@ -63,7 +64,7 @@ class FlowCycle:
         while self.flows[-1].mesh.nz > COARSEST_ALONG:
             fine = self.flows[-1]
             link = _Link(fine.mesh)
-            u_in = _means(fine.u[0] * fine.mesh.area, link.columns) / _means(fine.mesh.area, link.columns)
+            u_in = _sums(fine.u[0] * fine.mesh.area, link.columns) / _sums(fine.mesh.area, link.columns)
             self.links.append(link)
             self.flows.append(Flow(link.coarse, fine.density, u_in, link.viscosity(fine.viscosity), fine.consistent))
 
@@ -118,5 +119,5 @@ def _open(mesh: FlowMesh) -> tuple[Array, Array, Array]:
     return mesh.open_u, mesh.open_v, mesh.open_p
 
 
-def _means(values: Array, starts: Array) -> Array:
+def _sums(values: Array, starts: NDArray[np.int64]) -> Array:
     return np.add.reduceat(values, starts)

@@ -7,6 +7,7 @@ to round-off. Pressure is the pressure in motion, zero at the outlet plane.
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from axicfd.kernels import continuity, momentum
 from axicfd.kernels.momentum import FlowMesh, Viscosity
@@ -180,7 +181,7 @@ class PressureCorrection:
         continuity.line_sweep(level.cz, level.cr, level.b, level.x, False)
 
 
-def neighbours(fine: Array, coarse: Array) -> tuple[Array, Array]:
+def neighbours(fine: Array, coarse: Array) -> tuple[NDArray[np.int64], Array]:
     """For each fine centre the lower coarse neighbour and the weight of the upper one; constant beyond the ends."""
     lower = np.clip(np.searchsorted(coarse, fine) - 1, 0, max(len(coarse) - 2, 0))
     if len(coarse) == 1:

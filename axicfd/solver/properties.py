@@ -76,13 +76,12 @@ class Conductors:
 
     def conduction(self, t: Array, exchange: boundary.Exchange) -> Conduction:
         """Conductances at temperatures t (nz, nr), and the face temperatures that go with them."""
-        if self._fixed is None or not self.is_constant:
-            for _ in range(1 if self.is_constant else FACE_PASSES):
-                self._fixed = self._conductances(t)
-                self._update_faces(t, self._fixed, exchange)
-        else:
-            self._update_faces(t, self._fixed, exchange)
-        return self._fixed
+        passes = 1 if self.is_constant else FACE_PASSES
+        for _ in range(passes):
+            now = self._fixed if self._fixed is not None and self.is_constant else self._conductances(t)
+            self._fixed = now
+            self._update_faces(t, now, exchange)
+        return now
 
     def _k(self, direction: str, t: Array) -> Array:
         """Conductivity of each cell's material at temperatures t; 1 where nothing conducts."""

@@ -103,6 +103,12 @@ class _Run:
             return values
         return np.ascontiguousarray(-values[::-1] if sign else values[::-1])
 
+    @property
+    def _moving(self) -> Flow:
+        """The flow, where there is one."""
+        assert self.flow is not None
+        return self.flow
+
     # ------------------------------------------------------------------ the loop
 
     def go(self) -> Solution:
@@ -157,12 +163,12 @@ class _Run:
         reason: str | None = None
         while reason is None:
             self._flow_steps()
-            if not np.isfinite(self.flow.residual()):
+            if not np.isfinite(self._moving.residual()):
                 return "diverged"
             self._hand_over_flow()
             self.energy.step()
             self._refresh_viscosity()
-            reason = self._check(self.flow.residual(), self.energy.error())
+            reason = self._check(self._moving.residual(), self.energy.error())
         return reason
 
     def _flow_steps(self) -> None:
@@ -171,7 +177,7 @@ class _Run:
             self.iteration += 1
             return
         for _ in range(FLOW_STEPS):
-            self.flow.step()
+            self._moving.step()
         self.iteration += FLOW_STEPS
 
     def _check(self, flow: float, heat: float) -> str | None:
@@ -184,12 +190,12 @@ class _Run:
     def _refresh_viscosity(self) -> None:
         if not self.coupled:
             return
-        m = self.flow.mesh
+        m = self._moving.mesh
         t = self._turned(self.energy.t[:, self.j0 : self.j1])
         self.energy.conductors.conduction(self.energy.t, self.energy.outside)
         wall = self._turned(self.energy.conductors.face_minus[:, self.j1])
         inner = self._turned(self.energy.conductors.face_plus[:, self.j0]) if self.grid.r[self.j0] > 0.0 else None
-        self.flow.viscosity = properties.viscosity(self.fluid.viscosity, t, wall, inner, m.gz, m.gr, self.t_in)
+        self._moving.viscosity = properties.viscosity(self.fluid.viscosity, t, wall, inner, m.gz, m.gr, self.t_in)
         if self.cycle is not None:
             self.cycle.refresh_viscosity()
 
