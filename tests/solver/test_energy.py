@@ -396,3 +396,4 @@ def test_a_gas_pays_for_its_expansion():
     solution = solved(case, stop_below=1e-11)
     assert solution.heat.viscous.sum() > 1.0
     assert solution.heat.pressure_work.sum() == pytest.approx(-solution.heat.viscous.sum(), rel=5e-3)
+    assert abs(solution.heat.hz[-1].sum()) < 5e-3 * solution.heat.viscous.sum()
