@@ -151,3 +151,27 @@ def test_curves_of_the_tube_upside_down():
         turned = other[name][::-1] * (-1.0 if name == "axial_conduction_W" else 1.0)
         assert np.array_equal(np.isnan(column), np.isnan(turned)), name
         np.testing.assert_allclose(turned, column, rtol=1e-7, atol=1e-9 * np.nanmax(np.abs(column)), err_msg=name)
+
+
+@pytest.mark.parametrize("key", ["heat_flux", "film"])
+def test_table_along_a_later_section(key):
+    """A table that says the same all along is the plain value, and one cut in two at a joint is the whole one."""
+    flux = "heat_flux = {{ z = [{z}], value = [{v}] }}"
+    film = 'film_coefficient = "200 W/m^2/K", ambient = {{ z = [{z}], value = [{v}] }}'
+    way, unit = (flux, "kW/m^2") if key == "heat_flux" else (film, "degC")
+
+    def section(name, length, *points):
+        z = ", ".join(f'"{z} mm"' for z, _ in points)
+        v = ", ".join(f'"{value} {unit}"' for _, value in points)
+        return f'[[section]]\nname = "{name}"\nlength = "{length} mm"\noutside = {{ {way.format(z=z, v=v)} }}\n'
+
+    lead = '[[section]]\nname = "in"\nlength = "20 mm"\noutside = { insulated = true }\n'
+    one = lead + section("all", 40, (0, 30), (20, 50), (40, 24))
+    two = lead + section("a", 20, (0, 30), (20, 50)) + section("b", 20, (0, 50), (20, 24))
+    whole = tubes.run(tubes.text(sections=one), (8, 4, 4), (8, 32))
+    halves = tubes.run(tubes.text(sections=two), (8, 4, 4), (8, 16, 16))
+    assert halves.heat.outside.sum() == pytest.approx(whole.heat.outside.sum(), rel=1e-3)
+    assert tubes.relative(halves.t, whole.t) < 0.02
+    watts = 2 * np.pi * 5e-3 * 0.02 * (40e3 + 37e3)
+    if key == "heat_flux":
+        assert whole.heat.outside.sum() == pytest.approx(watts, rel=1e-12)
