@@ -125,7 +125,7 @@ FAULTS = (
         "case/layout.py",
         "layer.generated / (layer.area * self.length)",
         "layer.generated / (self.layers[-1].area * self.length)",
-        f"{SUPERPOSITION}::test_generated_watts_and_heat_per_volume_are_the_same",
+        WALL,
     ),
     # ------------------------------------------------------------------ convection of heat
     Fault(

@@ -1,0 +1,126 @@
+"""From a case to a result: the climb over meshes, what is told on the way, and what a Result is."""
+
+import dataclasses
+
+import numpy as np
+import pytest
+
+import axicfd
+from axicfd.errors import RefusedModel
+from axicfd.pipeline import Progress, solve
+from tests.laws import tubes
+
+MESH = "[mesh]\nradial = 16\naxial = 96\n"
+
+
+@pytest.fixture(scope="module")
+def told() -> list[Progress]:
+    return []
+
+
+@pytest.fixture(scope="module")
+def result(told):
+    return solve(axicfd.load(tubes.text(rest=MESH, viscous=True)), told.append)
+
+
+def test_meshes_are_climbed_from_coarse_to_fine(result, told):
+    cells = [cells for _, cells, _, _ in result.history]
+    assert cells == sorted(cells) and len(set(cells)) > 1
+    assert cells[-1] == result.summary["cells"] == result.solution.grid.cells
+    done = [event for event in told if event.done]
+    assert [e.level for e in done] == list(range(1, done[-1].levels + 1))
+    assert [e.cells for e in done] == cells
+    assert all(a.seconds <= b.seconds for a, b in zip(told[:-1], told[1:], strict=True))
+
+
+def test_progress_tells_headline_quantities_once_known(result, told):
+    assert told[0].outlet_temperature is None and told[0].pressure_drop is None
+    stream = result.summary["stream"]["water"]
+    assert told[-1].outlet_temperature == stream["outlet_temperature_K"]
+    assert told[-1].pressure_drop == stream["pressure_drop_Pa"]
+    assert told[-1].residual < 1e-8
+
+
+def test_result_is_read_only(result):
+    with pytest.raises(dataclasses.FrozenInstanceError):
+        result.summary = {}
+    for array in (result.axial["water"]["z_m"], result.outside["z_m"], result.fields["T"]):
+        with pytest.raises(ValueError):
+            array[0] = 1.0
+
+
+def test_quantities_by_their_path(result):
+    assert result["stream.water.outlet_temperature_K"] == result.summary["stream"]["water"]["outlet_temperature_K"]
+    assert result["section.heater.heat_in_W"] == pytest.approx(5.0)
+    with pytest.raises(KeyError):
+        result["stream.water.colour"]
+
+
+def test_axial_curves_have_the_promised_columns(result):
+    assert list(result.axial["water"]) == [
+        "z_m",
+        "bulk_temperature_K",
+        "wetted_wall_temperature_K",
+        "wall_heat_flux_W_m2",
+        "heat_transfer_coefficient_W_m2K",
+        "nusselt",
+        "pressure_Pa",
+        "friction_factor_darcy",
+        "wall_shear_stress_Pa",
+        "axis_velocity_m_s",
+        "peak_velocity_m_s",
+        "apparent_friction_factor",
+        "axial_conduction_W",
+        "reverse",
+    ]
+    assert {len(column) for column in result.axial["water"].values()} == {result.solution.grid.nz + 1}
+
+
+def test_one_halving_more_changes_little_and_quadruples_the_cells(result):
+    finer = solve(result.case, halvings=1)
+    assert finer.summary["cells"] == 4 * result.summary["cells"]
+    rise = result["stream.water.outlet_temperature_K"] - 293.15
+    change = finer["stream.water.outlet_temperature_K"] - result["stream.water.outlet_temperature_K"]
+    assert 0.0 < abs(change) < 0.01 * rise
+
+
+def test_twice_the_iterations_change_nothing_that_is_printed(result):
+    """Solved on to a residual far below the case's own, printed values stay within 1e-6 of their scale."""
+    further = solve(result.case.replace({"solve.stop_below": 1e-11}))
+    assert further.summary["residual"] < 1e-10
+    for key, scale in ("outlet_temperature_K", 30.0), ("pressure_drop_Pa", None), ("hottest_wetted_wall_K", 30.0):
+        a, b = (r.summary["stream"]["water"][key] for r in (result, further))
+        assert abs(a - b) < 1e-6 * (scale or abs(b)), key
+
+
+def test_same_case_same_numbers(result):
+    again = solve(result.case)
+    np.testing.assert_array_equal(again.fields["T"], result.fields["T"])
+
+
+def test_no_flow_is_conduction(result):
+    still = solve(result.case.replace({"stream.water.mass_flow": 0.0}))
+    assert still.converged
+    assert still.summary["stream"]["water"]["mass_flow_kg_s"] == 0.0
+    assert still.summary["balance"]["energy"] < 1e-10
+    assert np.isnan(still.axial["water"]["bulk_temperature_K"]).all()
+
+
+def test_turbulent_flow_is_refused_before_anything_is_solved():
+    events: list[Progress] = []
+    case = axicfd.load(tubes.text("reynolds = 9000", rest=MESH))
+    with pytest.raises(RefusedModel, match="9000"):
+        solve(case, events.append)
+    assert not events
+
+
+def test_without_convergence_the_fields_are_kept_and_marked(monkeypatch):
+    from axicfd.solver import convergence
+
+    monkeypatch.setattr(convergence, "PATIENCE", 1)
+    case = axicfd.load(tubes.text(rest=MESH + "[solve]\nstop_below = 1e-13\n"))
+    found = solve(case)
+    assert not found.converged and found.summary["converged"] is False
+    assert found.summary["stop_reason"] == "no further progress"
+    assert np.isfinite(found.fields["T"]).all()
+    assert "not converged" in repr(found)
