@@ -1,8 +1,8 @@
 """Full approximation multigrid for the flow of one stream (Brandt 1977, Math. Comput. 31, 333-390).
 
 Coarse meshes join cells in pairs and discretise again with the same kernels; they carry the full fields, and a source
-that makes the restricted fine solution their own where the fine equations are met. The smoother is the SIMPLE-type
-iteration of `flow`. While cells are thinner along z than along r only z is coarsened: radial lines are implicit, so what
+that makes the restricted fine solution their own where the fine equations are met. The smoother solves momentum and
+pressure correction of one station together (`kernels.station`). While cells are thinner along z than along r only z is coarsened: radial lines are implicit, so what
 is strongly coupled along r is solved, and the rest has to get coarse first.
 """
 
@@ -15,7 +15,7 @@ from axicfd.mesh.grid import Array
 from axicfd.solver.flow import Flow, flow_mesh, neighbours
 
 SMOOTH_BEFORE, SMOOTH_AFTER = 2, 2
-SMOOTH_COARSEST = 30
+SMOOTH_COARSEST = 10
 COARSEST_ALONG = 6  # cells along z of the coarsest mesh
 COARSEST_ACROSS = 4
 
@@ -68,9 +68,6 @@ class FlowCycle:
             self.links.append(link)
             self.flows.append(Flow(link.coarse, fine.density, u_in, link.viscosity(fine.viscosity), fine.consistent))
 
-        for flow in self.flows:
-            flow.as_smoother(True)
-
     def refresh_viscosity(self) -> None:
         """Take the finest mesh's viscosity to all coarse ones."""
         for k, link in enumerate(self.links):
@@ -84,10 +81,10 @@ class FlowCycle:
         fine = self.flows[k]
         if k == len(self.flows) - 1:
             for _ in range(SMOOTH_COARSEST):
-                fine.step()
+                fine.smooth()
             return
         for _ in range(SMOOTH_BEFORE):
-            fine.step()
+            fine.smooth()
         link, coarse, m = self.links[k], self.flows[k + 1], fine.mesh
         volume = m.area[None, :] * m.dz[:, None] * m.open_p
         transfer.restrict_velocity(
@@ -112,7 +109,7 @@ class FlowCycle:
             transfer.prolong_add(change, *way, open_, field)
         fine.refresh_mass()
         for _ in range(SMOOTH_AFTER):
-            fine.step()
+            fine.smooth()
 
 
 def _open(mesh: FlowMesh) -> tuple[Array, Array, Array]:

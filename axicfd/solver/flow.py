@@ -9,12 +9,12 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from axicfd.kernels import continuity, momentum
+from axicfd.kernels import continuity, momentum, station
 from axicfd.kernels.momentum import FlowMesh, Viscosity
 from axicfd.mesh.grid import STREAM, Array, Grid
 
 RELAX_MOMENTUM = 0.92  # between 0.8 and 0.97 every case tried converges; the best value moves little with the mesh
-RELAX_SMOOTHER = 0.8  # as the smoother of a multigrid cycle: short waves only
+DAMPING = 0.7  # share of a coupled sweep's change that is taken
 RELAX_SIMPLE = 0.7, 0.3  # momentum and pressure, if SIMPLEC is not wanted
 CORRECTION_DROP = 0.05  # the pressure correction is solved until its residual fell to this share
 CORRECTION_CYCLES = 12
@@ -155,7 +155,10 @@ class PressureCorrection:
             p = z + (new / old) * p if k else z.copy()
             old = new
             continuity.apply(top.cz, top.cr, p, ap)
-            step = new / continuity.dot(p, ap)
+            bottom = continuity.dot(p, ap)
+            if not bottom > 0.0:
+                break  # nothing left but round-off
+            step = new / bottom
             x += step * p
             r -= step * ap
         return x
@@ -230,10 +233,19 @@ class Flow:
         self.p[...] = p * m.open_p
         self.refresh_mass()
 
-    def as_smoother(self, yes: bool) -> None:
-        """Relax for a multigrid cycle, or for iterating on this mesh alone."""
-        if self.consistent:
-            self.relax = RELAX_SMOOTHER if yes else RELAX_MOMENTUM
+    def smooth(self) -> None:
+        """One sweep of coupled stations downstream, for a multigrid cycle.
+
+        The damping takes modes that are smooth along r and oscillate along z, which the sweep alone leaves near the inlet.
+        """
+        before = self.u.copy(), self.v.copy(), self.p.copy()
+        self._explicit_terms()
+        station.sweep(
+            self.mesh, self.viscosity, self.density, self.u, self.v, self.p, self.mz, self.mr, self._su, self._sv, self.fc
+        )
+        for field, old in zip((self.u, self.v, self.p), before, strict=True):
+            field -= (1.0 - DAMPING) * (field - old)
+        self.refresh_mass()
 
     def step(self) -> None:
         """One iteration: momentum with the present pressure, then the pressure correction."""
@@ -263,15 +275,21 @@ class Flow:
         self.refresh_mass()
 
     def close_continuity(self) -> None:
-        """Correct the velocities until mass is conserved to round-off; the pressure is left as it is."""
+        """Correct the velocities until mass is conserved to round-off, by the gradient of a potential.
+
+        The pressure is left as it is; what is missing is of the size of the residual.
+        """
         m = self.mesh
         top = self._correction.levels[0]
+        du, dv = m.open_u / m.dzu[:, None], m.open_v / m.drc
+        du[0] = 0.0
         for _ in range(CLOSING_PASSES):
             defect = continuity.mass_defect(self.mz, self.mr, m.open_p, self.fc, top.b)
             if defect <= CLOSED * self.mass_flow:
                 return
+            continuity.coefficients(self.density, m.area, m.ring, m.dz, du, dv, top.cz, top.cr)
             x = self._correction.solve(drop=1e-4, cycles=30)
-            continuity.correct(x, self._du, self._dv, m.open_p, 0.0, self.u, self.v, self.p)
+            continuity.correct(x, du, dv, m.open_p, 0.0, self.u, self.v, self.p)
             self.refresh_mass()
 
     def residuals(self) -> tuple[Array, Array, Array]:

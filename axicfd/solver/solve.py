@@ -133,7 +133,6 @@ class _Run:
             for array, old in zip(now, restore, strict=True):
                 array[...] = old
             if self.flow is not None:
-                self.flow.as_smoother(False)
                 self.flow.refresh_mass()
         return [array.copy() for array in now]
 

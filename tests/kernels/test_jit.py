@@ -1,4 +1,4 @@
-"""The compile policy: one decorator, files that stand alone, and the same numbers without the compiler."""
+"""The compile policy: one decorator, a cache that every edit empties, and the same numbers without the compiler."""
 
 import ast
 import os
@@ -9,6 +9,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 
+from axicfd.kernels import _jit
 from axicfd.kernels._jit import kernel
 
 ROOT = Path(__file__).parents[2]
@@ -24,9 +25,36 @@ def imports(path):
 
 
 @pytest.mark.parametrize("path", KERNELS, ids=lambda p: p.stem)
-def test_a_kernel_file_stands_alone(path):
-    """The compiler's cache does not notice an edit in another file."""
-    assert set(imports(path)) <= {"numpy", "typing", "axicfd.kernels._jit"}
+def test_kernels_know_nothing_but_kernels(path):
+    assert all(name in ("numpy", "typing") or name.startswith("axicfd.kernels") for name in imports(path))
+
+
+def test_an_edit_in_any_kernel_file_starts_an_empty_cache(tmp_path, monkeypatch):
+    """The compiler's own cache serves old code where a kernel calls one of another file that was edited since."""
+    for path in (ROOT / "axicfd" / "kernels").glob("*.py"):
+        (tmp_path / path.name).write_bytes(path.read_bytes())
+    monkeypatch.setattr(_jit, "__file__", str(tmp_path / "_jit.py"))
+    before = _jit._fingerprint()
+    assert before == _jit._fingerprint()
+    with (tmp_path / "momentum.py").open("a") as file:
+        file.write("# edited\n")
+    assert _jit._fingerprint() != before
+
+
+def test_without_a_writable_place_kernels_are_compiled_uncached(tmp_path, monkeypatch):
+    monkeypatch.setenv("NUMBA_CACHE_DIR", str(tmp_path / "file" / "below"))
+    (tmp_path / "file").write_text("not a folder")
+    assert _jit._cache_folder() is None
+
+
+def test_caches_that_nobody_used_for_long_are_removed(tmp_path, monkeypatch):
+    monkeypatch.setenv("NUMBA_CACHE_DIR", str(tmp_path))
+    old, recent = tmp_path / "axicfd" / "old", tmp_path / "axicfd" / "recent"
+    old.mkdir(parents=True)
+    recent.mkdir()
+    os.utime(old, (0, 0))
+    assert _jit._cache_folder().parent == tmp_path / "axicfd"
+    assert recent.exists() and not old.exists()
 
 
 @pytest.mark.parametrize("path", sorted((ROOT / "tests" / "reference").glob("*.py")), ids=lambda p: p.stem)
