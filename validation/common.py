@@ -46,7 +46,7 @@ class Row:
         """None for a row that is only shown. A computed value that is not a number fails."""
         if self.margin is None:
             return None
-        return abs(self.deviation) <= self.margin
+        return bool(abs(self.deviation) <= self.margin)  # numpy values too: `is False` has to hold
 
 
 def table(name: str) -> list[dict[str, str]]:
