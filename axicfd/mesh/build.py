@@ -86,7 +86,7 @@ class Family:
         """The grid of a level: 0 the finest, 1, 2 ... coarser, -1, -2 ... two or four times finer per direction."""
         z = _line(self.axial, level)
         r = _line(self.radial, level)
-        return _grid(self.layout, z, r, self.places)
+        return _grid(self.layout, z, r, tuple(p.z for p in self.places))
 
 
 def family(case: Case, layout: Layout) -> Family:
@@ -195,11 +195,31 @@ def _alike(a: PlacedSection, b: PlacedSection) -> bool:
     return per_length[0] == per_length[1] and a.outside == b.outside
 
 
+def coarser(grid: Grid) -> Grid | None:
+    """The grid with every second face of a grid, where a section or a layer has an even number of cells; None if none has.
+
+    Works on any grid of a family, also below its coarsest level; layers and sections keep at least one cell.
+    """
+    z = _every_second(grid.z, sorted({p.i0 for p in grid.pieces} | {grid.nz}))
+    r = _every_second(grid.r, sorted({p.j0 for p in grid.pieces} | {p.j1 for p in grid.pieces}))
+    if len(z) == len(grid.z) and len(r) == len(grid.r):
+        return None
+    return _grid(grid.layout, frozen(z), frozen(r), tuple(grid.z[i] for i in grid.joints))
+
+
+def _every_second(faces: Array, ends: list[int]) -> Array:
+    keep = np.ones(len(faces), dtype=bool)
+    for a, b in zip(ends[:-1], ends[1:], strict=True):
+        if (b - a) % 2 == 0:
+            keep[a + 1 : b : 2] = False
+    return faces[keep]
+
+
 def _line(segments: tuple[Segment, ...], level: int) -> Array:
     return frozen(np.concatenate([[segments[0].start], *(s.faces(level) for s in segments)]))
 
 
-def _grid(layout: Layout, z: Array, r: Array, places: tuple[Place, ...]) -> Grid:
+def _grid(layout: Layout, z: Array, r: Array, graded: tuple[float, ...]) -> Grid:
     nz, nr = len(z) - 1, len(r) - 1
     zc, rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
     piece = np.full((nz, nr), -1, dtype=np.int64)
@@ -219,7 +239,7 @@ def _grid(layout: Layout, z: Array, r: Array, places: tuple[Place, ...]) -> Grid
             pieces.append(Piece(k, layer, int(i0), int(i1), int(j0), int(j1)))
             if layer.kind == "stream":
                 streams[layer.material] = (int(j0), int(j1))
-    joints = tuple(int(np.argmin(np.abs(z - p.z))) for p in places)
+    joints = tuple(int(np.argmin(np.abs(z - place))) for place in graded)
     return Grid(
         layout, z, r, tuple(pieces), frozen(piece), frozen(kind), frozen(section), frozen(outer), streams, joints
     )

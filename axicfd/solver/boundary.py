@@ -10,7 +10,7 @@ import numpy as np
 from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout
 from axicfd.case.model import Case, FileProfile, Outside
-from axicfd.mesh.grid import Array, Grid
+from axicfd.mesh.grid import NOTHING, Array, Grid
 
 NO_EXCHANGE = np.inf
 
@@ -117,6 +117,31 @@ def end_faces(case: Case, grid: Grid, end: str, t_in: float) -> Exchange:
             exchange.temperature[here] = condition.temperature - t_in
             exchange.resistance[here] = (condition.contact_resistance or 0.0) / area
     return exchange
+
+
+class Surroundings:
+    """The outside and both ends of a grid."""
+
+    def __init__(self, case: Case, grid: Grid, t_in: float):
+        self.outside = outside(case, grid, t_in)
+        self.first = end_faces(case, grid, "first", t_in)
+        self.last = end_faces(case, grid, "last", t_in)
+        self._rows, self._surface = np.arange(grid.nz), grid.outer - 1
+        self._insulated = grid.kind[self._rows, self._surface] == NOTHING
+        self._shape = grid.shape
+
+    def at_outside(self, half_out: Array) -> tuple[Array, Array]:
+        """(a, b) (nz,) of the heat a - b T* into the outermost cells; half_out (nz, nr) [K/W] node to outer face."""
+        a, b = self.outside.linear(np.where(self._insulated, 1.0, half_out[self._rows, self._surface]))
+        return np.where(self._insulated, 0.0, a), np.where(self._insulated, 0.0, b)
+
+    def losses(self, half_out: Array, half_first: Array, half_last: Array) -> Array:
+        """(nz, nr) [W/K] conductance of each cell to all surroundings."""
+        loss = np.zeros(self._shape)
+        loss[self._rows, self._surface] += self.at_outside(half_out)[1]
+        loss[0] += self.first.linear(half_first)[1]
+        loss[-1] += self.last.linear(half_last)[1]
+        return loss
 
 
 def generation(grid: Grid) -> Array:

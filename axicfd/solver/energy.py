@@ -5,13 +5,14 @@ the round-off of absolute temperatures).
 """
 
 import numpy as np
-from scipy.sparse import coo_matrix
+from scipy.sparse import coo_matrix, csr_matrix
 from scipy.sparse.linalg import SuperLU, splu
 
 from axicfd.case.model import Case
 from axicfd.kernels import energy as kernel
 from axicfd.mesh.grid import NOTHING, Array, Grid
 from axicfd.solver import boundary
+from axicfd.solver.heat_cycle import DROP, HeatCycle
 from axicfd.solver.properties import Conductors
 
 UPWIND_REACH = 2  # stations on each side of a joint or inlet where linear upwind replaces Fromm's scheme
@@ -39,9 +40,7 @@ class Energy:
         self._h, self._cp = enthalpy, heat_capacity
         nz, nr = grid.shape
         self.generated = boundary.generation(grid)
-        self.outside = boundary.outside(case, grid, t_in)
-        self.first = boundary.end_faces(case, grid, "first", t_in)
-        self.last = boundary.end_faces(case, grid, "last", t_in)
+        self.surroundings = boundary.Surroundings(case, grid, t_in)
         self.conductors = Conductors(case, grid, t_in, self.generated)
         self._inflow = (np.zeros(nr), inflow) if reverse else (inflow, np.zeros(nr))
         self.t = np.zeros(grid.shape)
@@ -60,6 +59,7 @@ class Energy:
         self.qz, self.qr = np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1))
         self.q_outside, self.q_first, self.q_last = np.zeros(nz), np.zeros(nr), np.zeros(nr)
         self._r = np.zeros(grid.shape)
+        self.cycle: HeatCycle | None = HeatCycle(case, grid, t_in)
         self._lu: SuperLU | None = None
         self._stale = True
 
@@ -71,25 +71,23 @@ class Energy:
     def residual(self) -> Array:
         """(nz, nr) [W] what each cell gains; refreshes every heat flow of the object."""
         grid, t = self.grid, self.t
-        c = self._conduction = self.conductors.conduction(t, self.outside)
+        c = self._conduction = self.conductors.conduction(t, self.surroundings.outside)
         kernel.face_temperatures(t, self._weights, self._g, *self._inflow, self.mz, self.tz, self.tr)
         np.multiply(self.mz, self._h(self.tz), out=self.hz)
         np.multiply(self.mr, self._h(self.tr), out=self.hr)
         kernel.conducted(t, c.rise_in, c.rise_out, c.gz, c.gr, self.qz, self.qr)
         rows, last = np.arange(grid.nz), grid.outer - 1
-        a, b = self.outside.linear(np.where(self._empty[rows, last], 1.0, c.half_out[rows, last]))
-        self.q_outside = np.where(self._empty[rows, last], 0.0, a - b * (t + c.rise_out)[rows, last])
-        a_first, b_first = self.first.linear(c.half_first)
-        a_last, b_last = self.last.linear(c.half_last)
+        around = self.surroundings
+        a, b = around.at_outside(c.half_out)
+        self.q_outside = a - b * (t + c.rise_out)[rows, last]
+        a_first, b_first = around.first.linear(c.half_first)
+        a_last, b_last = around.last.linear(c.half_last)
         self.q_first, self.q_last = a_first - b_first * t[0], a_last - b_last * t[-1]
+        self._loss = around.losses(c.half_out, c.half_first, c.half_last)
         gain = self.generated + self.volume_heat
         gain[rows, last] += self.q_outside
         gain[0] += self.q_first
         gain[-1] += self.q_last
-        self._loss = np.zeros(grid.shape)
-        self._loss[rows, last] += np.where(self._empty[rows, last], 0.0, b)
-        self._loss[0] += b_first
-        self._loss[-1] += b_last
         gain[self._empty] = 0.0
         kernel.balance(self.hz, self.hr, self.qz, self.qr, gain, self._r)
         self._r[self._empty] = 0.0
@@ -111,25 +109,38 @@ class Energy:
         """Sum of absolute residuals over the heat scale."""
         return float(np.abs(self.residual()).sum()) / self.scale()
 
-    def step(self) -> float:
-        """One correction of all temperatures; returns the normalised residual before it.
+    def step(self, drop: float = DROP) -> float:
+        """One correction of all temperatures, to a share `drop` of the residual; returns the normalised residual after it.
 
-        The factorisation is kept while it still serves: properties and flow change little from step to step.
+        The linear system is kept while it still serves: properties and flow change little from step to step.
         """
         before = self.error()
-        if self._lu is None or self._stale:
-            self._lu, self._stale = self._factorised(), False
-        change = self._lu.solve(self._r.ravel()).reshape(self.grid.shape)
+        if self._stale:
+            self._linearise()
+        change = self.cycle.solve(self._r, drop) if self.cycle is not None else None
+        if change is None:
+            # the sparse LU is slower, and sure
+            self.cycle = None
+            self._lu = self._lu or _factorised(self._matrix)
+            change = self._lu.solve(self._r.ravel()).reshape(self.grid.shape)
         self.t = self.t + change
         after = self.error()
         self._stale = after > SLOW * before and after > 1e-12
         return after
 
-    def _factorised(self) -> SuperLU:
+    def _linearise(self) -> None:
+        """The derivative of the residual, exact but for what properties change."""
         grid, c = self.grid, self._conduction
         wz, wr = self.mz * self._cp(self.tz), self.mr * self._cp(self.tr)
         size = 7 * grid.cells
         rows, cols, vals = np.empty(size, np.int32), np.empty(size, np.int32), np.empty(size)
         n = kernel.stencil(c.gz, c.gr, wz, wr, self._weights, self._g, self._loss, self._empty, rows, cols, vals)
-        matrix = coo_matrix((vals[:n], (rows[:n], cols[:n])), shape=(grid.cells, grid.cells)).tocsc()
-        return splu(matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.1, options={"SymmetricMode": True})
+        self._matrix = coo_matrix((vals[:n], (rows[:n], cols[:n])), shape=(grid.cells, grid.cells)).tocsr()
+        self._lu, self._stale = None, False
+        if self.cycle is not None:
+            self.cycle.refresh(self.t, c, self._loss, wz, wr, self._matrix)
+
+
+def _factorised(matrix: csr_matrix) -> SuperLU:
+    """Sparse LU with an ordering for nearly symmetric patterns."""
+    return splu(matrix.tocsc(), permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.1, options={"SymmetricMode": True})

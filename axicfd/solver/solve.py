@@ -18,6 +18,7 @@ from axicfd.solver.state import HeatFields, Solution, StreamFields
 
 FLOW_STEPS = 5  # plain flow iterations between two looks at the residual, or between two energy steps
 HEAT_STEPS = 60  # energy steps at a given flow
+HEAT_DROP = 1e-3  # share of its residual that an energy step leaves while flow and heat are solved in turn
 
 TROUBLE = "diverged", "no further progress", "iteration limit"
 
@@ -165,7 +166,7 @@ class _Run:
             if not np.isfinite(self._moving.residual()):
                 return "diverged"
             self._hand_over_flow()
-            self.energy.step()
+            self.energy.step(HEAT_DROP)
             self._refresh_viscosity()
             reason = self._check(self._moving.residual(), self.energy.error())
         return reason
@@ -191,7 +192,7 @@ class _Run:
             return
         m = self._moving.mesh
         t = self._turned(self.energy.t[:, self.j0 : self.j1])
-        self.energy.conductors.conduction(self.energy.t, self.energy.outside)
+        self.energy.conductors.conduction(self.energy.t, self.energy.surroundings.outside)
         wall = self._turned(self.energy.conductors.face_minus[:, self.j1])
         inner = self._turned(self.energy.conductors.face_plus[:, self.j0]) if self.grid.r[self.j0] > 0.0 else None
         self._moving.viscosity = properties.viscosity(self.fluid.viscosity, t, wall, inner, m.gz, m.gr, self.t_in)

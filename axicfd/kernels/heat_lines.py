@@ -1,0 +1,100 @@
+"""Line relaxation of a five-point system on the whole grid: the smoothers of the heat multigrid.
+
+    (w + e + s + n + loss) x_P - w x_W - e x_E - s x_S - n x_N = b
+
+w, e, s, n, loss, b, x are (nz, nr); a coefficient towards the outside of the grid must be zero.
+"""
+
+import numpy as np
+
+from axicfd.kernels._jit import kernel
+
+
+@kernel
+def upwind_links(gz, gr, wz, wr, loss, open_, w, e, s, n, d):
+    """Five-point coefficients with upwind convection; d (nz, nr) is the diagonal, 1 in cells without an equation.
+
+    gz, gr : conductances; wz, wr : m cp at faces, as in `energy.stencil`; open_ : 0 in cells without an equation, else 1
+    """
+    nz, nr = loss.shape
+    for i in range(nz):
+        for j in range(nr):
+            w[i, j] = gz[i, j] + (max(wz[i, j], 0.0) if i > 0 else 0.0)
+            e[i, j] = gz[i + 1, j] + (max(-wz[i + 1, j], 0.0) if i < nz - 1 else 0.0)
+            s[i, j] = gr[i, j] + max(wr[i, j], 0.0)
+            n[i, j] = gr[i, j + 1] + max(-wr[i, j + 1], 0.0)
+            a = gz[i, j] + gz[i + 1, j] + gr[i, j] + gr[i, j + 1] + loss[i, j]
+            a += max(-wz[i, j], 0.0) + max(wz[i + 1, j], 0.0) + max(-wr[i, j], 0.0) + max(wr[i, j + 1], 0.0)
+            d[i, j] = a if open_[i, j] > 0.0 else 1.0
+
+
+@kernel
+def r_sweep(w, e, s, n, d, b, x, rising):
+    """Radial lines one after the other, by rising or falling station."""
+    nz, nr = b.shape
+    c = np.empty(nr)
+    y = np.empty(nr)
+    for k in range(nz):
+        i = k if rising else nz - 1 - k
+        for j in range(nr):
+            r = b[i, j]
+            if i > 0:
+                r += w[i, j] * x[i - 1, j]
+            if i < nz - 1:
+                r += e[i, j] * x[i + 1, j]
+            if j > 0:
+                f = 1.0 / (d[i, j] - s[i, j] * c[j - 1])
+                y[j] = (r + s[i, j] * y[j - 1]) * f
+            else:
+                f = 1.0 / d[i, j]
+                y[j] = r * f
+            c[j] = n[i, j] * f
+        x[i, nr - 1] = y[nr - 1]
+        for j in range(nr - 2, -1, -1):
+            x[i, j] = y[j] + c[j] * x[i, j + 1]
+
+
+@kernel
+def z_sweep(w, e, s, n, d, b, x):
+    """Axial lines, every second one first and then the others, so that stations are walked in the order of memory."""
+    nz, nr = b.shape
+    c = np.empty((nz, nr))
+    y = np.empty((nz, nr))
+    for half in range(2):
+        for i in range(nz):
+            for j in range(half, nr, 2):
+                r = b[i, j]
+                if j > 0:
+                    r += s[i, j] * x[i, j - 1]
+                if j < nr - 1:
+                    r += n[i, j] * x[i, j + 1]
+                if i > 0:
+                    f = 1.0 / (d[i, j] - w[i, j] * c[i - 1, j])
+                    y[i, j] = (r + w[i, j] * y[i - 1, j]) * f
+                else:
+                    f = 1.0 / d[i, j]
+                    y[i, j] = r * f
+                c[i, j] = e[i, j] * f
+        for j in range(half, nr, 2):
+            x[nz - 1, j] = y[nz - 1, j]
+        for i in range(nz - 2, -1, -1):
+            for j in range(half, nr, 2):
+                x[i, j] = y[i, j] + c[i, j] * x[i + 1, j]
+
+
+@kernel
+def remainder(w, e, s, n, d, b, x, r):
+    """r = b - A x."""
+    nz, nr = b.shape
+    for i in range(nz):
+        for j in range(nr):
+            q = b[i, j] - d[i, j] * x[i, j]
+            if i > 0:
+                q += w[i, j] * x[i - 1, j]
+            if i < nz - 1:
+                q += e[i, j] * x[i + 1, j]
+            if j > 0:
+                q += s[i, j] * x[i, j - 1]
+            if j < nr - 1:
+                q += n[i, j] * x[i, j + 1]
+            r[i, j] = q
