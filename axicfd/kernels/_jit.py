@@ -65,7 +65,7 @@ def _remove_unused(current: Path) -> None:
 
 CACHE_FOLDER = _cache_folder()
 if CACHE_FOLDER is not None:
-    numba.config.CACHE_DIR = str(CACHE_FOLDER)
+    setattr(numba.config, "CACHE_DIR", str(CACHE_FOLDER))  # noqa: B010  not among its typed names
 
 
 def kernel(function):

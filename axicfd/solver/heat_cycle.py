@@ -9,6 +9,7 @@ digits over conductivity ratios 0.1 to 650 and Peclet numbers 0.1 to 1e6.
 """
 
 from dataclasses import dataclass, field
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -64,7 +65,7 @@ class HeatCycle:
             )
             self.levels.append(level)
             grid = coarse
-        self._matrix: csr_matrix | None = None
+        self._matrix: Any = None
         self._coarsest: SuperLU | None = None
         self.steps = 0  # GMRES steps of the last solve
 
@@ -95,13 +96,14 @@ class HeatCycle:
     def solve(self, residual: Array, drop: float = DROP) -> Array | None:
         """The correction (nz, nr) that leaves `drop` of the residual's norm; None if the cycle does not get there."""
         shape = residual.shape
-        x, r = np.zeros(residual.size), residual.ravel().copy()
+        x: Array = np.zeros(residual.size)
+        r: Array = residual.ravel().copy()
         start = krylov.norm(r)
         self.steps = 0
         for _ in range(RESTARTS):
             if start == 0.0 or krylov.norm(r) <= drop * start:
                 break
-            x += self._gmres(r, drop * start, shape)
+            x = x + self._gmres(r, drop * start, shape)
             r = residual.ravel() - self._matrix @ x
         return x.reshape(shape) if krylov.norm(r) <= 2.0 * drop * start else None
 
