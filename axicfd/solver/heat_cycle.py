@@ -96,8 +96,8 @@ class HeatCycle:
     def solve(self, residual: Array, drop: float = DROP) -> Array | None:
         """The correction (nz, nr) that leaves `drop` of the residual's norm; None if the cycle does not get there."""
         shape = residual.shape
-        x: Array = np.zeros(residual.size)
-        r: Array = residual.ravel().copy()
+        x: Any = np.zeros(residual.size)
+        r: Any = residual.ravel().copy()
         start = krylov.norm(r)
         self.steps = 0
         for _ in range(RESTARTS):
