@@ -89,12 +89,27 @@ class StreamView:
 
     def shear(self) -> Array:
         """(nz + 1,) [Pa] at the wetted wall; nan near a flat inlet, where it is singular."""
+        tau = self._shear_everywhere()
+        return np.where(self.z < self._shear_from, np.nan, tau) if self.is_flat else tau
+
+    def largest_shear(self) -> float | None:
+        """[Pa] of the largest size from where the shear is reported; that place counts, also between two faces."""
+        tau = self._shear_everywhere()
+        if not self.is_flat:
+            return float(tau[np.argmax(np.abs(tau))])
+        if self.z[-1] < self._shear_from:
+            return None
+        begin = lines.at_points(self.z, tau, np.array([self._shear_from]))
+        reported = np.append(begin, tau[self.z >= self._shear_from])
+        return float(reported[np.argmax(np.abs(reported))])
+
+    @property
+    def _shear_from(self) -> float:
+        return SHEAR_FROM * self.diameter
+
+    def _shear_everywhere(self) -> Array:
         j1 = self.grid.streams[self.name][1]
-        distance = self.grid.r[j1] - self.grid.rc[j1 - 1]
-        tau = self.viscosity_wall * self.u[:, -1] / distance
-        if self.is_flat:
-            tau = np.where(self.z < SHEAR_FROM * self.diameter, np.nan, tau)
-        return tau
+        return self.viscosity_wall * self.u[:, -1] / (self.grid.r[j1] - self.grid.rc[j1 - 1])
 
     def axis_pressure_at_inlet(self) -> float:
         """[Pa] pressure in motion on the axis in the inlet plane."""

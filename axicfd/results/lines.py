@@ -14,14 +14,14 @@ def to_faces(values: Array, zc: Array, z: Array, breaks: tuple[int, ...]) -> tup
     cuts = sorted({0, len(zc), *(b for b in breaks if 0 < b < len(zc))})
     before, after = np.empty(len(z)), np.empty(len(z))
     for a, b in zip(cuts[:-1], cuts[1:], strict=True):
-        inside = _cubic(zc[a:b], values[a:b], z[a : b + 1])
+        inside = at_points(zc[a:b], values[a:b], z[a : b + 1])
         after[a:b] = inside[:-1]
         before[a + 1 : b + 1] = inside[1:]
     before[0], after[-1] = after[0], before[-1]
     return before, after
 
 
-def _cubic(x: Array, y: Array, at: Array) -> Array:
+def at_points(x: Array, y: Array, at: Array) -> Array:
     """Lagrange interpolation over the four nearest points (all of them, if there are fewer)."""
     n = len(x)
     width = min(4, n)
@@ -47,7 +47,7 @@ def to_axis(values: Array, rc: Array) -> Array:
 def to_first_plane(values: Array, zc: Array, z0: float) -> Array:
     """Values in the plane z0 before the first stations by a parabola along z; values (nz, nr), returns (nr,)."""
     n = min(3, len(zc))
-    return np.array([_cubic(zc[:n], values[:n, j], np.array([z0]))[0] for j in range(values.shape[1])])
+    return np.array([at_points(zc[:n], values[:n, j], np.array([z0]))[0] for j in range(values.shape[1])])
 
 
 def last_crossing(z: Array, deviation: Array, limit: float) -> float | None:
@@ -90,4 +90,4 @@ def at_place(values: Array, zc: Array, z: Array, breaks: tuple[int, ...], place:
     cuts = sorted({0, len(zc), *(b for b in breaks if 0 < b < len(zc))})
     k = int(np.searchsorted([z[c] for c in cuts[1:-1]], place, side="right"))
     a, b = cuts[k], cuts[k + 1]
-    return float(_cubic(zc[a:b], values[a:b], np.array([place]))[0])
+    return float(at_points(zc[a:b], values[a:b], np.array([place]))[0])

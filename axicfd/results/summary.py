@@ -12,7 +12,6 @@ import numpy as np
 from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout, PlacedSection
 from axicfd.case.model import Case
-from axicfd.mesh.grid import Array
 from axicfd.results import lines
 from axicfd.results.axial import StreamView, stream_curves, stream_view, temperature_span
 from axicfd.solver import developed
@@ -63,7 +62,6 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
     reynolds = groups.reynolds(view.density, u, view.diameter, mu)
     prandtl = groups.prandtl(mu, cp, k)
     why: dict[str, str] = {}
-    shear = view.shear()
     bulk_viscosity = fluid.viscosity(view.bulk + t_in)
     gain = float(view.enthalpy[-1] - view.enthalpy[0])
     span = temperature_span(view)
@@ -84,7 +82,7 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
         "hydrostatic_Pa": _hydrostatic(case, layout, view),
         "heat_gain_W": gain,
         **walls,
-        "largest_wall_shear_stress_Pa": _largest(shear),
+        "largest_wall_shear_stress_Pa": view.largest_shear(),
         "thermal_resistance_K_W": peak / gain if abs(peak) > 1e-9 * span and abs(gain) > 1e-12 else None,
         "mean_residence_s": view.density * view.area * layout.length / m,
         "hydrodynamic_entry_length_m": _hydrodynamic_entry(solution, view, why),
@@ -113,11 +111,6 @@ def _is_heated(section: PlacedSection) -> bool:
 
 def _from_start(view: StreamView, z: float) -> float:
     return view.grid.layout.length - z if view.mirrored else z
-
-
-def _largest(values: Array) -> float | None:
-    finite = values[np.isfinite(values)]
-    return float(finite[np.argmax(np.abs(finite))]) if finite.size else None
 
 
 def _outlet_axis(view: StreamView) -> float:

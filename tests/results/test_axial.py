@@ -131,3 +131,16 @@ def test_heat_conducted_along_counts_the_stream_alone(plain):
     with_heat = plain.with_heat(qz=qz)
     found = stream_curves(stream_view(with_heat.case, with_heat.solution, "water"))
     assert found["axial_conduction_W"][50] == 2.0
+
+
+def test_largest_shear_is_taken_from_the_same_place_on_every_mesh():
+    """Half a diameter behind a flat inlet, also where no face lies there; the shear falls along the tube."""
+    flat = made_up(('inlet_profile     = "developed"', 'inlet_profile     = "flat"'))
+    falling = 2.0 - flat.grid.z / flat.layout.length
+    flat = flat.with_flow(u=flat.solution.streams["water"].u * falling[:, None])
+    view = stream_view(flat.case, flat.solution, "water")
+    reported = view.shear()
+    at_end = reported[-1]
+    expected = at_end * (2.0 - R / flat.layout.length)
+    assert view.largest_shear() == pytest.approx(expected, rel=1e-12)
+    assert view.largest_shear() > np.nanmax(reported) * (1.0 - 1e-12)
