@@ -38,17 +38,19 @@ class Sequence:
     @property
     def falls(self) -> np.ndarray:
         """Error over that of the next mesh: 4 with second order, 2 with first."""
-        return self.errors[:-1] / self.errors[1:]
+        with np.errstate(divide="ignore", invalid="ignore"):
+            return self.errors[:-1] / self.errors[1:]
 
     @property
     def orders(self) -> np.ndarray:
         """From the changes of three meshes each, without any exact value."""
         change = np.diff(self.values)
-        return np.log2(np.abs(change[:-1] / change[1:]))
+        with np.errstate(divide="ignore", invalid="ignore"):
+            return np.log2(np.abs(change[:-1] / change[1:]))
 
 
 def climb(case: Case, coarsest: int, finest: int) -> list[Result]:
-    """Results on the family's levels coarsest, coarsest - 1, ... finest (0 is the mesh of the case; negative is finer)."""
+    """Results on the family's levels from coarsest down to finest (0 is the mesh of the case, negative is finer)."""
     place = layout(case)
     meshes = family(case, place)
     solution, results = None, []
@@ -69,15 +71,17 @@ def sequence(name: str, results: list[Result], read: Read, exact: float | None =
     return Sequence(name, cells, values, exact)
 
 
-def at_station(column: str, z: float) -> Read:
-    """Reads a column of the (only) stream's curves at the face z, which has to be a face of every mesh."""
+def at_station(results: list[Result], column: str, place: float) -> Read:
+    """Reads a column of the (only) stream's curves at the face of the coarsest mesh nearest to a place [m].
+
+    That face is a face of every mesh of the climb.
+    """
+    faces = results[0].solution.grid.z
+    z = float(faces[np.argmin(np.abs(faces - place))])
 
     def read(result: Result) -> float:
         (curves,) = result.axial.values()
-        k = int(np.argmin(np.abs(curves["z_m"] - z)))
-        if abs(curves["z_m"][k] - z) > 1e-9:
-            raise ValueError(f"{z} m is no face of this mesh")
-        return float(curves[column][k])
+        return float(curves[column][np.argmin(np.abs(curves["z_m"] - z))])
 
     return read
 

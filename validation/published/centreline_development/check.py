@@ -47,14 +47,18 @@ def check() -> list[Row]:
         for re, value in values.items():
             judged = re == REYNOLDS[-1] and x >= BAND_FROM
             note = "" if judged else "finite Re: shows the approach"
-            rows.append(Row(f"u_axis/u_m at x+ = {x}, Re {re}", value, known[x], BAND if judged else None, SOURCE, note=note))
+            rows.append(
+                Row(f"u_axis/u_m at x+ = {x}, Re {re}", value, known[x], BAND if judged else None, SOURCE, note=note)
+            )
         gaps = [abs(value - known[x]) for value in values.values()]
         falling = sum(b < a for a, b in zip(gaps[:-1], gaps[1:], strict=True))
         rows.append(Row(f"doublings of Re that lessen the gap at x+ = {x}", falling, len(REYNOLDS) - 1, 0.0, SOURCE))
         # the gap falls as Re^-1/2: a fourfold Re halves it
         extrapolated = 2 * values[2000] - values[500]
         note = "extrapolated in Re^-1/2 from Re 500 and 2000"
-        rows.append(Row(f"u_axis/u_m at x+ = {x}, Re to infinity", extrapolated, known[x], LIMIT_BAND, SOURCE, note=note))
+        rows.append(
+            Row(f"u_axis/u_m at x+ = {x}, Re to infinity", extrapolated, known[x], LIMIT_BAND, SOURCE, note=note)
+        )
     return rows
 
 
@@ -70,7 +74,14 @@ def picture(folder: Path) -> None:
         own_x, own_u = curve(re)
         shown = own_x >= 0.0005
         top.semilogx(own_x[shown], own_u[shown], color=shade, label=f"Re {re}")
-        bottom.loglog(inside, [abs(at(re, a) - b) for a, b in zip(inside, known, strict=True)], "o-", ms=4, color=shade, label=f"Re {re}")
+        bottom.loglog(
+            inside,
+            [abs(at(re, a) - b) for a, b in zip(inside, known, strict=True)],
+            "o-",
+            ms=4,
+            color=shade,
+            label=f"Re {re}",
+        )
     top.set(ylabel="axis velocity / mean velocity", title="Axis velocity behind a flat inlet")
     top.legend()
     bottom.set(xlabel="x+ = x / (D Re)", ylabel="limit minus computed")

@@ -46,7 +46,15 @@ def check() -> list[Row]:
                 u[worst], exact[worst], 1e-3, f"2 (1 - r^2/R^2), {POISEUILLE}", scale=2.0,
             )
         )  # fmt: skip
-        rows.append(Row(f"Darcy f Re at the end; {where}", curves["friction_factor_darcy"][-1] * reynolds, 64.0, 1e-3, POISEUILLE))
+        rows.append(
+            Row(
+                f"Darcy f Re at the end; {where}",
+                curves["friction_factor_darcy"][-1] * reynolds,
+                64.0,
+                1e-3,
+                POISEUILLE,
+            )
+        )
         z, p = curves["z_m"], curves["pressure_Pa"]
         a, b = np.searchsorted(z, [0.75 * length, 0.95 * length])
         gradient = 32.0 * VISCOSITY * stream["mean_velocity_m_s"] / DIAMETER**2
