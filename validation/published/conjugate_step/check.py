@@ -28,7 +28,7 @@ CHANGE = "max abs change of T_b,T_wi,q_i between meshes"
 LINES = table(TABLE)
 CASES = sorted({tuple(float(r[key]) for key in GROUPS) for r in LINES})
 HEATED = 40.0  # r_i
-# The heat conducted upstream in these tubes decays over 10 to 29 r_i, and the table holds T = 0 not far upstream but in a
+# The heat conducted upstream in these tubes decays over 7 to 29 r_i, and the table holds T = 0 in a
 # plane at a finite distance (README): they are judged with the end of the wall held at the inlet temperature there.
 HELD_AT = {(5.0, 100.0, 0.1): 42.5, (5.0, 100.0, 0.3): 48.0, (20.0, 100.0, 0.3): 48.0}
 
@@ -82,7 +82,10 @@ def compared(groups: tuple[float, ...], got: dict[str, np.ndarray], judge: bool,
             elif doubt(line, name) <= GOOD:
                 judged.append((line["x"], value, line[name]))
         worst = max(judged, key=lambda point: abs(point[1] / point[2] - 1))
-        for points, margin, most in (([worst], 1e-2 if judge else None, f", the worst of {len(judged)}"), (shown, None, "")):
+        for points, margin, most in (
+            ([worst], 1e-2 if judge else None, f", the worst of {len(judged)}"),
+            (shown, None, ""),
+        ):
             for x, value, want in points:
                 rows.append(Row(f"{name} at x/r_i {x:g}{most}; {title(groups)}{where}", value, want, margin, SOURCE))
     return rows

@@ -71,7 +71,9 @@ def wall_rows() -> list[Row]:
         rows.append(Row(name, found, want, 1e-10, SHELLS, scale=span))
     length = wall().layout.length
     out = -wall().summary["section"]["all"]["heat_in_W"] / length
-    rows.append(Row("heat to the outside [W/m]", out, exact.heat_outer(len(layers) - 1), 1e-10, "sum of the generation"))
+    rows.append(
+        Row("heat to the outside [W/m]", out, exact.heat_outer(len(layers) - 1), 1e-10, "sum of the generation")
+    )
     return rows
 
 
@@ -150,12 +152,15 @@ def picture(folder: Path) -> None:
                 1e3 * np.concatenate([p[0] for p in points]), np.concatenate([p[1] for p in points]) - 273.15, ".",
                 color=plots.COLOURS[0], ms=4,
             )  # fmt: skip
-        left.set(xlabel="radius [mm]", ylabel="temperature [°C]", title="Constant conductivities, two contacts, two sources")
-        sizes = [8 * 2.0 ** -level for level in LEVELS]
+        left.set(
+            xlabel="radius [mm]", ylabel="temperature [°C]", title="Constant conductivities, two contacts, two sources"
+        )
+        sizes = [8 * 2.0**-level for level in LEVELS]
         errors = [100 * largest_error(level) for level in LEVELS]
         right.loglog(sizes, errors, "o-", color=plots.COLOURS[0], label="largest error")
         right.loglog(sizes, [errors[0] * (sizes[0] / s) ** 2 for s in sizes], "--", color="0.5", label="second order")
         right.set_xticks(sizes, [f"1/{2**level}" if level else "1" for level in LEVELS])
+        right.set_yticks([0.02, 0.05, 0.1, 0.2, 0.5], ["0.02", "0.05", "0.1", "0.2", "0.5"])
         right.minorticks_off()
         right.set(xlabel="cells per direction / those of the tool's mesh", ylabel="error [% of the span]",
                   title="Conductivity linear in temperature")  # fmt: skip
