@@ -121,7 +121,7 @@ def check() -> list[Row]:
     _, found, expected = kirchhoff(False, 0)
     k = int(np.argmax(np.abs(found - expected)))
     rows.append(
-        Row("temperature [K], k linear in T, no source, the worst of all nodes and both surfaces", found[k], expected[k], 1e-8,
+        Row("temperature [K], k linear in T, no source, the worst node or surface", found[k], expected[k], 1e-8,
             "closed form (Kirchhoff 1894)", scale=expected.max() - OUTER,
             note="exact too: k at the mean of two temperatures is its mean over them")
     )  # fmt: skip
