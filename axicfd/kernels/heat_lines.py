@@ -19,12 +19,14 @@ def upwind_links(gz, gr, wz, wr, loss, open_, w, e, s, n, d):
     nz, nr = loss.shape
     for i in range(nz):
         for j in range(nr):
-            w[i, j] = gz[i, j] + (max(wz[i, j], 0.0) if i > 0 else 0.0)
-            e[i, j] = gz[i + 1, j] + (max(-wz[i + 1, j], 0.0) if i < nz - 1 else 0.0)
-            s[i, j] = gr[i, j] + max(wr[i, j], 0.0)
-            n[i, j] = gr[i, j + 1] + max(-wr[i, j + 1], 0.0)
-            a = gz[i, j] + gz[i + 1, j] + gr[i, j] + gr[i, j + 1] + loss[i, j]
-            a += max(-wz[i, j], 0.0) + max(wz[i + 1, j], 0.0) + max(-wr[i, j], 0.0) + max(wr[i, j + 1], 0.0)
+            west, east = wz[i, j], wz[i + 1, j]
+            inner, outer = wr[i, j], wr[i, j + 1]
+            w[i, j] = gz[i, j] + (max(west, 0.0) if i > 0 else 0.0)
+            e[i, j] = gz[i + 1, j] + (max(-east, 0.0) if i < nz - 1 else 0.0)
+            s[i, j] = max(gr[i, j] + 0.5 * inner, inner, 0.0)
+            n[i, j] = max(gr[i, j + 1] - 0.5 * outer, -outer, 0.0)
+            a = gz[i, j] + gz[i + 1, j] + loss[i, j] + max(-west, 0.0) + max(east, 0.0)
+            a += max(gr[i, j] - 0.5 * inner, -inner, 0.0) + max(gr[i, j + 1] + 0.5 * outer, outer, 0.0)
             d[i, j] = a if open_[i, j] > 0.0 else 1.0
 
 

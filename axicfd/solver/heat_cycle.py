@@ -4,8 +4,9 @@ Every coarse mesh keeps layers and sections apart (`mesh.build.coarser`) and dis
 resistances, so walls a thousand times more conductive than the fluid, contact resistances and thin layers look the same
 on every level; corrections are interpolated within layers, never across an interface. Lines along r and z are relaxed in
 turn; the coarsest mesh, a few hundred cells, is solved directly. The cycle's operator has upwind convection; it
-preconditions GMRES (Saad & Schultz 1986, SIAM J. Sci. Stat. Comput. 7, 856) for the true one: 12 to 18 steps for ten
-digits over conductivity ratios 0.1 to 650 and Peclet numbers 0.1 to 1e6.
+preconditions GMRES (Saad & Schultz 1986, SIAM J. Sci. Stat. Comput. 7, 856) for the true one. Alone it takes 5 to 9
+cycles for eight digits over conductivity ratios 0.1 to 1e4, walls of 0.02 to 2 radii and Peclet numbers 0.1 to 1e6; the
+difference between upwind and Fromm's convection makes that up to 20 steps.
 """
 
 from dataclasses import dataclass, field
@@ -113,7 +114,8 @@ class HeatCycle:
         basis = np.empty((STEPS + 1, len(r)))
         basis[0] = r / size
         h = np.zeros((STEPS + 1, STEPS))
-        y, k = np.zeros(0), 0
+        y: Any = np.zeros(0)
+        k = 0
         for k in range(1, STEPS + 1):
             w = self._matrix @ self._visit(0, basis[k - 1].reshape(shape)).ravel()
             krylov.orthogonalise(basis, k - 1, w, column := np.zeros(STEPS + 1))

@@ -1,0 +1,27 @@
+"""Vector kernels of GMRES against numpy."""
+
+import numpy as np
+import pytest
+
+from axicfd.kernels import krylov
+
+
+def test_directions_stay_orthonormal():
+    rng = np.random.default_rng(0)
+    basis, n = np.zeros((6, 40)), 40
+    start = rng.random(n)
+    basis[0] = start / np.linalg.norm(start)
+    for k in range(5):
+        w, h = rng.random(n), np.zeros(6)
+        asked = w.copy()
+        krylov.orthogonalise(basis, k, w, h)
+        assert h[: k + 2] @ basis[: k + 2] == pytest.approx(asked, rel=1e-12)
+    assert basis @ basis.T == pytest.approx(np.eye(6), abs=1e-13)
+
+
+def test_combination_and_norm():
+    basis, y = np.arange(12.0).reshape(3, 4), np.array([2.0, -1.0])
+    x = np.empty(4)
+    krylov.combine(basis, y, 2, x)
+    assert x == pytest.approx(2.0 * basis[0] - basis[1])
+    assert krylov.norm(x) == pytest.approx(np.linalg.norm(x))
