@@ -26,6 +26,7 @@ from axicfd.solver.properties import Conduction, Conductors
 
 DROP = 1e-8  # share of the residual a solve leaves
 STEPS = 30  # GMRES steps before a restart
+ROUND_OFF = 1e-14  # of a product of matrix and vector, relative to that of their absolute values
 RESTARTS = 2  # before the cycle counts as failed
 
 
@@ -106,7 +107,9 @@ class HeatCycle:
                 break
             x = x + self._gmres(r, drop * start, shape)
             r = residual.ravel() - self._matrix @ x
-        return x.reshape(shape) if krylov.norm(r) <= 2.0 * drop * start else None
+        # less than the round-off of A x cannot be asked for: a tube that loses its heat only by a trickle gets very hot
+        floor = ROUND_OFF * krylov.norm(abs(self._matrix) @ np.abs(x))
+        return x.reshape(shape) if krylov.norm(r) <= max(2.0 * drop * start, floor) else None
 
     def _gmres(self, r: Array, goal: float, shape: tuple[int, int]) -> Array:
         """One run of right-preconditioned GMRES from zero, until its residual norm is below the goal."""
