@@ -55,6 +55,12 @@ class PlacedSection:
         """[m]"""
         return self.z1 - self.z0
 
+    @property
+    def surface_is_held(self) -> bool:
+        """Whether the surface itself has a prescribed temperature, with nothing in between."""
+        held = self.outside.temperature is not None and not self.outside.contact_resistance
+        return held and self.layers[-1].kind != "void"
+
     def heat_density(self, layer: PlacedLayer) -> float:
         """Heat generated in a layer of this section [W/m3], of both keys together."""
         return layer.heat_per_volume + layer.generated / (layer.area * self.length)

@@ -175,14 +175,9 @@ def _places(case: Case, layout: Layout) -> tuple[Place, ...]:
             places.append(Place(f"{end} end", z, "end", False))
     for a, b in zip(layout.sections[:-1], layout.sections[1:], strict=True):
         if not _alike(a, b):
-            step = _is_prescribed(a) != _is_prescribed(b)
+            step = a.surface_is_held != b.surface_is_held
             places.append(Place(f"joint {a.name} | {b.name}", a.z1, "joint", step))
     return tuple(places)
-
-
-def _is_prescribed(section: PlacedSection) -> bool:
-    """Whether the surface itself has a given temperature, with nothing in between."""
-    return section.outside.temperature is not None and not section.outside.contact_resistance
 
 
 def _alike(a: PlacedSection, b: PlacedSection) -> bool:

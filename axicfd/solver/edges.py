@@ -37,7 +37,7 @@ def edge_factors(case: Case, grid: Grid, t_in: float) -> Edges | None:
     for k, (left, right) in enumerate(zip(sections[:-1], sections[1:], strict=True)):
         a, b = _surface(left), _surface(right)
         alike = (a.kind, a.material, a.r_inner, a.r_outer) == (b.kind, b.material, b.r_inner, b.r_outer)
-        if not alike or _prescribed(left) == _prescribed(right):
+        if not alike or left.surface_is_held == right.surface_is_held:
             continue
         i = int(np.searchsorted(grid.section, k + 1))
         j0, j1 = np.searchsorted(grid.rc, [a.r_inner, a.r_outer])
@@ -48,7 +48,7 @@ def edge_factors(case: Case, grid: Grid, t_in: float) -> Edges | None:
         if ratio is None or reach < RESOLVED * max(*grid.dz[i - 1 : i + 1], grid.r[j1] - grid.r[j1 - 1]):
             continue
         found = True
-        side = 1.0 if _prescribed(right) else -1.0
+        side = 1.0 if right.surface_is_held else -1.0
         _multiply(along, across, grid, i, int(j0), int(j1), side, ratio, reach)
     return Edges(along, across) if found else None
 
@@ -56,16 +56,6 @@ def edge_factors(case: Case, grid: Grid, t_in: float) -> Edges | None:
 def _surface(section: PlacedSection) -> PlacedLayer:
     """The outermost layer that conducts."""
     return [p for p in section.layers if p.kind != "void"][-1]
-
-
-def _prescribed(section: PlacedSection) -> bool:
-    """Whether the section's surface itself has a given temperature."""
-    outside = section.outside
-    return (
-        section.layers[-1].kind != "void"
-        and outside.temperature is not None
-        and not outside.contact_resistance
-    )
 
 
 def _depth_ratio(case: Case, layer: PlacedLayer, t_in: float) -> float | None:
