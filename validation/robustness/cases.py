@@ -100,7 +100,7 @@ def heated(
     """A case of one oil.
 
     sections : (name, length [mm], what is outside)
-    reynolds, prandtl : at the inlet; the specific heat is 2000 J/kg/K down to Pr 1 and less below, the viscosity follows
+    reynolds, prandtl : at the inlet; below Pr 1 the specific heat is smaller; the viscosity follows
     exponent [1/K] : of the viscosity         wall [W/m/K], thickness [mm] : of the tube's wall, if it has one
     """
     specific_heat = 2000.0 if prandtl >= 1.0 else 140.0
@@ -119,7 +119,7 @@ def band(outside: str, lead: float = 100.0, length: float = 50.0) -> list[tuple[
 
 
 def coupled_cases() -> dict[str, Case]:
-    """Twenty cases of flow with heat. Flat inlet and a viscosity that falls twentyfold over 60 K unless said otherwise."""
+    """Twenty cases of flow with heat. Unless said otherwise: flat inlet, viscosity falls twentyfold over 60 K."""
     flux = 'heat = "{} W"'.format
     cases = {}
     for reynolds in (0.1, 1, 10, 100):

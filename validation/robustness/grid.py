@@ -2,8 +2,8 @@
 
     python -m validation.robustness.grid [WORD ...]     only cases whose name holds one of the words
 
-Resumable: a case with a row in grid.csv is not solved again; delete the row, or the file, to repeat it. TABLE.md is written
-from the rows.
+Resumable: a case with a row in grid.csv is not solved again; delete the row, or the file, to repeat it.
+TABLE.md is written from the rows.
 """
 
 import csv
@@ -72,8 +72,9 @@ def write_table() -> None:
     lines = [
         "# What every case took",
         "",
-        f"{good} of {len(rows)} cases converged to 1e-8 on the mesh that the tool chooses; {len(many)} took more than {MANY} iterations. "
-        "Written by `python -m validation.robustness.grid`; seconds on one core of a shared machine, coarser meshes included.",
+        f"{good} of {len(rows)} cases converged to 1e-8 on the mesh that the tool chooses; {len(many)} took more "
+        f"than {MANY} iterations. Written by `python -m validation.robustness.grid`; seconds on one core of a shared "
+        "machine, coarser meshes included.",
         "",
         "| " + " | ".join(COLUMNS) + " |",
         "|" + "---|" * len(COLUMNS),

@@ -1,4 +1,4 @@
-"""Hydrodynamic entry length of a tube with a flat inlet against a Navier-Stokes table and the formula of Durst et al."""
+"""Hydrodynamic entry length of a tube with a flat inlet against a Navier-Stokes table and Durst et al."""
 
 from functools import lru_cache
 from pathlib import Path
