@@ -30,10 +30,13 @@ class Tube:
     mu_mean: float
     swing: float
 
+    def stream_function(self, z, r):
+        """u = (1/r) d/dr of it, v = -(1/r) d/dz: no slip, and no net flow from g."""
+        x2 = (r / RADIUS) ** 2
+        return SPEED * RADIUS**2 * (x2 - 0.5 * x2**2 + _swell(z) * x2 * (1.0 - x2) ** 2 * (1.0 + x2))
+
     def u(self, z, r):
-        s, x2 = z / LENGTH, (r / RADIUS) ** 2
-        g = 0.2 * (1.0 - np.cos(0.5 * np.pi * s)) + 0.4 * np.sin(np.pi * s) ** 3
-        # (1/r) d psi/dr of psi = U R^2 (x^2 - x^4 / 2 + g x^2 (1 - x^2)^2 (1 + x^2)): no slip, and no net flow from g
+        x2, g = (r / RADIUS) ** 2, _swell(z)
         return SPEED * ((2.0 - 2.0 * x2) + g * (2.0 - 4.0 * x2 - 6.0 * x2**2 + 8.0 * x2**3))
 
     def v(self, z, r):
@@ -52,6 +55,11 @@ class Tube:
         return self.mu_mean * np.exp(self.swing * (np.sin(3.0 * s + 0.4) * (0.3 + x2) - 0.5 * s))
 
 
+def _swell(z):
+    s = z / LENGTH
+    return 0.2 * (1.0 - np.cos(0.5 * np.pi * s)) + 0.4 * np.sin(np.pi * s) ** 3
+
+
 CASES = {
     "Re 50": Tube(2.0 / 50.0, 1.2),
     "Re 0.1": Tube(20.0, 1.2),
@@ -59,12 +67,14 @@ CASES = {
 }
 
 
+TO_INLET, TO_WALL = graded_map(STRETCH, True, False), graded_map(4.0, False, True)
+
+
 def faces(cells: int) -> tuple[Array, Array]:
     """z (3 cells + 1,) with a jump of 1:3 in cell length at the joint, r (cells + 1,) graded to the wall."""
-    r = RADIUS * graded_map(4.0, False, True)(np.arange(cells + 1) / cells)
-    first = TO_JOINT * cells
-    before = JOINT * graded_map(STRETCH, True, False)(np.arange(first + 1) / first)
-    return np.append(before, JOINT + (LENGTH - JOINT) * np.arange(1, cells + 1) / cells), r
+    first, share = TO_JOINT * cells, np.arange(cells + 1) / cells
+    before = JOINT * TO_INLET(np.arange(first + 1) / first)
+    return np.append(before, JOINT + (LENGTH - JOINT) * share[1:]), RADIUS * TO_WALL(share)
 
 
 def sources(tube: Tube, z: Array, r: Array) -> tuple[Array, Array]:
