@@ -19,7 +19,8 @@ from axicfd.solver.solve import solve_on
 from axicfd.solver.state import Solution
 from axicfd.version import VERSION
 
-START_BELOW = 1e-5  # residual at which a coarse mesh hands over to the next one
+START_BELOW = 1e-5  # residual at which a coarse mesh that only gives a start hands over to the next one
+NESTED = 4  # finest meshes that are solved in full, for the mesh error
 
 
 @dataclass(frozen=True)
@@ -60,11 +61,11 @@ def solve(case: Case, on_progress: OnProgress | None = None, *, halvings: int = 
     meshes = family(case, place)
     levels = LEVELS + halvings
     solution: Solution | None = None
+    solutions: list[Solution] = []
     history = []
     shown: tuple[float | None, float | None] = (None, None)
     for number, level in enumerate(range(LEVELS - 1, -1 - halvings, -1), start=1):
         grid = meshes.grid(level)
-        finest = number == levels
 
         def tell(residual: float, done: bool, number: int = number, cells: int = grid.cells) -> None:
             if on_progress is not None:
@@ -73,15 +74,16 @@ def solve(case: Case, on_progress: OnProgress | None = None, *, halvings: int = 
         def looked(_: int, residual: float, tell: Callable[[float, bool], None] = tell) -> None:
             tell(residual, False)
 
-        below = case.solve.stop_below if finest else max(START_BELOW, case.solve.stop_below)
+        counts = number > levels - NESTED
+        below = case.solve.stop_below if counts else max(START_BELOW, case.solve.stop_below)
         solution = solve_on(case, grid, solution, below, looked)
         history.append((number, grid.cells, solution.iterations, solution.residual))
         shown = _headline(case, solution)
         tell(solution.residual, True)
+        solutions = [*solutions, solution][-NESTED:]
         if solution.stop_reason == "diverged":
             break
-    assert solution is not None
-    return make_result(case, place, solution, history, time.perf_counter() - begun, VERSION)
+    return make_result(case, place, solutions, history, time.perf_counter() - begun, VERSION)
 
 
 def _headline(case: Case, solution: Solution) -> tuple[float | None, float | None]:

@@ -8,8 +8,10 @@ import numpy as np
 from axicfd.case.layout import Layout
 from axicfd.case.model import Case
 from axicfd.mesh.grid import NOTHING, frozen
-from axicfd.results import axial, cautions, summary
+from axicfd.results import axial, cautions, summary, uncertainty
 from axicfd.solver.state import Solution
+
+WITH_BARS = "stream", "layer", "section", "sensor"  # parts of the tree whose quantities get a mesh error
 
 
 @dataclass(frozen=True, eq=False)
@@ -19,6 +21,7 @@ class Result:
     summary : the tree of summary.json: `result.summary["stream"]["oil"]["outlet_temperature_K"]`
     axial   : stream name -> columns of axial-STREAM.csv; outside, radial: columns of those files
     fields  : arrays of fields.npz
+    axial_half_width : half-widths of the mesh errors of the curves, same shape as `axial`; empty without nested meshes
     history : (mesh level, cells, iterations, residual) of every mesh climbed, coarsest first
     solution: everything the solver left on the finest mesh
     """
@@ -28,6 +31,7 @@ class Result:
     version: str
     summary: dict[str, Any]
     axial: dict[str, dict[str, np.ndarray]]
+    axial_half_width: dict[str, dict[str, np.ndarray]]
     outside: dict[str, np.ndarray]
     radial: dict[str, list]
     fields: dict[str, Any]
@@ -51,11 +55,18 @@ class Result:
 
 
 def make_result(
-    case: Case, layout: Layout, solution: Solution, history: list[tuple[int, int, int, float]], seconds: float, version: str
+    case: Case, layout: Layout, solutions: list[Solution], history: list[tuple[int, int, int, float]], seconds: float, version: str
 ) -> Result:
-    """Interpret the solution of the finest mesh."""
-    tree = summary.summary(case, layout, solution)
-    curves = {name: axial.stream_curves(axial.stream_view(case, solution, name)) for name in solution.grid.streams}
+    """Interpret the solutions of nested meshes, each half as fine as the next; the finest, last, gives the fields.
+
+    With three or more converged meshes every headline quantity is extrapolated where its sequence allows it, and gets the
+    half-width of its mesh error.
+    """
+    solution = solutions[-1]
+    trees = [summary.summary(case, layout, s) for s in solutions]
+    curves = [
+        {name: axial.stream_curves(axial.stream_view(case, s, name)) for name in s.grid.streams} for s in solutions
+    ]
     head: dict[str, Any] = {
         "title": case.title,
         "converged": solution.converged,
@@ -66,17 +77,52 @@ def make_result(
         "cells": solution.grid.cells,
         "version": version,
     }
-    found = cautions.after(case, layout, {**head, **tree}, curves, solution)
+    tree, half_widths = trees[-1], {}
+    nested: dict[str, Any] = {}
+    if len(solutions) >= 3 and all(s.converged for s in solutions):
+        parts = [{key: t[key] for key in WITH_BARS} for t in trees]
+        z, dz = solution.grid.z, solution.grid.dz
+
+        def cell(place: float) -> float:
+            return float(dz[np.clip(np.searchsorted(z, place) - 1, 0, len(dz) - 1)])
+
+        values, widths, hows = uncertainty.estimate_tree(parts, cell)
+        nested = {
+            "finest_mesh": parts[-1],
+            "numerical_uncertainty": {
+                **widths,
+                "observed_order": _leaves(hows, "observed_order"),
+                "rule": _leaves(hows, "rule"),
+            },
+        }
+        tree = {**tree, **values}
+        half_widths = {name: _curve_half_widths(name, curves) for name in curves[-1]}
+    found = cautions.after(case, layout, {**head, **tree}, curves[-1], solution)
     refused = cautions.refusal(case, layout, solution)
-    full = head | ({"refused": refused} if refused else {}) | {"cautions": found} | tree
+    full = head | ({"refused": refused} if refused else {}) | {"cautions": found} | tree | nested
     outside = axial.outside_curves(case, solution)
-    for columns in (outside, *curves.values()):
+    for columns in (outside, *curves[-1].values(), *half_widths.values()):
         for column in columns.values():
             frozen(column)
     fields = _fields(case, solution)
-    return Result(
-        case, layout, version, full, curves, outside, axial.radial_profiles(case, solution), fields, history, solution
-    )
+    radial = axial.radial_profiles(case, solution)
+    return Result(case, layout, version, full, curves[-1], half_widths, outside, radial, fields, history, solution)
+
+
+def _leaves(tree: dict[str, Any], word: str) -> dict[str, Any]:
+    """The tree of one word of each leaf of an estimate."""
+    return {key: leaf[word] if word in leaf else _leaves(leaf, word) for key, leaf in tree.items()}
+
+
+def _curve_half_widths(name: str, curves: list[dict[str, dict[str, np.ndarray]]]) -> dict[str, np.ndarray]:
+    z = [c[name]["z_m"] for c in curves]
+    return {
+        column: z[-1].copy()
+        if column == "z_m"
+        else uncertainty.curve_half_widths(z, [c[name][column] for c in curves])
+        for column in curves[-1][name]
+        if column != "reverse"
+    }
 
 
 def _fields(case: Case, solution: Solution) -> dict[str, Any]:

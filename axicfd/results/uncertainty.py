@@ -1,0 +1,156 @@
+"""Mesh errors of reported quantities, from their values on nested meshes.
+
+Each mesh halves the cells of the one before in both directions, so three values in a row tell how far the last one is
+from the limit. Values are extrapolated with the fixed weights of second order (Richardson 1911, Phil. Trans. R. Soc. A 210, 307)
+where the sequence behaves like second order; else the finest value stands, with Roache's grid convergence index
+(Roache 1994, J. Fluids Eng. 116, 405; factors 1.25 and 3 as in Roache 1998). A quantity of a singular place converges at
+first order and gets a half-width that says so.
+"""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from math import isfinite, log2
+from typing import Any
+
+import numpy as np
+
+from axicfd.mesh.grid import Array
+
+SECOND_ORDER = 3.2, 5.0  # ratio of successive changes for which a sequence counts as second order; 4 is exact
+PLAUSIBLE = 1.7, 2.3  # observed orders for which the smaller safety factor holds
+SAFE, CAREFUL = 1.25, 3.0  # Roache's safety factors
+LEAST_OF_CORRECTION = 0.1  # the half-width of an extrapolated value is at least this share of the correction
+LEAST_OF_COARSER = 0.05  # and of the half-width that one mesh less would have given
+ROUND_OFF = 1e-11  # changes below this share of the value are round-off
+
+EXTRAPOLATED, FINEST, SINGULAR, OSCILLATES, EXACT = "extrapolated", "finest", "singular", "oscillates", "exact"
+
+
+@dataclass(frozen=True)
+class Estimate:
+    """A value with its mesh error.
+
+    value      : the one to report          half_width : of its mesh error; None where nothing can be said
+    order      : observed order of the finest three meshes, None where there is none
+    rule       : how value and half-width were found
+    """
+
+    value: float
+    half_width: float | None
+    order: float | None
+    rule: str
+
+
+def estimate(values: list[float], singular: bool = False) -> Estimate:
+    """The estimate from values on nested meshes, coarsest first; three of them, or more.
+
+    singular : the quantity belongs to a place where the exact field is not smooth
+    """
+    coarse, medium, fine = values[-3:]
+    if not all(isfinite(v) for v in values[-3:]):
+        return Estimate(fine, None, None, FINEST)
+    older, last = medium - coarse, fine - medium
+    size = max(abs(v) for v in values[-3:])
+    if max(abs(older), abs(last)) <= ROUND_OFF * size:
+        return Estimate(fine, 0.0, None, EXACT)
+    order = log2(older / last) if older * last > 0.0 else None
+    if singular:
+        towards = (-5.0 * fine + 6.0 * medium - coarse) / 3.0
+        return Estimate(fine, SAFE * max(abs(last), abs(towards)), order, SINGULAR)
+    if order is None:
+        return Estimate(fine, CAREFUL * max(abs(last), abs(older) / 4.0), None, OSCILLATES)
+    if SECOND_ORDER[0] <= older / last <= SECOND_ORDER[1]:
+        value = (4.0 * fine - medium) / 3.0
+        before = (4.0 * medium - coarse) / 3.0
+        half = SAFE * max(abs(value - before), LEAST_OF_CORRECTION * abs(value - fine))
+        if len(values) > 3:
+            coarser = estimate(values[:-1], singular).half_width
+            half = max(half, LEAST_OF_COARSER * (coarser or 0.0))
+        return Estimate(value, half, order, EXTRAPOLATED)
+    factor = SAFE if PLAUSIBLE[0] <= order <= PLAUSIBLE[1] else CAREFUL
+    clipped = min(max(order, 1.0), 2.0)
+    return Estimate(fine, factor * abs(last) / (2.0**clipped - 1.0), order, FINEST)
+
+
+def grid_convergence_index(values: tuple[float, float, float], ratios: tuple[float, float]) -> dict[str, float]:
+    """Order, extrapolated value and index for unequal refinement ratios (Celik et al. 2008, J. Fluids Eng. 130, 078001).
+
+    values : on the fine, medium and coarse mesh        ratios : medium / fine and coarse / medium cell size
+    Returns order, extrapolated, relative_error, extrapolated_error, index (fine mesh, safety factor 1.25).
+    """
+    fine, medium, coarse = values
+    r21, r32 = ratios
+    e21, e32 = medium - fine, coarse - medium
+    sign = 1.0 if e32 / e21 > 0.0 else -1.0
+    order = 1.0
+    for _ in range(200):
+        q = np.log((r21**order - sign) / (r32**order - sign))
+        new = float(abs(np.log(abs(e32 / e21)) + q) / np.log(r21))
+        if abs(new - order) < 1e-13:
+            break
+        order = new
+    factor = r21**order
+    extrapolated = (factor * fine - medium) / (factor - 1.0)
+    relative = abs((fine - medium) / fine)
+    return {
+        "order": order,
+        "extrapolated": extrapolated,
+        "relative_error": relative,
+        "extrapolated_error": abs((extrapolated - fine) / extrapolated),
+        "index": SAFE * relative / (factor - 1.0),
+    }
+
+
+def estimate_tree(
+    trees: list[Any], cell: Callable[[float], float], path: tuple[str, ...] = ()
+) -> tuple[Any, Any, Any]:
+    """(values, half-widths, how) of the trees of headline quantities on nested meshes, coarsest first.
+
+    cell : length of the axial cell of the finest mesh at a place z [m]; no place is known more sharply
+    Leaves that are not numbers on all of the last three meshes are taken from the finest, without a half-width.
+    """
+    finest = trees[-1]
+    if isinstance(finest, dict):
+        values, widths, hows = {}, {}, {}
+        for key, leaf in finest.items():
+            below = [tree.get(key) if isinstance(tree, dict) else None for tree in trees]
+            if key == "why":
+                values[key] = leaf
+                continue
+            value, width, how = estimate_tree(below, cell, (*path, key))
+            values[key] = value
+            if width is not None and width != {}:
+                widths[key], hows[key] = width, how
+        return values, widths, hows
+    usable = [tree for tree in trees if _is_number(tree)]
+    if not all(_is_number(tree) for tree in trees[-3:]) or len(usable) < 3:
+        return finest, None, None
+    found = estimate([float(v) for v in usable])
+    if path and path[-1].endswith("_z_m"):
+        return finest, max(cell(finest), abs(trees[-1] - trees[-2])), {"observed_order": None, "rule": "spacing"}
+    return found.value, found.half_width, {"observed_order": found.order, "rule": found.rule}
+
+
+def _is_number(leaf: Any) -> bool:
+    return isinstance(leaf, int | float) and not isinstance(leaf, bool) and isfinite(leaf)
+
+
+def curve_half_widths(z: list[Array], columns: list[Array]) -> Array:
+    """Half-widths along a curve on the finest faces, from the curves on nested meshes, coarsest first.
+
+    z, columns : faces and values of each mesh; coarse faces are fine faces. nan where a mesh has no value.
+    Between the faces that all of the last three meshes share the half-width is interpolated.
+    """
+    shared = z[-3]
+    picks = [column[np.searchsorted(faces, shared - 1e-12 * shared[-1])] for faces, column in zip(z[-3:], columns[-3:], strict=True)]
+    widths = np.full(len(shared), np.nan)
+    for k, triple in enumerate(zip(*picks, strict=True)):
+        found = estimate([float(v) for v in triple])
+        # the curves themselves stay those of the finest mesh
+        if found.half_width is not None:
+            widths[k] = found.half_width + abs(found.value - triple[-1])
+    good = np.isfinite(widths)
+    if not good.any():
+        return np.full(len(z[-1]), np.nan)
+    filled = np.interp(z[-1], shared[good], widths[good])
+    return np.where(np.isfinite(columns[-1]), filled, np.nan)
