@@ -5,6 +5,7 @@ direction; rows are returned by increasing z.
 """
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
@@ -74,7 +75,12 @@ class StreamView:
     def mean_velocity(self) -> float:
         return self.mass_flow / (self.density * self.area)
 
-    @property
+    @cached_property
+    def curves(self) -> dict[str, Array]:
+        """The columns of axial-STREAM.csv, computed once."""
+        return stream_curves(self)
+
+    @cached_property
     def wall_z(self) -> tuple[Array, Array]:
         """(z, value) of the wetted wall at all stations and faces, joints from each side."""
         return _all_places(self.z, self.zc, self.breaks, self.wall, self.wall_before, self.wall_after)
@@ -177,6 +183,11 @@ def stream_view(case: Case, solution: Solution, name: str) -> StreamView:
         p=p,
         viscosity_wall=own(fields.viscosity_wall) if fields else np.zeros(grid.nz + 1),
     )
+
+
+def stream_views(case: Case, solution: Solution) -> dict[str, StreamView]:
+    """Every stream of a solution in its own direction, by name."""
+    return {name: stream_view(case, solution, name) for name in solution.grid.streams}
 
 
 def _bulk(fluid: UsedFluid, t_in: float, enthalpy: Array, flow: Array) -> Array:

@@ -8,11 +8,12 @@ from axicfd.mesh.grid import Array
 def to_faces(values: Array, zc: Array, z: Array, breaks: tuple[int, ...]) -> tuple[Array, Array]:
     """Values on the axial faces from those of the stations, by cubics that do not reach across the faces `breaks`.
 
-    values (nz,) at zc; returns (before, after), both (nz + 1,): at a break the values from either side, else equal.
+    values (nz, ...) at zc; returns (before, after), both (nz + 1, ...): at a break the values from either side, else
+    equal.
     At the first and the last plane both are the extrapolation from inside.
     """
     cuts = sorted({0, len(zc), *(b for b in breaks if 0 < b < len(zc))})
-    before, after = np.empty(len(z)), np.empty(len(z))
+    before, after = np.empty((len(z), *values.shape[1:])), np.empty((len(z), *values.shape[1:]))
     for a, b in zip(cuts[:-1], cuts[1:], strict=True):
         inside = at_points(zc[a:b], values[a:b], z[a : b + 1])
         after[a:b] = inside[:-1]
@@ -22,17 +23,20 @@ def to_faces(values: Array, zc: Array, z: Array, breaks: tuple[int, ...]) -> tup
 
 
 def at_points(x: Array, y: Array, at: Array) -> Array:
-    """Lagrange interpolation over the four nearest points (all of them, if there are fewer)."""
+    """Lagrange interpolation over the four nearest points (all of them, if there are fewer).
+
+    x (n,) and y (n, ...); returns (len(at), ...)
+    """
     n = len(x)
     width = min(4, n)
     k = np.clip(np.searchsorted(x, at) - width // 2, 0, n - width)
-    result = np.zeros(len(at))
+    result = np.zeros((len(at), *y.shape[1:]))
     for a in range(width):
         weight = np.ones(len(at))
         for b in range(width):
             if a != b:
                 weight *= (at - x[k + b]) / (x[k + a] - x[k + b])
-        result += weight * y[k + a]
+        result += weight.reshape(-1, *(1,) * (y.ndim - 1)) * y[k + a]
     return result
 
 
@@ -47,7 +51,7 @@ def to_axis(values: Array, rc: Array) -> Array:
 def to_first_plane(values: Array, zc: Array, z0: float) -> Array:
     """Values in the plane z0 before the first stations by a parabola along z; values (nz, nr), returns (nr,)."""
     n = min(3, len(zc))
-    return np.array([at_points(zc[:n], values[:n, j], np.array([z0]))[0] for j in range(values.shape[1])])
+    return at_points(zc[:n], values[:n], np.array([z0]))[0]
 
 
 def last_crossing(z: Array, deviation: Array, limit: float) -> float | None:

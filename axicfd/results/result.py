@@ -55,18 +55,22 @@ class Result:
 
 
 def make_result(
-    case: Case, layout: Layout, solutions: list[Solution], history: list[tuple[int, int, int, float]], seconds: float, version: str
+    case: Case,
+    layout: Layout,
+    solutions: list[Solution],
+    history: list[tuple[int, int, int, float]],
+    seconds: float,
+    version: str,
 ) -> Result:
     """Interpret the solutions of nested meshes, each half as fine as the next; the finest, last, gives the fields.
 
-    With three or more converged meshes every headline quantity is extrapolated where its sequence allows it, and gets the
-    half-width of its mesh error.
+    With three or more converged meshes every headline quantity is extrapolated where its sequence allows it, and
+    gets the half-width of its mesh error.
     """
     solution = solutions[-1]
-    trees = [summary.summary(case, layout, s) for s in solutions]
-    curves = [
-        {name: axial.stream_curves(axial.stream_view(case, s, name)) for name in s.grid.streams} for s in solutions
-    ]
+    views = [axial.stream_views(case, s) for s in solutions]
+    trees = [summary.summary(case, layout, s, v) for s, v in zip(solutions, views, strict=True)]
+    curves = [{name: view.curves for name, view in v.items()} for v in views]
     head: dict[str, Any] = {
         "title": case.title,
         "converged": solution.converged,

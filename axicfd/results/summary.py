@@ -13,7 +13,7 @@ from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout, PlacedSection
 from axicfd.case.model import Case
 from axicfd.results import lines
-from axicfd.results.axial import StreamView, stream_curves, stream_view, temperature_span
+from axicfd.results.axial import StreamView, temperature_span
 from axicfd.solver import developed
 from axicfd.solver.flow import stream_mesh
 from axicfd.solver.state import Solution
@@ -25,9 +25,8 @@ STANDARD_GRAVITY = 9.80665  # m/s2, CGPM 1901
 TRICKLE = 1e-3  # K; smallest temperature change that the heat scale counts, times m cp
 
 
-def summary(case: Case, layout: Layout, solution: Solution) -> dict[str, Any]:
-    """The tree with `stream`, `layer`, `section`, `sensor`, `ledger` and `balance`."""
-    views = {name: stream_view(case, solution, name) for name in solution.grid.streams}
+def summary(case: Case, layout: Layout, solution: Solution, views: dict[str, StreamView]) -> dict[str, Any]:
+    """The tree with `stream`, `layer`, `section`, `sensor`, `ledger` and `balance`; views of all its streams given."""
     ledger = _ledger(case, layout, solution)
     return {
         "stream": {name: _stream(case, layout, solution, view) for name, view in views.items()},
@@ -161,8 +160,7 @@ def _thermal_entry(
     nusselt = developed_nusselt(case, solution, view, section)
     if nusselt is None:
         return None, "no uniform condition"
-    curves = stream_curves(view)
-    nu, z = curves["nusselt"], curves["z_m"]
+    nu, z = view.curves["nusselt"], view.curves["z_m"]
     inside = (z >= section.z0 - 1e-12) & (z <= section.z1 + 1e-12)
     nu, z = nu[inside], z[inside]
     if view.mirrored:
@@ -235,7 +233,7 @@ def _layers(case: Case, solution: Solution) -> dict[str, Any]:
             [heat.plus[rows, piece.j0][:, None], heat.t[piece.cells], heat.minus[rows, piece.j1][:, None]], axis=1
         )
         z, zc = grid.z[piece.i0 : piece.i1 + 1], grid.zc[rows]
-        faces = np.array([lines.to_faces(here[:, j], zc, z, ())[0] for j in range(here.shape[1])]).T
+        faces, _ = lines.to_faces(here, zc, z, ())
         all_z = np.concatenate([zc, z])
         order = np.argsort(all_z, kind="stable")
         both = np.concatenate([here, faces])[order]
@@ -262,10 +260,9 @@ def _section(k: int, section: PlacedSection, solution: Solution, views: dict[str
         if view.mass_flow == 0.0:
             bulk[name] = pressure[name] = None
             continue
-        curves = stream_curves(view)
         end = i0 if view.mirrored else i1
-        bulk[name] = float(curves["bulk_temperature_K"][end])
-        pressure[name] = float(curves["pressure_Pa"][end])
+        bulk[name] = float(view.curves["bulk_temperature_K"][end])
+        pressure[name] = float(view.curves["pressure_Pa"][end])
     return tree | {"end_bulk_temperature_K": bulk, "end_pressure_Pa": pressure, "heat_to_stream_W": taken}
 
 
@@ -278,8 +275,7 @@ def _sensor(case: Case, solution: Solution, views: dict[str, StreamView], sensor
     if sensor.at == "bulk":
         if view.mass_flow == 0.0:
             return {"temperature_K": None}
-        curves = stream_curves(view)
-        return {"temperature_K": float(np.interp(z, curves["z_m"], curves["bulk_temperature_K"]))}
+        return {"temperature_K": float(np.interp(z, view.curves["z_m"], view.curves["bulk_temperature_K"]))}
     j0, j1 = grid.streams[name]
     if sensor.at == "axis":
         stations = lines.to_axis(heat.t[:, j0:j1], grid.rc[j0:j1])

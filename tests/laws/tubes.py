@@ -119,7 +119,7 @@ class Run:
 
     @property
     def summary(self) -> dict:
-        return summary(self.case, self.layout, self.solution)
+        return summary(self.case, self.layout, self.solution, {self.view.name: self.view})
 
     @property
     def span(self) -> float:

@@ -6,6 +6,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from axicfd.results.axial import stream_views
 from axicfd.results.summary import summary
 from tests.results.made_up import BACKWARDS, CP, FLUX, MEAN, MU, RHO, K, MadeUp, R, made_up
 
@@ -13,7 +14,7 @@ MASS = RHO * MEAN * math.pi * R**2
 
 
 def tree(run: MadeUp) -> dict:
-    return summary(run.case, run.layout, run.solution)
+    return summary(run.case, run.layout, run.solution, stream_views(run.case, run.solution))
 
 
 @pytest.fixture(scope="module")
