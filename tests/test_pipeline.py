@@ -35,7 +35,7 @@ def test_meshes_are_climbed_from_coarse_to_fine(result, told):
 
 def test_progress_tells_headline_quantities_once_known(result, told):
     assert told[0].outlet_temperature is None and told[0].pressure_drop is None
-    stream = result.summary["stream"]["water"]
+    stream = result.summary["finest_mesh"]["stream"]["water"]
     assert told[-1].outlet_temperature == stream["outlet_temperature_K"]
     assert told[-1].pressure_drop == stream["pressure_drop_Pa"]
     assert told[-1].residual < 1e-8

@@ -82,7 +82,7 @@ def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, wher
     if hand:
         out.print("By hand: constant inlet properties, no conduction along the wall, section by section.")
     if not bars:
-        out.print("One mesh: no mesh error is known for these values.")
+        out.print("No mesh error is known for these values.")
     out.print(STANDING)
     print_cautions(out, summary["cautions"], verbose)
     if can_hurt(result):

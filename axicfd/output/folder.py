@@ -43,6 +43,7 @@ class Stored:
     version: str
     summary: dict[str, Any]
     axial: dict[str, dict[str, Any]]
+    axial_half_width: dict[str, dict[str, Any]]
     outside: dict[str, Any]
     radial: dict[str, Any]
     fields: dict[str, Any]
@@ -51,6 +52,16 @@ class Stored:
 def file_name(name: str) -> str:
     """A user's name as part of a file name: spaces become `-`."""
     return name.replace(" ", "-")
+
+
+def axial_name(stream: str) -> str:
+    """File of a stream's curves."""
+    return f"axial-{file_name(stream)}.csv"
+
+
+def half_width_name(stream: str) -> str:
+    """File of the mesh errors of a stream's curves; only where nested meshes gave some."""
+    return f"axial-{file_name(stream)}.half-width.csv"
 
 
 def refuse_unusable(path: Path, replace: bool) -> None:
@@ -96,10 +107,13 @@ def read(path: Path) -> Stored:
     name = SUMMARY
     try:
         summary = json.loads((path / SUMMARY).read_text(encoding="utf-8"))
-        tables = {}
+        tables, half_widths = {}, {}
         for stream in summary["stream"]:
-            name = f"axial-{file_name(stream)}.csv"
+            name = axial_name(stream)
             tables[stream] = csv.read_columns(path / name)
+            if "numerical_uncertainty" in summary:
+                name = half_width_name(stream)
+                half_widths[stream] = csv.read_columns(path / name)
         name = "outside.csv"
         outside = csv.read_columns(path / name)
         name = "radial.csv"
@@ -118,6 +132,7 @@ def read(path: Path) -> Stored:
         version=str(summary.get("version", "")),
         summary=summary,
         axial=tables,
+        axial_half_width=half_widths,
         outside=outside,
         radial=radial,
         fields=fields,
@@ -133,7 +148,9 @@ def _write_files(result: Any, folder: Path) -> None:
     (folder / SUMMARY).write_text(summary_text(result.summary), encoding="utf-8")
     (folder / CASE).write_text(to_toml(result.case), encoding="utf-8")
     for stream, columns in result.axial.items():
-        csv.write_columns(folder / f"axial-{file_name(stream)}.csv", columns)
+        csv.write_columns(folder / axial_name(stream), columns)
+    for stream, columns in result.axial_half_width.items():
+        csv.write_columns(folder / half_width_name(stream), columns)
     csv.write_columns(folder / "outside.csv", result.outside)
     csv.write_columns(folder / "radial.csv", result.radial)
     arrays: dict[str, Any] = {key: np.asarray(value) for key, value in result.fields.items()}

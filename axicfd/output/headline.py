@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any
@@ -34,6 +35,9 @@ MORE_STREAM_ROWS = (  # when everything is asked for
     "graetz",
     "heated_length_m",
 )
+MOST_DIGITS = 6  # of a value with a mesh error
+FINEST_TEMPERATURE = -4  # decade of the last digit of a temperature with a mesh error
+
 LAYER_ROWS = ("hottest_K",)
 SECTION_ROWS = ("heat_in_W",)
 SENSOR_ROWS = ("temperature_K",)
@@ -99,17 +103,47 @@ def amount(shown: Shown, kind: str, value: float, unit: str = "") -> str:
     return f"{text} {shown.unit(kind) if kind else unit}".rstrip()
 
 
+def with_bar(value: float, half_width: float, finest: int | None = None) -> tuple[str, str]:
+    """A value and the half-width of its mesh error, both to the second digit of the half-width.
+
+    finest : decade of the last digit that may be shown; by default that of the value's sixth digit
+    Half-widths are rounded up, so that what is printed still holds the limit.
+    """
+    if finest is None:
+        finest = (_decade(value) if value else _decade(half_width)) - MOST_DIGITS + 1
+    last = max(_decade(half_width) - 1, finest)
+    bar = math.ceil(half_width / 10.0**last - 1e-9) * 10.0**last
+    if not 1e-3 <= max(abs(value), bar) < 1e6:
+        return f"{value:.{max(_decade(value) - last, 0)}e}" if value else "0", number(bar, 2)
+    bar_text = f"{bar:.{max(-last, 0)}f}"
+    if "." in bar_text:
+        bar_text = bar_text.rstrip("0").rstrip(".")
+    decimals = len(bar_text.partition(".")[2])
+    return f"{round(value, -last if last > 0 else decimals):.{decimals}f}", bar_text
+
+
+def _decade(value: float) -> int:
+    return math.floor(math.log10(abs(value)))
+
+
 def _line(summary: dict[str, Any], shown: Shown, owner: str, path: tuple[str, ...], value: Any) -> Line:
     row = summary_row(path[-1])
-    if _has_value(value):
+    half = _entry(summary.get("numerical_uncertainty"), path)
+    bar = ""
+    if _has_value(value) and _has_value(half) and half > 0.0:
+        finest = FINEST_TEMPERATURE if row.kind == "temperature" else None
+        width = float(shown.difference(row.kind, half))
+        text, bar = with_bar(float(shown.value(row.kind, value)), width, finest)
+        text = f"{text} {shown.unit(row.kind) if row.kind else row.unit}".rstrip()
+        bar = f"±{bar} (mesh)"
+    elif _has_value(value):
         text = amount(shown, row.kind, value, row.unit)
+        bar = "±0 (mesh)" if half == 0.0 else ""
     else:
         why = _entry(summary, (*path[:-1], "why", path[-1])) or _entry(
             summary, (*path[:-1], "why", quantity_name(path[-1]))
         )
         text = f"none ({why})" if why else "none"
-    half = _entry(summary.get("numerical_uncertainty"), path)
-    bar = f"±{number(float(shown.difference(row.kind, half)), 2)} (mesh)" if _has_value(half) else ""
     z = _entry(summary, (*path[:-1], f"{quantity_name(path[-1])}_z_m"))
     place = f"at {amount(shown, 'length', z)}" if _has_value(z) else ""
     return Line(owner, path, row, value, text, bar, place)

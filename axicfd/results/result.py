@@ -120,13 +120,15 @@ def _leaves(tree: dict[str, Any], word: str) -> dict[str, Any]:
 
 def _curve_half_widths(name: str, curves: list[dict[str, dict[str, np.ndarray]]]) -> dict[str, np.ndarray]:
     z = [c[name]["z_m"] for c in curves]
-    return {
-        column: z[-1].copy()
-        if column == "z_m"
-        else uncertainty.curve_half_widths(z, [c[name][column] for c in curves])
-        for column in curves[-1][name]
-        if column != "reverse"
-    }
+    widths = {}
+    for column, values in curves[-1][name].items():
+        if column == "z_m":
+            widths[column] = values.copy()
+        elif column == "reverse":
+            widths[column] = np.full(len(values), np.nan)  # a flag has no mesh error
+        else:
+            widths[column] = uncertainty.curve_half_widths(z, [c[name][column] for c in curves])
+    return widths
 
 
 def _fields(case: Case, solution: Solution) -> dict[str, Any]:

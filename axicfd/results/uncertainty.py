@@ -1,10 +1,10 @@
 """Mesh errors of reported quantities, from their values on nested meshes.
 
 Each mesh halves the cells of the one before in both directions, so three values in a row tell how far the last one is
-from the limit. Values are extrapolated with the fixed weights of second order (Richardson 1911, Phil. Trans. R. Soc. A 210, 307)
-where the sequence behaves like second order; else the finest value stands, with Roache's grid convergence index
-(Roache 1994, J. Fluids Eng. 116, 405; factors 1.25 and 3 as in Roache 1998). A quantity of a singular place converges at
-first order and gets a half-width that says so.
+from the limit. Values are extrapolated with the fixed weights of second order (Richardson 1911, Phil. Trans. R. Soc.
+A 210, 307) where the sequence behaves like second order; else the finest value stands, with Roache's grid convergence
+index (Roache 1994, J. Fluids Eng. 116, 405; factors 1.25 and 3 as in Roache 1998). A quantity of a singular place
+converges at first order and gets a half-width that says so.
 """
 
 from collections.abc import Callable
@@ -16,14 +16,14 @@ import numpy as np
 
 from axicfd.mesh.grid import Array
 
-SECOND_ORDER = 3.2, 5.0  # ratio of successive changes for which a sequence counts as second order; 4 is exact
-PLAUSIBLE = 1.7, 2.3  # observed orders for which the smaller safety factor holds
+SECOND_ORDER = 3.2, 5.0  # ratio of successive changes that counts as second order (1.7 to 2.3); 4 is exact
 SAFE, CAREFUL = 1.25, 3.0  # Roache's safety factors
 LEAST_OF_CORRECTION = 0.1  # the half-width of an extrapolated value is at least this share of the correction
 LEAST_OF_COARSER = 0.05  # and of the half-width that one mesh less would have given
 ROUND_OFF = 1e-11  # changes below this share of the value are round-off
 
 EXTRAPOLATED, FINEST, SINGULAR, OSCILLATES, EXACT = "extrapolated", "finest", "singular", "oscillates", "exact"
+SPACING = "spacing"  # a place: known to a cell of the finest mesh
 
 
 @dataclass(frozen=True)
@@ -54,11 +54,11 @@ def estimate(values: list[float], singular: bool = False) -> Estimate:
     if max(abs(older), abs(last)) <= ROUND_OFF * size:
         return Estimate(fine, 0.0, None, EXACT)
     order = log2(older / last) if older * last > 0.0 else None
+    mixed = SAFE * abs(-5.0 * fine + 6.0 * medium - coarse) / 3.0  # from the limit of value + a h + b h^2
     if singular:
-        towards = (-5.0 * fine + 6.0 * medium - coarse) / 3.0
-        return Estimate(fine, SAFE * max(abs(last), abs(towards)), order, SINGULAR)
+        return Estimate(fine, max(SAFE * abs(last), mixed), order, SINGULAR)
     if order is None:
-        return Estimate(fine, CAREFUL * max(abs(last), abs(older) / 4.0), None, OSCILLATES)
+        return Estimate(fine, max(CAREFUL * max(abs(last), abs(older) / 4.0), mixed), None, OSCILLATES)
     if SECOND_ORDER[0] <= older / last <= SECOND_ORDER[1]:
         value = (4.0 * fine - medium) / 3.0
         before = (4.0 * medium - coarse) / 3.0
@@ -67,13 +67,15 @@ def estimate(values: list[float], singular: bool = False) -> Estimate:
             coarser = estimate(values[:-1], singular).half_width
             half = max(half, LEAST_OF_COARSER * (coarser or 0.0))
         return Estimate(value, half, order, EXTRAPOLATED)
-    factor = SAFE if PLAUSIBLE[0] <= order <= PLAUSIBLE[1] else CAREFUL
+    # here the observed order is not plausible; first order of a place nobody knows of may hide behind it
     clipped = min(max(order, 1.0), 2.0)
-    return Estimate(fine, factor * abs(last) / (2.0**clipped - 1.0), order, FINEST)
+    return Estimate(fine, max(CAREFUL * abs(last) / (2.0**clipped - 1.0), mixed), order, FINEST)
 
 
 def grid_convergence_index(values: tuple[float, float, float], ratios: tuple[float, float]) -> dict[str, float]:
-    """Order, extrapolated value and index for unequal refinement ratios (Celik et al. 2008, J. Fluids Eng. 130, 078001).
+    """Order, extrapolated value and index for unequal refinement ratios.
+
+    Celik, Ghia, Roache, Freitas, Coleman & Raad 2008, J. Fluids Eng. 130, 078001.
 
     values : on the fine, medium and coarse mesh        ratios : medium / fine and coarse / medium cell size
     Returns order, extrapolated, relative_error, extrapolated_error, index (fine mesh, safety factor 1.25).
@@ -125,9 +127,9 @@ def estimate_tree(
     usable = [tree for tree in trees if _is_number(tree)]
     if not all(_is_number(tree) for tree in trees[-3:]) or len(usable) < 3:
         return finest, None, None
-    found = estimate([float(v) for v in usable])
     if path and path[-1].endswith("_z_m"):
-        return finest, max(cell(finest), abs(trees[-1] - trees[-2])), {"observed_order": None, "rule": "spacing"}
+        return finest, max(cell(finest), abs(trees[-1] - trees[-2])), {"observed_order": None, "rule": SPACING}
+    found = estimate([float(v) for v in usable])
     return found.value, found.half_width, {"observed_order": found.order, "rule": found.rule}
 
 
@@ -142,7 +144,10 @@ def curve_half_widths(z: list[Array], columns: list[Array]) -> Array:
     Between the faces that all of the last three meshes share the half-width is interpolated.
     """
     shared = z[-3]
-    picks = [column[np.searchsorted(faces, shared - 1e-12 * shared[-1])] for faces, column in zip(z[-3:], columns[-3:], strict=True)]
+    picks = [
+        column[np.searchsorted(faces, shared - 1e-12 * shared[-1])]
+        for faces, column in zip(z[-3:], columns[-3:], strict=True)
+    ]
     widths = np.full(len(shared), np.nan)
     for k, triple in enumerate(zip(*picks, strict=True)):
         found = estimate([float(v) for v in triple])
