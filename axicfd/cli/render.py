@@ -13,7 +13,7 @@ from rich.text import Text
 from axicfd.output.headline import amount, headline, number
 from axicfd.output.shown import shown_units
 
-PLAIN_WIDTH = 110  # columns where the output is no terminal
+PLAIN_WIDTH = 120  # columns where the output is no terminal
 CAUTIONS_SHOWN = 2  # the rest with --verbose
 
 STANDING = (
@@ -38,7 +38,7 @@ def rows(
     target: Console, header: Sequence[str], body: Iterable[Sequence[str]], right: Sequence[int] = ()
 ) -> None:
     """A table in columns, without boxes."""
-    table = Table(box=None, pad_edge=False, padding=(0, 3, 0, 0), show_header=any(header))
+    table = Table(box=None, pad_edge=False, padding=(0, 2, 0, 0), show_header=any(header))
     for place, name in enumerate(header):
         table.add_column(name, justify="right" if place in right else "left", header_style="dim")
     for row in body:

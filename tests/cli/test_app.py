@@ -159,16 +159,15 @@ def test_all_cautions_only_when_verbose(here, solver, capsys):
 
 
 def test_mesh_errors_are_shown_where_they_are_known(here, solver, capsys):
-    def with_bars():
-        result = made_up()
-        bars = {"stream": {"syrup": {"outlet_temperature_K": 0.05, "pressure_drop_Pa": 12.0}}}
-        return replace(result, summary={**result.summary, "numerical_uncertainty": bars})
-
-    solver.answer = with_bars
     app.main(["solve", "syrup.toml"])
     out = capsys.readouterr().out
     assert "±0.05 (mesh)" in out and "±12 (mesh)" in out
-    assert "no mesh error is known" not in out
+    assert "No mesh error is known" not in out
+    solver.answer = lambda: made_up(converged=False)
+    app.main(["solve", "syrup.toml", "--replace"])
+    out = capsys.readouterr().out
+    assert "(mesh)" not in out
+    assert "No mesh error is known" in out
 
 
 def test_draw_writes_pictures_into_the_folder(here, solver, capsys):

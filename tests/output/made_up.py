@@ -64,6 +64,7 @@ class MadeUp:
     version: str
     summary: dict[str, Any]
     axial: dict[str, dict[str, Any]]
+    axial_half_width: dict[str, dict[str, Any]]
     outside: dict[str, Any]
     radial: dict[str, Any]
     fields: dict[str, Any]
@@ -71,7 +72,10 @@ class MadeUp:
 
 
 def made_up(text: str = TEXT, nz: int = 60, converged: bool = True) -> MadeUp:
-    """A made-up result of a one-stream tube, 12 cells across the stream and 4 across the wall."""
+    """A made-up result of a one-stream tube, 12 cells across the stream and 4 across the wall.
+
+    Mesh errors are those of nested meshes that all converged; there are none without convergence.
+    """
     case = load(text)
     tube = layout(case)
     stream = next(iter(case.stream))
@@ -132,7 +136,33 @@ def made_up(text: str = TEXT, nz: int = 60, converged: bool = True) -> MadeUp:
         "radial_velocity_m_s": np.concatenate([np.zeros(12), np.full(4, np.nan)]),
         "temperature_K": inlet + temperature[-1],
     }
-    return MadeUp(case, tube, "0.0.0", _summary(case, stream, converged), axial, outside, radial, fields)
+    summary, half_widths = _summary(case, stream, converged), {}
+    if converged:
+        summary |= _mesh_errors(summary, stream)
+        half_widths = {stream: _half_widths(axial[stream])}
+    return MadeUp(case, tube, "0.0.0", summary, axial, half_widths, outside, radial, fields)
+
+
+def _half_widths(curves: dict[str, Any]) -> dict[str, Any]:
+    """A thousandth of every value; a flag has none."""
+    widths = {name: 1e-3 * np.abs(column) for name, column in curves.items()}
+    none = np.full(len(curves["z_m"]), np.nan)
+    return widths | {"z_m": curves["z_m"], "reverse": none}
+
+
+def _mesh_errors(summary: dict[str, Any], stream: str) -> dict[str, Any]:
+    """Half-widths of some quantities, and the tree of the finest mesh."""
+    widths = {"outlet_temperature_K": 0.05, "pressure_drop_Pa": 12.0, "hydrostatic_Pa": 0.0}
+    order = {"outlet_temperature_K": 1.9, "pressure_drop_Pa": 2.0, "hydrostatic_Pa": None}
+    rule = {"outlet_temperature_K": "extrapolated", "pressure_drop_Pa": "extrapolated", "hydrostatic_Pa": "exact"}
+    return {
+        "finest_mesh": {"stream": {stream: summary["stream"][stream] | {"outlet_temperature_K": 329.41}}},
+        "numerical_uncertainty": {
+            "stream": {stream: widths},
+            "observed_order": {"stream": {stream: order}},
+            "rule": {"stream": {stream: rule}},
+        },
+    }
 
 
 def _rise(z: np.ndarray) -> np.ndarray:

@@ -12,6 +12,7 @@ FILES = {
     "summary.json",
     "case.toml",
     "axial-syrup.csv",
+    "axial-syrup.half-width.csv",
     "outside.csv",
     "radial.csv",
     "fields.vtr",
@@ -35,9 +36,20 @@ def test_everything_is_written_and_read_back(result, tmp_path):
     assert list(stored.axial["syrup"]) == list(result.axial["syrup"])
     for name, column in result.axial["syrup"].items():
         assert np.array_equal(stored.axial["syrup"][name], column, equal_nan=True)
+    assert list(stored.axial_half_width["syrup"]) == list(result.axial["syrup"])
+    for name, column in result.axial_half_width["syrup"].items():
+        assert np.array_equal(stored.axial_half_width["syrup"][name], column, equal_nan=True)
+    assert stored.summary["numerical_uncertainty"] == result.summary["numerical_uncertainty"]
+    assert stored.summary["finest_mesh"]["stream"]["syrup"]["outlet_temperature_K"] == 329.41
     for name, value in result.fields.items():
         assert np.array_equal(stored.fields[name], value), name
     assert stored.radial["layer"] == result.radial["layer"]
+
+
+def test_without_mesh_errors_there_is_no_file_of_them(tmp_path):
+    folder.write(made_up(converged=False), tmp_path / "r")
+    assert {path.name for path in (tmp_path / "r").iterdir()} == FILES - {"axial-syrup.half-width.csv"}
+    assert folder.read(tmp_path / "r").axial_half_width == {}
 
 
 def test_summary_holds_null_for_what_is_not_finite(result):

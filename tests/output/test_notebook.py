@@ -7,6 +7,7 @@ def test_the_headline_is_a_table():
     assert "<table>" in text
     assert "outlet temperature (bulk)" in text and "56.20 degC" in text
     assert "the flow still changes at the outlet" in text
+    assert "±0.05 (mesh)" in text
     assert "NOT CONVERGED" not in text
 
 

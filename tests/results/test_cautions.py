@@ -79,16 +79,9 @@ def solved(text: str = TUBE):
     case = load(text)
     tube = layout(case)
     solution = solve_on(case, family(case, tube).grid())
-    curves = {
-        name: axial.stream_curves(axial.stream_view(case, solution, name)) for name in solution.grid.streams
-    }
-    return (
-        case,
-        tube,
-        {"converged": solution.converged} | summary.summary(case, tube, solution),
-        curves,
-        solution,
-    )
+    views = axial.stream_views(case, solution)
+    tree = {"converged": solution.converged} | summary.summary(case, tube, solution, views)
+    return case, tube, tree, {name: view.curves for name, view in views.items()}, solution
 
 
 def after(text: str = TUBE):

@@ -58,7 +58,7 @@ def climb(case: Case, coarsest: int, finest: int) -> list[Result]:
         solution = solve_on(case, meshes.grid(level), solution, STOP_BELOW)
         if not solution.residual < 1e-8:
             raise RuntimeError(f"level {level} of {case.title}: {solution.stop_reason} at {solution.residual:.1e}")
-        results.append(make_result(case, place, solution, [], solution.seconds, "order"))
+        results.append(make_result(case, place, [solution], [], solution.seconds, "order"))
     return results
 
 

@@ -1,0 +1,258 @@
+"""Mesh errors of sequences whose limit is known, and of trees and curves made of them."""
+
+import csv
+import math
+from collections.abc import Callable
+from pathlib import Path
+
+import numpy as np
+import pytest
+
+from axicfd.results import uncertainty
+from axicfd.results.uncertainty import curve_half_widths, estimate, estimate_tree, grid_convergence_index
+
+EXAMPLES = Path(__file__).parents[2] / "validation" / "reference" / "gci_worked_examples.csv"
+
+
+def examples() -> list[dict[str, float]]:
+    lines = EXAMPLES.read_text(encoding="utf-8").splitlines()
+    rows = csv.DictReader(line for line in lines if not line.startswith("#"))
+    return [{key: float(value) for key, value in row.items()} for row in rows]
+
+
+@pytest.mark.parametrize("row", examples(), ids=lambda row: f"{row['phi1']:g}")
+def test_worked_examples_with_unequal_refinement(row):
+    """Celik et al. 2008, J. Fluids Eng. 130, 078001; h = N^(-1/2) of N cells."""
+    ratios = math.sqrt(row["cells1"] / row["cells2"]), math.sqrt(row["cells2"] / row["cells3"])
+    assert ratios == pytest.approx((row["r21"], row["r32"]), abs=5e-5)
+    found = grid_convergence_index((row["phi1"], row["phi2"], row["phi3"]), ratios)
+    assert found["order"] == pytest.approx(row["p"], abs=5e-5)
+    assert found["extrapolated"] == pytest.approx(row["phi_ext21"], abs=5e-5)
+    assert found["relative_error"] == pytest.approx(row["e_a21"], abs=5e-5)
+    assert found["extrapolated_error"] == pytest.approx(row["e_ext21"], abs=5e-5)
+    assert found["index"] == pytest.approx(row["GCI_fine21"], abs=5e-5)
+
+
+def test_equal_halving_needs_no_iteration():
+    found = grid_convergence_index((1.01, 1.04, 1.16), (2.0, 2.0))
+    assert found["order"] == pytest.approx(2.0)
+    assert found["extrapolated"] == pytest.approx(1.0)
+
+
+# --------------------------------------------------------------- how often the limit lies inside
+
+SAMPLES = 4000
+LIMIT = 1.0
+Errors = Callable[[np.ndarray, Callable[..., float], np.random.Generator], np.ndarray]
+
+
+def opposite(h, u, _):
+    """Errors of both directions nearly cancel: neither the order nor the sign of the sum says anything."""
+    along_r, along_z = u(0.5, 1.0) * (1.0 + u(-1, 1) * h**2), u(0.5, 1.0) * (1.0 + u(-1, 1) * h**2)
+    return h**2 * (along_r - along_z)
+
+
+# name -> (error at cell sizes h, whether the place is known to be singular)
+SEQUENCES: dict[str, tuple[Errors, bool]] = {
+    "h2 + h4": (lambda h, u, _: h**2 * (1.0 + u(-1, 1) * h**2), False),
+    "h2 + h3 + h4": (lambda h, u, _: h**2 * (1.0 + u(-1, 1) * h + u(-1, 1) * h**2), False),
+    "h2 + a little h": (lambda h, u, _: h**2 + u(-0.1, 0.1) * h, False),
+    "corner": (lambda h, u, _: u(0.2, 1.0) * h + u(-1, 1) * h**2, True),
+    "corner nobody told of": (lambda h, u, _: u(0.2, 1.0) * h + u(-1, 1) * h**2, False),
+    "r and z of opposite sign": (opposite, False),
+    "2 % noise": (
+        lambda h, u, random: h**2 * (1.0 + u(-1, 1) * h**2) * (1.0 + 0.02 * random.standard_normal(len(h))),
+        False,
+    ),
+}
+
+
+def sampled(name: str, meshes: int) -> np.ndarray:
+    """(SAMPLES, 3) half-width, error of the reported value, error of the finest mesh; coarse meshes included."""
+    errors, singular = SEQUENCES[name]
+    random = np.random.default_rng(20)
+    rows = []
+    for _ in range(SAMPLES):
+        h = random.uniform(0.5, 1.0) * 0.5 ** np.arange(meshes)
+        values = LIMIT + errors(h, random.uniform, random)
+        found = estimate([float(v) for v in values], singular)
+        rows.append((found.half_width, abs(found.value - LIMIT), abs(values[-1] - LIMIT)))
+    return np.array(rows)
+
+
+@pytest.mark.parametrize("meshes", [3, 4])
+@pytest.mark.parametrize("name", SEQUENCES)
+def test_limits_lie_inside(name, meshes):
+    half_width, error, _ = sampled(name, meshes).T
+    assert np.mean(error <= half_width) >= 0.95
+
+
+def test_extrapolation_pays_and_bars_are_not_fat():
+    """On four meshes of a smooth sequence the printed value is far nearer to the limit than that of the finest mesh,
+    and the bar stays below the error of the finest mesh (here a twentieth of the bar of one mesh less)."""
+    half_width, error, finest = sampled("h2 + h4", 4).T
+    assert np.median(error / finest) < 0.05
+    assert np.median(half_width / finest) < 0.75
+
+
+# --------------------------------------------------------------------------------- single sequences
+
+
+def test_second_order_is_extrapolated_with_fixed_weights():
+    found = estimate([LIMIT + 0.17, LIMIT + 0.04, LIMIT + 0.01])
+    assert found.rule == uncertainty.EXTRAPOLATED
+    assert found.value == pytest.approx((4.0 * 1.01 - 1.04) / 3.0, rel=1e-14)
+    assert found.order == pytest.approx(math.log2(0.13 / 0.03))
+
+
+def test_exactly_second_order_keeps_a_tenth_of_its_correction():
+    found = estimate([1.16, 1.04, 1.01])
+    assert found.value == pytest.approx(1.0, abs=1e-14)
+    assert found.half_width == pytest.approx(1.25 * 0.1 * 0.01)
+
+
+def test_a_lucky_change_does_not_make_a_bar_vanish():
+    """What one mesh less would have said still counts a twentieth."""
+    lucky = [1.5, 1.08, 1.02, 1.005]  # exactly second order at last, not before
+    less = estimate(lucky[:-1]).half_width
+    assert estimate(lucky).half_width == pytest.approx(0.05 * less)
+    assert estimate(lucky[1:]).half_width == pytest.approx(1.25 * 0.1 * 0.005)
+    assert 0.05 * less > 1.25 * 0.1 * 0.005
+
+
+@pytest.mark.parametrize(
+    "order, factor",
+    [(1.6, 3.0 / (2.0**1.6 - 1.0)), (3.0, 3.0 / 3.0), (0.5, 3.0)],
+)
+def test_other_orders_get_the_index_of_the_finest_value(order, factor):
+    """Roache's index with the order clipped to 1 .. 2, or what a mixture of first and second order would be off."""
+    h = 0.5 ** np.arange(3)
+    coarse, medium, fine = (float(v) for v in LIMIT + h**order)
+    found = estimate([coarse, medium, fine])
+    assert (found.rule, found.value) == (uncertainty.FINEST, fine)
+    assert found.order == pytest.approx(order)
+    mixed = 1.25 * abs(-5.0 * fine + 6.0 * medium - coarse) / 3.0
+    assert found.half_width == pytest.approx(max(factor * abs(fine - medium), mixed))
+
+
+def test_first_order_of_a_singular_place():
+    found = estimate([1.4, 1.2, 1.1], singular=True)
+    assert (found.rule, found.value) == (uncertainty.SINGULAR, 1.1)
+    assert found.half_width == pytest.approx(1.25 * 0.1)
+
+
+def test_oscillation_is_said():
+    found = estimate([1.0, 1.2, 1.1])
+    assert (found.rule, found.value, found.order) == (uncertainty.OSCILLATES, 1.1, None)
+    assert found.half_width == pytest.approx(3.0 * 0.1)
+
+
+@pytest.mark.parametrize("values", [[2.0, 2.0, 2.0], [0.0, 0.0, 0.0], [300.0, 300.0 + 1e-9, 300.0]])
+def test_round_off_is_no_mesh_error(values):
+    found = estimate(values)
+    assert (found.rule, found.half_width, found.value) == (uncertainty.EXACT, 0.0, values[-1])
+
+
+@pytest.mark.parametrize("place", [0, 1, 2])
+def test_without_three_values_there_is_no_bar(place):
+    values = [1.4, 1.2, 1.1]
+    values[place] = math.nan
+    found = estimate(values)
+    assert found.half_width is None and found.order is None
+    assert found.value == 1.1 or place == 2
+
+
+def test_a_missing_coarsest_value_of_four_costs_only_the_memory():
+    assert estimate([math.nan, 1.16, 1.04, 1.01]).value == pytest.approx(1.0)
+
+
+# ------------------------------------------------------------------------------------- trees
+
+
+def leaves(temperature: float, place: float, entry: float | None) -> dict:
+    return {
+        "stream": {
+            "oil": {
+                "outlet_temperature_K": temperature,
+                "hottest_wetted_wall_z_m": place,
+                "thermal_entry_length_m": entry,
+                "is_long": True,
+                "why": {"thermal_entry_length_m": "too short"},
+            }
+        },
+        "sensor": {},
+    }
+
+
+@pytest.fixture
+def walked():
+    trees = [leaves(300.16, 0.30, None), leaves(300.04, 0.32, 0.5), leaves(300.01, 0.325, None)]
+    return estimate_tree(trees, lambda z: 0.01 * z)
+
+
+def test_numbers_of_a_tree_are_extrapolated_in_place(walked):
+    values, widths, how = walked
+    oil = values["stream"]["oil"]
+    assert oil["outlet_temperature_K"] == pytest.approx(300.0)
+    assert widths["stream"]["oil"]["outlet_temperature_K"] == pytest.approx(1.25 * 0.1 * 0.01)
+    assert how["stream"]["oil"]["outlet_temperature_K"] == {
+        "observed_order": pytest.approx(2.0),
+        "rule": uncertainty.EXTRAPOLATED,
+    }
+    assert list(oil) == list(leaves(0.0, 0.0, None)["stream"]["oil"])
+
+
+def test_what_has_no_value_gets_no_bar(walked):
+    values, widths, how = walked
+    assert values["stream"]["oil"]["thermal_entry_length_m"] is None
+    assert values["stream"]["oil"]["is_long"] is True
+    assert values["stream"]["oil"]["why"] == {"thermal_entry_length_m": "too short"}
+    assert set(widths["stream"]["oil"]) == {"outlet_temperature_K", "hottest_wetted_wall_z_m"}
+    assert set(how["stream"]["oil"]) == set(widths["stream"]["oil"])
+    assert values["sensor"] == {} and "sensor" not in widths
+
+
+def test_places_are_known_to_a_cell_or_to_their_last_move(walked):
+    values, widths, how = walked
+    assert values["stream"]["oil"]["hottest_wetted_wall_z_m"] == 0.325
+    assert widths["stream"]["oil"]["hottest_wetted_wall_z_m"] == pytest.approx(0.005)
+    assert how["stream"]["oil"]["hottest_wetted_wall_z_m"] == {"observed_order": None, "rule": uncertainty.SPACING}
+    still = [leaves(300.0, 0.3, None)] * 3
+    _, widths, _ = estimate_tree(still, lambda z: 0.01 * z)
+    assert widths["stream"]["oil"]["hottest_wetted_wall_z_m"] == pytest.approx(0.003)
+
+
+# ------------------------------------------------------------------------------------ curves
+
+
+def halved(faces: np.ndarray) -> np.ndarray:
+    return np.sort(np.concatenate([faces, 0.5 * (faces[1:] + faces[:-1])]))
+
+
+def nested(meshes: int = 3) -> list[np.ndarray]:
+    z = [np.array([0.0, 0.1, 0.3, 0.6, 1.0])]
+    while len(z) < meshes:
+        z.append(halved(z[-1]))
+    return z
+
+
+def test_bars_of_a_curve_hold_its_limit():
+    z = nested()
+    exact = [np.sin(3.0 * x) for x in z]
+    columns = [e + 0.25**k * (0.1 + x**2) for k, (x, e) in enumerate(zip(z, exact, strict=True))]
+    widths = curve_half_widths(z, columns)
+    assert widths.shape == z[-1].shape
+    error = np.abs(columns[-1] - exact[-1])
+    shared = np.isin(z[-1], z[0])
+    assert np.all(error[shared] <= widths[shared])
+    assert np.all(error <= 1.2 * widths)  # in between the half-width is interpolated
+    assert np.all(widths[shared] < 1.2 * error[shared])
+
+
+def test_a_curve_without_value_has_no_bar():
+    z = nested()
+    columns = [1.0 + 0.25**k + np.zeros_like(x) for k, x in enumerate(z)]
+    columns[0][0] = columns[1][0] = columns[2][0] = np.nan
+    widths = curve_half_widths(z, columns)
+    assert np.isnan(widths[0]) and np.isfinite(widths[1:]).all()
+    assert np.isnan(curve_half_widths(z, [np.full_like(x, np.nan) for x in z])).all()
