@@ -76,6 +76,60 @@ def test_axial_curves_have_the_promised_columns(result):
     assert {len(column) for column in result.axial["water"].values()} == {result.solution.grid.nz + 1}
 
 
+def pairs(values, widths, path=""):
+    """(dotted path, value, half-width or None) of all numbers of a tree."""
+    for key, value in values.items():
+        width = (widths or {}).get(key)
+        if isinstance(value, dict):
+            yield from pairs(value, width, f"{path}{key}.")
+        elif key != "why" and isinstance(value, int | float):
+            yield f"{path}{key}", value, width
+
+
+PARTS = "stream", "layer", "section", "sensor"
+
+
+def test_every_headline_quantity_has_a_mesh_error(result):
+    bars = result.summary["numerical_uncertainty"]
+    found = list(pairs({part: result.summary[part] for part in PARTS}, bars))
+    assert len(found) > 25
+    for path, value, width in found:
+        assert width is not None and width >= 0.0, path
+    rules = bars["rule"]["stream"]["water"]
+    assert rules["pressure_drop_Pa"] == "extrapolated" and rules["mass_flow_kg_s"] == "exact"
+    assert bars["observed_order"]["stream"]["water"]["pressure_drop_Pa"] == pytest.approx(2.0, abs=0.3)
+
+
+def test_printed_values_stay_within_their_mesh_error_of_a_finer_solve(result):
+    """The finer solve's own extrapolated values are some sixteen times nearer to the limit."""
+    finer = solve(result.case, halvings=1)
+    widths = result.summary["numerical_uncertainty"]
+    missed = [
+        path
+        for path, value, width in pairs({part: result.summary[part] for part in PARTS}, widths)
+        if abs(value - finer[path]) > width + 1e-9 * abs(value)
+    ]
+    assert missed == []
+
+
+def test_curves_and_fields_are_those_of_the_finest_mesh(result):
+    finest = result.summary["finest_mesh"]["stream"]["water"]
+    assert result.axial["water"]["bulk_temperature_K"][-1] == finest["outlet_temperature_K"]
+    assert finest["pressure_drop_Pa"] != result["stream.water.pressure_drop_Pa"]
+
+
+def test_curves_have_half_widths_in_the_same_columns(result):
+    curves, widths = result.axial["water"], result.axial_half_width["water"]
+    assert list(widths) == list(curves)
+    np.testing.assert_array_equal(widths["z_m"], curves["z_m"])
+    assert np.isnan(widths["reverse"]).all()
+    for name in "bulk_temperature_K", "pressure_Pa", "axis_velocity_m_s":
+        assert np.all(widths[name][1:] >= 0.0)
+        assert widths[name][1:].max() < 0.05 * np.ptp(curves[name][1:]), name
+    with pytest.raises(ValueError):
+        widths["pressure_Pa"][0] = 1.0
+
+
 def test_one_halving_more_changes_little_and_quadruples_the_cells(result):
     finer = solve(result.case, halvings=1)
     assert finer.summary["cells"] == 4 * result.summary["cells"]
@@ -122,5 +176,7 @@ def test_without_convergence_the_fields_are_kept_and_marked(monkeypatch):
     found = solve(case)
     assert not found.converged and found.summary["converged"] is False
     assert found.summary["stop_reason"] == "no further progress"
+    assert "numerical_uncertainty" not in found.summary and "finest_mesh" not in found.summary
+    assert found.axial_half_width == {}
     assert np.isfinite(found.fields["T"]).all()
     assert "not converged" in repr(found)
