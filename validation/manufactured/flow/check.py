@@ -12,7 +12,19 @@ from axicfd.results import lines
 from axicfd.solver.cycle import FlowCycle
 from axicfd.solver.flow import Flow, flow_mesh
 from validation.common import Row
-from validation.manufactured.exact import Array, Errors, by_r, by_z, errors, inside, net_outflow, plot, rows, through_axial, through_radial
+from validation.manufactured.exact import (
+    Array,
+    Errors,
+    by_r,
+    by_z,
+    errors,
+    inside,
+    net_outflow,
+    plot,
+    rows,
+    through_axial,
+    through_radial,
+)
 
 RADIUS, DENSITY, SPEED = 1.0, 1.0, 1.0
 JOINT = 1.5  # m, where cells along z grow threefold at once
