@@ -86,8 +86,8 @@ def reattachment(flow, h):
 def test_a_sudden_expansion_reattaches_where_it_should():
     """1:2 at Re 50 of the small tube: 4.412 step heights.
 
-    Independent computation, not published (Taylor-Hood finite elements on three meshes); near L/h = 0.0876 Re of Macagno &
-    Hung 1967 (J. Fluid Mech. 28, 43) and Hammad, Otugen & Arik 1999 (Exp. Fluids 26, 266), constant from memory.
+    Independent computation, not published (Taylor-Hood finite elements on three meshes); near L/h = 0.0876 Re of
+    Macagno & Hung 1967 (J. Fluid Mech. 28, 43) and Hammad, Otugen & Arik 1999 (Exp. Fluids 26, 266), from memory.
     """
     flow, h = expansion(20, 24, 96)
     assert cycles_needed(flow) <= 16

@@ -1,4 +1,4 @@
-"""What manufactured solutions share: derivatives and integrals of exact fields, a row of nested meshes, errors and orders.
+"""What manufactured solutions share: derivatives and integrals of exact fields, errors and orders.
 
 A field is chosen, put into the equations, and what they lack is given to the solver as a source; the solver then has to
 find the field. Sources are integrals over control volumes: the exact fluxes through their faces by Gauss quadrature,

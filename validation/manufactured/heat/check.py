@@ -17,8 +17,18 @@ from axicfd.results import lines
 from axicfd.solver.energy import Energy
 from validation.common import Row
 from validation.manufactured.exact import (
-    Array, Errors, Field, by_r, by_z, errors, net_outflow, plot, rows, through_axial, through_radial,
-)  # fmt: skip
+    Array,
+    Errors,
+    Field,
+    by_r,
+    by_z,
+    errors,
+    net_outflow,
+    plot,
+    rows,
+    through_axial,
+    through_radial,
+)
 from validation.manufactured.flow import check as flow
 
 HERE = Path(__file__).parent
@@ -31,8 +41,9 @@ MESHES = 16, 32, 64, 128
 SOLVED = 1e-11
 AWAY = 0.5 * R1
 BESIDE_JUMP = (
-    "first order in the few stations beside the jump: the face there is not midway between nodes, so what is conducted along z "
-    "is off by k T_zz (dz_2 - dz_1) / 4; chosen meshes have no jump (ratio 0.99 to 1.01 at the joints of the shipped cases)"
+    "first order in the few stations beside the jump: the face there is not midway between nodes, so what is "
+    "conducted along z is off by k T_zz (dz_2 - dz_1) / 4; chosen meshes have no jump (ratio 0.99 to 1.01 at the "
+    "joints of the shipped cases)"
 )
 HELD_CORNER = "two held surfaces meet in a corner, where the heat of the half cells at both is of first order"
 HELD_FLUX = "flux at the held surface, all of it"
@@ -274,7 +285,7 @@ def set_up(tube: Tube, cells: int) -> Energy:
         faces = r[here.start : here.stop + 1]
         energy.generated[:, here] = net_outflow(through_axial(to_z, z, faces), through_radial(to_r, z, faces))
         # the film at the first end lets in what is conducted away from it
-        ambient = through_axial(lambda a, b, t=t, q=to_z: np.real(t(a, b)) + q(a, b) / tube.film, z[:1], faces)
+        ambient = through_axial(t, z[:1], faces) + through_axial(to_z, z[:1], faces) / tube.film
         first.temperature[here] = ambient[0] / area[here]
         last.temperature[here] = through_axial(t, z[-1:], faces)[0] / area[here]
     surface, at, outside = r[-1:], grid.area_r[:, -1], energy.surroundings.outside
