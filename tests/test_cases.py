@@ -65,9 +65,7 @@ def test_no_temperature_beyond_what_causes_it(name, coarse):
     outsides = [s.outside for s in case.section]
     around = [next(iter(case.stream.values())).inlet_temperature]
     around += [value for o in outsides for value in (o.ambient, o.temperature) if value is not None]
-    around += [
-        end.temperature for end in (*case.ends.first.values(), *case.ends.last.values()) if end.temperature
-    ]
+    around += [end.temperature for end in (*case.ends.first.values(), *case.ends.last.values()) if end.temperature]
     t = temperatures(result)
     span = float(np.ptp(t))
     assert t.min() > min(around) - 1e-4 * span

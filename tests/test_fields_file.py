@@ -95,6 +95,7 @@ def test_energy(stored):
         surroundings=np.full(nz, band.outside.ambient - t_in),
         film=[1 / band.outside.film_coefficient if i else None for i in inside],
         outer=np.full(nz, nr),
+        capacity=float(fluid.specific_heat(t_in)),
     )  # fmt: skip
     left = np.abs(plain.residual()).sum()
     assert left / band.outside.heat < 1e-8

@@ -75,9 +75,7 @@ def curve(path: Path, z: str, value: str) -> list[tuple[float, float]]:
 
 def integral(points: list[tuple[float, float]]) -> float:
     """By the trapezoidal rule."""
-    return math.fsum(
-        0.5 * (a[1] + b[1]) * (b[0] - a[0]) for a, b in zip(points[:-1], points[1:], strict=True)
-    )
+    return math.fsum(0.5 * (a[1] + b[1]) * (b[0] - a[0]) for a, b in zip(points[:-1], points[1:], strict=True))
 
 
 if __name__ == "__main__":

@@ -69,6 +69,8 @@ def z_scheme(mz, z, zc, upwind_only, c):
 def face_temperatures(t, c, g, inflow_first, inflow_last, mz, tz, tr):
     """Convected temperatures of axial faces tz (nz + 1, nr) and radial faces tr (nz, nr + 1).
 
+    A weight of a cell outside the grid counts for what enters through that plane.
+
     g                         : (nr + 1,) weight of the outer cell at a radial face
     inflow_first, inflow_last : (nr,) temperatures with which fluid enters through the first and the last plane
     """
@@ -78,7 +80,13 @@ def face_temperatures(t, c, g, inflow_first, inflow_last, mz, tz, tr):
             s = 0.0
             for k in range(4):
                 if c[i, j, k] != 0.0:
-                    s += c[i, j, k] * t[i - 2 + k, j]
+                    cell = i - 2 + k
+                    if cell < 0:
+                        s += c[i, j, k] * inflow_first[j]
+                    elif cell >= nz:
+                        s += c[i, j, k] * inflow_last[j]
+                    else:
+                        s += c[i, j, k] * t[cell, j]
             tz[i, j] = s
     for j in range(nr):
         if mz[0, j] > 0.0:
@@ -165,7 +173,7 @@ def stencil(gz, gr, wz, wr, c, g, loss, empty, rows, cols, vals):
                 a[2] += wr[i, j + 1] * (1.0 - g[j + 1])
                 a[6] += wr[i, j + 1] * g[j + 1]
             for k in range(7):
-                if a[k] != 0.0:
+                if a[k] != 0.0 and (k > 4 or 0 <= i + k - 2 < nz):
                     rows[n] = here
                     cols[n] = here + shift[k]
                     vals[n] = a[k]

@@ -47,6 +47,7 @@ class Energy:
         self.mz, self.mr = np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1))
         self.volume_heat = np.zeros(grid.shape)
         self._weights = np.zeros((nz + 1, nr, 4))
+        self._behind_planes = np.zeros((2, nr, 4))
         drc = np.diff(grid.rc)
         self._g = np.zeros(nr + 1)
         self._g[1:-1] = (grid.r[1:-1] - grid.rc[:-1]) / drc
@@ -67,11 +68,34 @@ class Energy:
         """Take mass fluxes; the scheme's weights follow their directions."""
         self.mz, self.mr = mz, mr
         kernel.z_scheme(mz, self.grid.z, self.grid.zc, self._upwind, self._weights)
+        self._behind_planes = self._weights[[1, -2]].copy()
+
+    def _bound_first_faces(self, gz: Array) -> None:
+        """Weights of the first face behind an inlet plane, for conductances gz.
+
+        There is no second cell upstream. A central difference alone lets a hot cell beyond draw the first one below the
+        inlet temperature once convection is more than twice the conduction through the face, so only that share of it is
+        kept; the rest is linear upwind from the plane, half a cell upstream. There the fluid is warmer than what enters by
+        what is conducted upstream: m cp (T_plane - T_in) = k A dT/dz.
+        """
+        if self.grid.nz == 1:
+            return
+        forward, backward = (self.mz[0] > 0.0) & (self.mz[1] > 0.0), (self.mz[-1] < 0.0) & (self.mz[-2] < 0.0)
+        capacity = self._cp(np.zeros(self.grid.nr))
+        for i, base, inward, near, beyond, plane in ((1, 0, forward, 1, 2, 0), (-2, 1, backward, 2, 1, 3)):
+            ratio = 2.0 * gz[i] / np.maximum(np.abs(self.mz[i]) * capacity, 1e-300)
+            central, upwind = np.minimum(1.0, ratio), 1.0 - np.minimum(1.0, ratio)
+            entering = 1.0 / (1.0 + ratio)  # T_plane = entering T_in + (1 - entering) T of the first cell
+            c, plain = self._weights[i], self._behind_planes[base]
+            c[:, near] = np.where(inward, central * plain[:, near] + upwind * (1.0 + entering), c[:, near])
+            c[:, beyond] = np.where(inward, central * plain[:, beyond], c[:, beyond])
+            c[:, plane] = np.where(inward, -upwind * entering, c[:, plane])
 
     def residual(self) -> Array:
         """(nz, nr) [W] what each cell gains; refreshes every heat flow of the object."""
         grid, t = self.grid, self.t
         c = self._conduction = self.conductors.conduction(t, self.surroundings.outside)
+        self._bound_first_faces(c.gz)
         kernel.face_temperatures(t, self._weights, self._g, *self._inflow, self.mz, self.tz, self.tr)
         np.multiply(self.mz, self._h(self.tz), out=self.hz)
         np.multiply(self.mr, self._h(self.tr), out=self.hr)

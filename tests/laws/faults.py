@@ -131,8 +131,8 @@ FAULTS = (
     Fault(
         "upwind of first order in the energy equation",
         KERNEL_ENERGY,
-        "s += c[i, j, k] * t[i - 2 + k, j]",
-        "s += (1.0 if mz[i, j] != 0.0 else c[i, j, k]) * (k == (1 if mz[i, j] >= 0.0 else 2)) * t[i - 2 + k, j]",
+        "s += c[i, j, k] * t[cell, j]",
+        "s += (1.0 if mz[i, j] != 0.0 else c[i, j, k]) * (k == (1 if mz[i, j] >= 0.0 else 2)) * t[cell, j]",
         f"{LUMPED}::test_second_order_along_z",
     ),
     Fault(

@@ -30,6 +30,9 @@ class PlainEnergy:
     h                        : enthalpy [J/kg] of a temperature
     inflow_first, inflow_last: (nr,) [K] of fluid that enters through the first and last plane
     upwind                   : axial faces with linear upwind in place of Fromm's scheme
+    capacity                 : [J/(kg K)] of the fluid: the first face behind an inlet takes the share of a central
+                               difference that conduction bears, min(1, 2 k A / (dz m cp)), and for the rest
+                               extrapolates from the plane; None takes the central difference alone
     flux, surroundings, film : (nz,) [W/m2], [K], [m2 K/W or None] of the outside
     outer                    : (nz,) number of the radial face that is the outer surface
     """
@@ -53,6 +56,7 @@ class PlainEnergy:
     surroundings: object = None
     film: object = None
     outer: object = None
+    capacity: object = None
 
     def __post_init__(self):
         self.nz, self.nr = len(self.z) - 1, len(self.r) - 1
@@ -140,6 +144,15 @@ class PlainEnergy:
         if has_down:
             share = (x - self.zc[up]) / (self.zc[down] - self.zc[up])
             central = near + share * (self.t[down, j] - near)
+            if not has_far and self.capacity is not None:
+                per_kelvin = self.along(f, j) / (self.t[f - 1, j] - self.t[f, j])
+                ratio = 2.0 * per_kelvin / (abs(m) * self.capacity)
+                # m cp (T_plane - T_in) = k A (T - T_plane) / (dz / 2)
+                entering = (self.inflow_first if forward else self.inflow_last)[j]
+                at_plane = (entering + ratio * near) / (1.0 + ratio)
+                slope = (near - at_plane) / (self.zc[up] - (self.z[0] if forward else self.z[-1]))
+                borne = min(1.0, ratio)
+                return m * self.h(borne * central + (1.0 - borne) * (near + slope * (x - self.zc[up])))
         if not has_down or (has_far and f in self.upwind):
             return m * self.h(extrapolated)
         return m * self.h((central + extrapolated) / 2 if has_far else central)

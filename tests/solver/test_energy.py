@@ -250,6 +250,7 @@ def plain_of(case, solution):
         surroundings,
         film,
         grid.outer,
+        capacity,
     )
 
 

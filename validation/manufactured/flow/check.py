@@ -12,7 +12,19 @@ from axicfd.results import lines
 from axicfd.solver.cycle import FlowCycle
 from axicfd.solver.flow import Flow, flow_mesh
 from validation.common import Row
-from validation.manufactured.exact import Array, Errors, by_r, by_z, errors, inside, net_outflow, plot, rows, through_axial, through_radial
+from validation.manufactured.exact import (
+    Array,
+    Errors,
+    by_r,
+    by_z,
+    errors,
+    inside,
+    net_outflow,
+    plot,
+    rows,
+    through_axial,
+    through_radial,
+)
 
 RADIUS, DENSITY, SPEED = 1.0, 1.0, 1.0
 JOINT = 1.5  # m, where cells along z grow threefold at once
@@ -104,8 +116,8 @@ def solved(tube: Tube, cells: int) -> Flow:
     zc, rc = 0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1])
     mesh = flow_mesh(z, r, np.ones((len(zc), len(rc))))
     mu = Viscosity(*(np.ascontiguousarray(tube.mu(a[:, None], b[None, :])) for a, b in ((zc, rc), (z, r), (zc, r))))
-    # like a developed inlet: the values between which differences give the exact slopes, so that the wall shear begins right
-    steps = by_r(tube.u)(0.0, r[1:]) * mesh.drc[1:]
+    # like a developed inlet: values whose differences give the exact slopes, so that the wall shear begins right
+    steps = by_r(tube.u)(np.zeros(cells), r[1:]) * mesh.drc[1:]
     flow = Flow(mesh, DENSITY, -np.cumsum(steps[::-1])[::-1], mu)
     flow.fu[...], flow.fv[...] = sources(tube, z, r)
     cycles = FlowCycle(flow)

@@ -17,8 +17,18 @@ from axicfd.results import lines
 from axicfd.solver.energy import Energy
 from validation.common import Row
 from validation.manufactured.exact import (
-    Array, Errors, Field, by_r, by_z, errors, net_outflow, plot, rows, through_axial, through_radial,
-)  # fmt: skip
+    Array,
+    Errors,
+    Field,
+    by_r,
+    by_z,
+    errors,
+    net_outflow,
+    plot,
+    rows,
+    through_axial,
+    through_radial,
+)
 from validation.manufactured.flow import check as flow
 
 HERE = Path(__file__).parent
@@ -30,8 +40,20 @@ SWING = 20.0  # K
 MESHES = 16, 32, 64, 128
 SOLVED = 1e-11
 AWAY = 0.5 * R1
-AWAY_FLUX = "flux at the held surface, away from joint and ends"
+BESIDE_JUMP = (
+    "first order in the few stations beside the jump: the face there is not midway between nodes, so what is "
+    "conducted along z is off by k T_zz (dz_2 - dz_1) / 4; chosen meshes have no jump (ratio 0.99 to 1.01 at the "
+    "joints of the shipped cases)"
+)
+HELD_CORNER = "two held surfaces meet in a corner, where the heat of the half cells at both is of first order"
 HELD_FLUX = "flux at the held surface, all of it"
+HELD_END = "heat through the shell's held end"
+BULK = "bulk T, all along"
+SHOWN = {
+    HELD_FLUX: {"mean": BESIDE_JUMP, "largest": BESIDE_JUMP},
+    BULK: {"largest": BESIDE_JUMP},
+    HELD_END: {"mean": HELD_CORNER, "largest": HELD_CORNER},
+}
 
 
 @dataclass(frozen=True)
@@ -247,7 +269,9 @@ def set_up(tube: Tube, cells: int) -> Energy:
 
     t_in = case.stream["oil"].inlet_temperature
     energy = Energy(case, grid, t_in, tube.enthalpy, tube.capacity, inflow, False)
-    psi = 2.0 * np.pi * DENSITY * tube.speed * R1**2 * EXACT_FLOW.stream_function(z[:, None] / R1, r[None, : n + 1] / R1)
+    psi = (
+        2.0 * np.pi * DENSITY * tube.speed * R1**2 * EXACT_FLOW.stream_function(z[:, None] / R1, r[None, : n + 1] / R1)
+    )
     mz, mr = np.zeros((grid.nz + 1, grid.nr)), np.zeros((grid.nz, grid.nr + 1))
     mz[:, :n], mr[:, : n + 1] = np.diff(psi, axis=1), -np.diff(psi, axis=0)
     energy.set_flow(mz, mr)
@@ -261,7 +285,7 @@ def set_up(tube: Tube, cells: int) -> Energy:
         faces = r[here.start : here.stop + 1]
         energy.generated[:, here] = net_outflow(through_axial(to_z, z, faces), through_radial(to_r, z, faces))
         # the film at the first end lets in what is conducted away from it
-        ambient = through_axial(lambda a, b, t=t, q=to_z: np.real(t(a, b)) + q(a, b) / tube.film, z[:1], faces)
+        ambient = through_axial(t, z[:1], faces) + through_axial(to_z, z[:1], faces) / tube.film
         first.temperature[here] = ambient[0] / area[here]
         last.temperature[here] = through_axial(t, z[-1:], faces)[0] / area[here]
     surface, at, outside = r[-1:], grid.area_r[:, -1], energy.surroundings.outside
@@ -284,6 +308,11 @@ def solved(tube: Tube, cells: int) -> Energy:
             return energy
         error = energy.step()
     raise RuntimeError(f"{cells} cells: residual {error:.1e}")
+
+
+def away(z: Array) -> Array:
+    """Where z is at least AWAY from the joint and both ends."""
+    return np.min(np.abs(z[:, None] - [0.0, JOINT, LENGTH]), axis=1) > AWAY
 
 
 @lru_cache
@@ -309,7 +338,9 @@ def quantities(name: str) -> list[Errors]:
             lambda a, b: DENSITY * tube.u(a, b) * tube.enthalpy(tube.t_stream(a, b)), grid.z, grid.r[: n + 1]
         ).sum(axis=1)
         bulk = tube.of_enthalpy(energy.hz[:, :n].sum(axis=1) / total)
-        add("bulk T", bulk[1:], tube.of_enthalpy(carried[1:] / total), dz)
+        exact, smooth = tube.of_enthalpy(carried / total), away(grid.z)
+        add("bulk T, away from joint and ends", bulk[smooth], exact[smooth], np.ones(int(smooth.sum())))
+        add(BULK, bulk[1:], exact[1:], dz)
         if walls:
             liner, shell = walls
             m = liner[0].stop
@@ -319,17 +350,20 @@ def quantities(name: str) -> list[Errors]:
             add("T before the contact", faces.face_minus[:, m], tube.t_liner(zc, radius), dz)
             add("T behind the contact", faces.face_plus[:, m], tube.t_shell(zc, radius), dz)
             held, exact = energy.q_last[m:].sum(), through_axial(shell[2], grid.z[-1:], grid.r[m:]).sum()
-            add("heat through the shell's held end", np.array([held]), -np.array([exact]), np.ones(1))
+            add(HELD_END, np.array([held]), -np.array([exact]), np.ones(1))
             radius = np.full_like(zc, R3)
         _, t, _, to_r = (stream, *walls)[-1]
         if tube.outside == "temperature":
             flux, exact = -energy.q_outside / grid.area_r[:, -1], to_r(zc, radius)
-            smooth = np.min(np.abs(zc[:, None] - [0.0, JOINT, LENGTH]), axis=1) > AWAY
-            add(AWAY_FLUX, flux[smooth], exact[smooth], dz[smooth])
+            smooth = away(zc)
+            add("flux at the held surface, away from joint and ends", flux[smooth], exact[smooth], dz[smooth])
             add(HELD_FLUX, flux, exact, dz)
         else:
             add("T of the outside", faces.face_minus[:, -1], t(zc, radius), dz)
-    return [errors(what, list(MESHES), *three) for what, three in parts.items()]
+    shown = dict(SHOWN)
+    if tube.outside != "temperature":
+        del shown[HELD_END]
+    return [errors(what, list(MESHES), *three, shown.get(what)) for what, three in parts.items()]
 
 
 def check() -> list[Row]:
@@ -337,4 +371,12 @@ def check() -> list[Row]:
 
 
 def picture(folder: Path) -> None:
-    plot(folder / "orders.png", {name: quantities(name) for name in CASES})
+    names = (
+        "T of the stream",
+        "T of the shell",
+        "T behind the contact",
+        "bulk T, away from joint and ends",
+        "flux at the bore",
+        HELD_FLUX,
+    )
+    plot(folder / "orders.png", {name: quantities(name) for name in CASES}, names)
