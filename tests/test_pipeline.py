@@ -93,7 +93,7 @@ def test_every_headline_quantity_has_a_mesh_error(result):
     bars = result.summary["numerical_uncertainty"]
     found = list(pairs({part: result.summary[part] for part in PARTS}, bars))
     assert len(found) > 25
-    for path, value, width in found:
+    for path, _, width in found:
         assert width is not None and width >= 0.0, path
     rules = bars["rule"]["stream"]["water"]
     assert rules["pressure_drop_Pa"] == "extrapolated" and rules["mass_flow_kg_s"] == "exact"

@@ -34,9 +34,7 @@ def console(stream: Any = None) -> Console:
     return Console(file=out, width=width, markup=False, highlight=False, emoji=False, soft_wrap=False)
 
 
-def rows(
-    target: Console, header: Sequence[str], body: Iterable[Sequence[str]], right: Sequence[int] = ()
-) -> None:
+def rows(target: Console, header: Sequence[str], body: Iterable[Sequence[str]], right: Sequence[int] = ()) -> None:
     """A table in columns, without boxes."""
     table = Table(box=None, pad_edge=False, padding=(0, 2, 0, 0), show_header=any(header))
     for place, name in enumerate(header):

@@ -69,9 +69,7 @@ def refuse_unusable(path: Path, replace: bool) -> None:
     if not path.exists() and not path.is_symlink():
         return
     if not path.is_dir() or path.is_symlink():
-        raise ResultsFolderError(
-            f"{path} exists and is not a folder. Give another place with --out, or move it away."
-        )
+        raise ResultsFolderError(f"{path} exists and is not a folder. Give another place with --out, or move it away.")
     if not replace:
         raise ResultsFolderError(
             f"the folder {path} exists already. Replace it with --replace, or give another place with --out."
@@ -156,9 +154,7 @@ def _write_files(result: Any, folder: Path) -> None:
     arrays: dict[str, Any] = {key: np.asarray(value) for key, value in result.fields.items()}
     np.savez(folder / FIELDS, **arrays)
     outlet = {
-        name: stream.outlet_pressure
-        for name, stream in result.case.stream.items()
-        if f"u.{name}" in result.fields
+        name: stream.outlet_pressure for name, stream in result.case.stream.items() if f"u.{name}" in result.fields
     }
     vtr.write_fields(folder / "fields.vtr", result.fields, outlet)
 

@@ -103,9 +103,7 @@ def grid_convergence_index(values: tuple[float, float, float], ratios: tuple[flo
     }
 
 
-def estimate_tree(
-    trees: list[Any], cell: Callable[[float], float], path: tuple[str, ...] = ()
-) -> tuple[Any, Any, Any]:
+def estimate_tree(trees: list[Any], cell: Callable[[float], float], path: tuple[str, ...] = ()) -> tuple[Any, Any, Any]:
     """(values, half-widths, how) of the trees of headline quantities on nested meshes, coarsest first.
 
     cell : length of the axial cell of the finest mesh at a place z [m]; no place is known more sharply
