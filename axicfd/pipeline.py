@@ -61,6 +61,7 @@ def solve(case: Case, on_progress: OnProgress | None = None, *, halvings: int = 
     meshes = family(case, place)
     levels = LEVELS + halvings
     solution: Solution | None = None
+    start: Solution | None = None  # nothing is taken from a mesh too coarse to converge on
     solutions: list[Solution] = []
     history = []
     shown: tuple[float | None, float | None] = (None, None)
@@ -76,13 +77,12 @@ def solve(case: Case, on_progress: OnProgress | None = None, *, halvings: int = 
 
         counts = number > levels - NESTED
         below = case.solve.stop_below if counts else max(START_BELOW, case.solve.stop_below)
-        solution = solve_on(case, grid, solution, below, looked)
+        solution = solve_on(case, grid, start, below, looked)
         history.append((number, grid.cells, solution.iterations, solution.residual))
         shown = _headline(case, solution)
         tell(solution.residual, True)
-        solutions = [*solutions, solution][-NESTED:]
-        if solution.stop_reason == "diverged":
-            break
+        solutions = [*solutions, solution][-NESTED:] if solution.converged else [solution]
+        start = None if solution.stop_reason == "diverged" else solution
     return make_result(case, place, solutions, history, time.perf_counter() - begun, VERSION)
 
 

@@ -180,3 +180,45 @@ def test_without_convergence_the_fields_are_kept_and_marked(monkeypatch):
     assert found.axial_half_width == {}
     assert np.isfinite(found.fields["T"]).all()
     assert "not converged" in repr(found)
+
+
+@pytest.mark.parametrize("mesh", ["at_most = 100", "radial = 8\naxial = 8"])
+def test_the_smallest_meshes_get_through(mesh):
+    """Their coarsest ones have one cell along z, or diverge; that used to stop the climb, or end in an IndexError."""
+    result = solve(axicfd.load(tubes.text(rest=f"[mesh]\n{mesh}\n", viscous=True)))
+    assert result.converged
+    assert abs(result["balance.energy"]) < 1e-8
+
+
+@pytest.mark.parametrize(
+    ("outside", "bath"),
+    [
+        ('film_coefficient = "10 W/m^2/K", ambient = "80 degC"', 60.0),
+        ('temperature = "20 degC"', 0.0),
+    ],
+)
+def test_a_tube_at_rest_that_starts_from_its_answer(outside, bath):
+    """No step is needed then. The residual used to be reported as infinite, and the balance to be 1 of no heat."""
+    text = f"""
+[stream.water]
+fluid = "water"
+inlet_temperature = "20 degC"
+mass_flow = "0 g/s"
+
+[[layer]]
+stream = "water"
+diameter = "2 mm"
+
+[[section]]
+name = "bath"
+length = "50 mm"
+outside = {{ {outside} }}
+
+[mesh]
+radial = 8
+axial = 48
+"""
+    result = solve(axicfd.load(text))
+    assert result.fields["T"] == pytest.approx(bath, abs=1e-9)
+    assert result.converged and result.summary["residual"] < 1e-8
+    assert (result["balance.energy"] or 0.0) < 1e-8

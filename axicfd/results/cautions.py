@@ -23,6 +23,7 @@ from axicfd.errors import RefusedModel
 from axicfd.materials.library import ATMOSPHERE, SOLIDS
 from axicfd.mesh.grid import Array, Piece
 from axicfd.results.axial import StreamView, stream_view
+from axicfd.results.summary import STANDARD_GRAVITY
 from axicfd.solver import boundary
 from axicfd.solver.state import Solution
 from axicfd.theory import duct_heat, groups
@@ -56,7 +57,6 @@ MATTERS = 1e-3  # K; smaller differences raise no caution, as in the scale of th
 NOTICED = 1.0  # K between wall and inlet from which boiling, freezing or condensing is mentioned
 FADED = 4.0  # reaches after which the warmth of a wall is down to 2 %
 SHORT = 0.01  # share of the tube's length that no advice is given about before a solve
-GRAVITY = 9.81  # m/s2, rounded standard gravity
 
 
 @dataclass(frozen=True)
@@ -992,7 +992,7 @@ def _rayleigh(ahead: Ahead, T: Any, difference: Any) -> Any:
     rho = fluid.density(T)
     beta = np.abs(fluid.density.derivative(T)) / rho
     return (
-        GRAVITY * beta * difference * ahead.bore**3 * rho**2 * fluid.specific_heat(T)
+        STANDARD_GRAVITY * beta * difference * ahead.bore**3 * rho**2 * fluid.specific_heat(T)
         / (fluid.viscosity(T) * fluid.conductivity(T))
     )  # fmt: skip
 

@@ -85,7 +85,7 @@ def extreme(z: Array, values: Array, sign: float) -> tuple[float, float]:
             slope = s0 + curve * h0
             shift = -slope / (2.0 * curve)
             if -h0 < shift < h1:
-                return value + slope * shift + curve * shift**2, place + shift
+                return value + float(slope * shift + curve * shift**2), place + float(shift)
     return value, place
 
 

@@ -15,6 +15,7 @@ from axicfd.case.model import Case
 from axicfd.results import lines
 from axicfd.results.axial import StreamView, temperature_span
 from axicfd.solver import developed
+from axicfd.solver.energy import ONE_MILLIKELVIN
 from axicfd.solver.flow import stream_mesh
 from axicfd.solver.state import Solution
 from axicfd.theory import groups
@@ -22,7 +23,6 @@ from axicfd.theory import groups
 ENTRY_VELOCITY = 0.01  # the peak velocity counts as developed within this share
 ENTRY_NUSSELT = 0.05
 STANDARD_GRAVITY = 9.80665  # m/s2, CGPM 1901
-TRICKLE = 1e-3  # K; smallest temperature change that the heat scale counts, times m cp
 
 
 def summary(case: Case, layout: Layout, solution: Solution, views: dict[str, StreamView]) -> dict[str, Any]:
@@ -115,8 +115,10 @@ def _from_start(view: StreamView, z: float) -> float:
 def _outlet_axis(view: StreamView) -> float:
     """Fluid temperature on the axis in the outlet plane, where nothing is conducted along z."""
     j0, j1 = view.grid.streams[view.name]
-    last, before = view.zc[-1], view.zc[-2]
-    plane = view.t[-1] + (view.t[-1] - view.t[-2]) * (view.z[-1] - last) / (last - before)
+    plane = view.t[-1]
+    if len(view.zc) > 1:
+        last, before = view.zc[-1], view.zc[-2]
+        plane = plane + (view.t[-1] - view.t[-2]) * (view.z[-1] - last) / (last - before)
     return float(lines.to_axis(plane[None, :], view.grid.rc[j0:j1])[0])
 
 
@@ -344,13 +346,14 @@ def _balance(ledger: dict[str, Any], views: dict[str, StreamView], solution: Sol
         *ledger["outlet_conduction"].values(),
     ]
     boundaries = sum(float(np.abs(q).sum()) for q in (heat.outside, heat.first, heat.last))
-    trickle = sum(v.mass_flow * float(v.fluid.specific_heat(v.t_in)) * TRICKLE for v in views.values())
+    trickle = sum(v.mass_flow * float(v.fluid.specific_heat(v.t_in)) * ONE_MILLIKELVIN for v in views.values())
     scale = max(
         boundaries,
         float(np.abs(heat.generated).sum()),
         abs(ledger["viscous"]),
         max(abs(e) for e in ledger["stream"].values()),
         trickle,
+        heat.resolvable,
     )
     inflow = sum(m["inlet_kg_s"] for m in ledger["mass"].values())
     outflow = sum(m["outlet_kg_s"] for m in ledger["mass"].values())

@@ -1,4 +1,6 @@
-"""The conjugate energy equation on one mesh: residual, and steps of Newton's kind with a sparse LU.
+"""The conjugate energy equation on one mesh: residual, and steps of Newton's kind.
+
+A step solves its linear system by GMRES with a multigrid cycle (`heat_cycle`), or by a sparse LU where that fails.
 
 The unknown is the temperature of every cell measured from the inlet temperature (a heater of a few watts would drown in
 the round-off of absolute temperatures).
@@ -123,11 +125,14 @@ class Energy:
         boundaries = np.abs(self.q_outside).sum() + np.abs(self.q_first).sum() + np.abs(self.q_last).sum()
         enthalpy = abs(self.hz[-1].sum() - self.hz[0].sum())
         trickle = 0.5 * float(np.abs(self._cp(self.tz[[0, -1]]) * self.mz[[0, -1]]).sum()) * ONE_MILLIKELVIN
+        parts = boundaries, np.abs(self.generated).sum(), np.abs(self.volume_heat).sum(), enthalpy, trickle
+        return float(max(*parts, self.resolvable(), 1e-300))
+
+    def resolvable(self) -> float:
+        """[W] smallest heat scale against which round-off lets the balance be judged."""
         c = self._conduction
         links = c.gz[:-1] + c.gz[1:] + c.gr[:, :-1] + c.gr[:, 1:] + self._loss
-        seen = RESOLVABLE * float((links * np.abs(self.t)).sum())
-        parts = boundaries, np.abs(self.generated).sum(), np.abs(self.volume_heat).sum(), enthalpy, trickle, seen
-        return float(max(*parts, 1e-300))
+        return RESOLVABLE * float((links * np.abs(self.t)).sum())
 
     def error(self) -> float:
         """Sum of absolute residuals over the heat scale."""
@@ -149,7 +154,7 @@ class Energy:
             change = self._lu.solve(self._r.ravel()).reshape(self.grid.shape)
         self.t = self.t + change
         after = self.error()
-        self._stale = after > SLOW * before and after > 1e-12
+        self._stale = not (after <= SLOW * before or after <= 1e-12)  # also where it is not a number
         return after
 
     def _linearise(self) -> None:

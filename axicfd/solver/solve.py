@@ -121,6 +121,10 @@ class _Run:
             self.cycle = None
             self.watch = Watch(self.watch.stop_below)
             reason = self._attempt()
+        if reason == "diverged":
+            self._fields(begin)
+            self._refresh_viscosity()
+            self._hand_over_flow()
         return self._solution(reason)
 
     def _attempt(self) -> str:
@@ -149,6 +153,7 @@ class _Run:
             return str(reason)
         self._hand_over_flow()
         error = self.energy.error()
+        self._check(flow_residual, error)
         for _ in range(HEAT_STEPS):
             if error < self.watch.stop_below:
                 break
@@ -242,7 +247,7 @@ class _Run:
         faces = e.conductors
         heat = HeatFields(
             e.t, e.tz, e.tr, faces.face_minus, faces.face_plus, e.hz, e.hr, e.qz, e.qr,
-            e.q_outside, e.q_first, e.q_last, e.generated, self.viscous, self.pressure_work,
+            e.q_outside, e.q_first, e.q_last, e.generated, self.viscous, self.pressure_work, e.resolvable(),
         )  # fmt: skip
         seconds = time.perf_counter() - self.clock
         return Solution(
@@ -258,7 +263,8 @@ def _pressure_power(flow: Flow) -> Array:
     power[1:] += 0.5 * face
     power[:-1] += 0.5 * face
     power[-1] -= u[-1] * m.area * p[-1]  # to the outlet plane, where p = 0
-    power[0] += u[0] * m.area * (p[1] - p[0]) * m.dzu[0] / m.dzu[1]
+    if m.nz > 1:
+        power[0] += u[0] * m.area * (p[1] - p[0]) * m.dzu[0] / m.dzu[1]  # from the inlet plane
     face = v[:, 1:-1] * m.ring[1:-1] * m.dz[:, None] * (p[:, 1:] - p[:, :-1])
     power[:, 1:] += 0.5 * face
     power[:, :-1] += 0.5 * face

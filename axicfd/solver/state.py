@@ -30,6 +30,7 @@ class HeatFields:
     t (nz, nr); tz (nz + 1, nr), tr (nz, nr + 1) convected face temperatures; minus, plus (nz, nr + 1) temperatures on the
     inner and outer side of each radial face; hz, hr convected enthalpy and qz, qr conducted heat through faces;
     outside (nz,), first (nr,), last (nr,) heat into the tube; generated, viscous, pressure_work (nz, nr).
+    resolvable [W]: smallest heat scale against which round-off lets the balance be judged.
     """
 
     t: Array
@@ -47,13 +48,14 @@ class HeatFields:
     generated: Array
     viscous: Array
     pressure_work: Array
+    resolvable: float = 0.0
 
 
 @dataclass(frozen=True)
 class Solution:
     """The fields of one grid, and how the solve went.
 
-    stop_reason : "converged", "no further progress", "iteration limit" or "diverged" (then the last finite fields)
+    stop_reason : "converged", "no further progress", "iteration limit" or "diverged" (then the fields it began with)
     history     : (iteration, flow residual, energy residual) per check
     """
 

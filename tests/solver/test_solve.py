@@ -89,3 +89,20 @@ def test_a_thin_liquid_after_a_thick_one():
     assert wall[16:] == pytest.approx(np.exp(-0.05 * 90.0), rel=1e-3)
     t = solution.heat.t
     assert t.min() > -1e-4 * 90.0 and t.max() < 90.0 * (1.0 + 1e-4)
+
+
+def test_a_diverged_solve_leaves_finite_fields(monkeypatch):
+    """It used to leave what the iteration had blown up to."""
+    case = tube(viscosity=THINNING, outside='heat = "5 W"')
+
+    def blow_up(run):
+        run.flow.u[...] = np.nan
+        run.energy.t[...] = 1e300
+        return "diverged"
+
+    monkeypatch.setattr("axicfd.solver.solve._Run._attempt", blow_up)
+    solution = solve_on(case, grid_of(case, 1))
+    assert solution.stop_reason == "diverged" and not solution.converged
+    stream, heat = solution.streams["oil"], solution.heat
+    for array in (stream.u, stream.v, stream.p, stream.mz, heat.t, heat.tz, heat.qz, heat.outside, heat.viscous):
+        assert np.isfinite(array).all()
