@@ -222,3 +222,62 @@ axial = 48
     assert result.fields["T"] == pytest.approx(bath, abs=1e-9)
     assert result.converged and result.summary["residual"] < 1e-8
     assert (result["balance.energy"] or 0.0) < 1e-8
+
+
+def uneven(tmp_path, profile: str):
+    """A line whose first section lies in a void and that is heated in its second."""
+    (tmp_path / "slug.csv").write_text("r_m,velocity,temperature_K\n0,1,293.15\n0.001,1,293.15\n", encoding="utf-8")
+    path = tmp_path / "line.toml"
+    path.write_text(
+        f"""
+[stream.water]
+fluid = "water"
+inlet_temperature = "20 degC"
+mass_flow = "0.5 g/s"
+inlet_profile = {profile}
+
+[[section]]
+name = "held"
+length = "30 mm"
+outside = {{ insulated = true }}
+layer = [
+    {{ stream = "water", diameter = "2 mm" }},
+    {{ name = "line", solid = "ptfe", thickness = "0.3 mm" }},
+    {{ name = "air", void = true, thickness = "1 mm" }},
+]
+
+[[section]]
+name = "cooled"
+length = "30 mm"
+outside = {{ temperature = "5 degC", contact_resistance = "1e-3 m^2 K/W" }}
+layer = [
+    {{ stream = "water", diameter = "2 mm" }},
+    {{ name = "line", solid = "ptfe", thickness = "0.3 mm" }},
+]
+
+[mesh]
+radial = 16
+axial = 96
+""",
+        encoding="utf-8",
+    )
+    return solve(axicfd.load(path))
+
+
+def test_the_outside_of_a_void_has_no_temperature(tmp_path):
+    """It used to be shown at the inlet temperature."""
+    outside = uneven(tmp_path, '"flat"').outside
+    behind = outside["z_m"] > 0.03 + 1e-9
+    assert np.isnan(outside["temperature_K"][~behind]).all()
+    assert (outside["temperature_K"][behind] < 293.15).all()
+
+
+def test_a_slug_from_a_file_is_a_flat_inlet(tmp_path):
+    """The wall's corner is singular either way: no shear, no friction there. A file used to be taken as smooth."""
+    plain, read = (uneven(tmp_path, profile) for profile in ('"flat"', '{ file = "slug.csv" }'))
+    for column in ("wall_shear_stress_Pa", "apparent_friction_factor", "pressure_Pa", "nusselt"):
+        np.testing.assert_allclose(read.axial["water"][column], plain.axial["water"][column], rtol=1e-6)
+    near = plain.axial["water"]["z_m"] < 0.5 * 2e-3
+    assert np.isnan(plain.axial["water"]["apparent_friction_factor"][near]).all()
+    key = "stream.water.largest_wall_shear_stress_Pa"
+    assert read[key] == pytest.approx(plain[key], rel=1e-6)

@@ -1,6 +1,6 @@
 """Run every validation problem and write validation/SUMMARY.md and the pictures.
 
-    python -m validation.run_all [WORD ...]     only problems whose path holds one of the words; then nothing is written
+    python -m validation.run_all [WORD ...]     only problems whose path holds one of the words; SUMMARY.md then stays
 """
 
 import importlib

@@ -222,6 +222,12 @@ class Stream(Part):
         """Whether nothing flows."""
         return not any(getattr(self, flow) for flow in self.FLOWS)
 
+    @property
+    def slips_at_inlet(self) -> bool:
+        """Whether the inlet profile moves along the wall, so that the wall's corner at the inlet is singular."""
+        profile = self.inlet_profile
+        return profile.velocity[-1] != 0.0 if isinstance(profile, FileProfile) else profile == "flat"
+
 
 # Python evaluates a comprehension in a class body without the names of the class, so this is said after it.
 Stream.displaces = {flow: tuple(other for other in Stream.FLOWS if other != flow) for flow in Stream.FLOWS}

@@ -9,6 +9,7 @@ from axicfd.case.layout import Layout, PlacedSection, layout
 from axicfd.case.model import Case
 from axicfd.output.headline import amount, number
 from axicfd.output.shown import Shown
+from axicfd.solver.boundary import mass_flow
 from axicfd.theory import conduction, groups
 from axicfd.theory.hand import HandEstimate, HandStream, Stretch, hand_estimate
 
@@ -92,24 +93,15 @@ def inlet_state(case: Case, tube: Layout) -> HandStream:
     stream, fluid = case.stream[name], case.fluid_of(name)
     inlet = stream.inlet_temperature
     density, viscosity = float(fluid.density(inlet)), float(fluid.viscosity(inlet))
-    area = groups.tube_area(tube.bore_diameter)
-    if stream.mass_flow is not None:
-        mass_flow = stream.mass_flow
-    elif stream.volume_flow is not None:
-        mass_flow = stream.volume_flow * density
-    elif stream.mean_velocity is not None:
-        mass_flow = stream.mean_velocity * density * area
-    else:
-        mass_flow = (stream.reynolds or 0.0) * viscosity * area / tube.bore_diameter
     return HandStream(
-        mass_flow=mass_flow,
+        mass_flow=mass_flow(case, tube, name),
         inlet_temperature=inlet,
         bore=tube.bore_diameter,
         density=density,
         specific_heat=float(fluid.specific_heat(inlet)),
         conductivity=float(fluid.conductivity(inlet)),
         viscosity=viscosity,
-        flat_inlet=stream.inlet_profile == "flat",
+        flat_inlet=stream.slips_at_inlet,
     )
 
 

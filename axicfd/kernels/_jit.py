@@ -71,8 +71,3 @@ if CACHE_FOLDER is not None:
 def kernel(function):
     """Compile a kernel on first use."""
     return numba.njit(cache=CACHE_FOLDER is not None, **OPTIONS)(function)
-
-
-def is_warm() -> bool:
-    """Whether kernels of this version were compiled before on this machine."""
-    return CACHE_FOLDER is not None and any(CACHE_FOLDER.rglob("*.nbi"))

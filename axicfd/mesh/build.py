@@ -168,7 +168,7 @@ def _places(case: Case, layout: Layout) -> tuple[Place, ...]:
     for name in layout.stream_names:
         stream = case.stream[name]
         z = 0.0 if stream.direction == "+z" else layout.length
-        places.append(Place(f"inlet of {name}", z, "inlet", stream.inlet_profile == "flat"))
+        places.append(Place(f"inlet of {name}", z, "inlet", stream.slips_at_inlet))
     for end, z in (("first", 0.0), ("last", layout.length)):
         conditions = getattr(case.ends, end)
         if any(not c.insulated for c in conditions.values()):

@@ -11,7 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from axicfd.case.model import Case, UsedFluid
-from axicfd.mesh.grid import Array, Grid
+from axicfd.mesh.grid import NOTHING, Array, Grid
 from axicfd.results import lines
 from axicfd.solver.state import Solution
 
@@ -61,7 +61,8 @@ class StreamView:
 
     @property
     def is_flat(self) -> bool:
-        return self.case.stream[self.name].inlet_profile == "flat"
+        """Whether the profile of the inlet plane moves along the wall."""
+        return self.case.stream[self.name].slips_at_inlet
 
     @property
     def mass_flow(self) -> float:
@@ -248,6 +249,7 @@ def stream_curves(view: StreamView) -> dict[str, Array]:
         apparent = 2.0 * density * drop * view.diameter / (g**2 * view.z)
     apparent[0] = np.nan
     if view.is_flat:
+        apparent[np.isnan(shear)] = np.nan
         nusselt[0] = coefficient[0] = pressure[0] = np.nan
     if still:
         for column in (friction, apparent, shear):
@@ -293,7 +295,8 @@ def outside_curves(case: Case, solution: Solution) -> dict[str, Array]:
     rows = np.arange(grid.nz)
     area = grid.area_r[rows, grid.outer]
     t_in = next(iter(case.stream.values())).inlet_temperature
-    surface = lines.to_faces(heat.minus[rows, grid.outer], grid.zc, grid.z, grid.joints)
+    conducts = grid.kind[rows, grid.outer - 1] != NOTHING  # the outside of a void has no temperature
+    surface = lines.to_faces(np.where(conducts, heat.minus[rows, grid.outer], np.nan), grid.zc, grid.z, grid.joints)
     flux = lines.to_faces(heat.outside / area, grid.zc, grid.z, grid.joints)
     return {
         "z_m": np.array(grid.z),

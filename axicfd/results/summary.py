@@ -12,6 +12,7 @@ import numpy as np
 from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout, PlacedSection
 from axicfd.case.model import Case
+from axicfd.mesh.grid import SOLID
 from axicfd.results import lines
 from axicfd.results.axial import StreamView, temperature_span
 from axicfd.solver import developed
@@ -64,7 +65,7 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
     bulk_viscosity = fluid.viscosity(view.bulk + t_in)
     gain = float(view.enthalpy[-1] - view.enthalpy[0])
     span = temperature_span(view)
-    body = solution.heat.t[solution.grid.kind == 2]
+    body = solution.heat.t[solution.grid.kind == SOLID]
     peak = max(float(body.max()), _surface_peak(solution)) if body.size else hottest
     tree |= {
         "mean_velocity_m_s": u,
@@ -129,9 +130,10 @@ def _hydrostatic(case: Case, layout: Layout, view: StreamView) -> float:
 
 
 def _surface_peak(solution: Solution) -> float:
-    """Largest temperature on the outer surface."""
-    rows = np.arange(solution.grid.nz)
-    return float(solution.heat.minus[rows, solution.grid.outer].max())
+    """Largest temperature on the outer surface, where that is a solid's; -inf where it nowhere is."""
+    grid, rows = solution.grid, np.arange(solution.grid.nz)
+    solid = grid.kind[rows, grid.outer - 1] == SOLID
+    return float(solution.heat.minus[rows, grid.outer].max(where=solid, initial=-np.inf))
 
 
 def _hydrodynamic_entry(solution: Solution, view: StreamView, why: dict[str, str]) -> float | None:

@@ -14,16 +14,6 @@ from numpy.typing import ArrayLike
 DARCY_F_RE = 64.0
 """f Re of developed flow in a tube. Source: Hagen-Poiseuille, exact."""
 
-ENTRANCE_LOSS = 1.2473
-"""K, the pressure drop beyond the developed one in units of rho U2 / 2, after a flat inlet as Re grows.
-
-Source: independent computation, not published: boundary-layer equations, two resolutions (+-0.0005);
-1.20 + 38 / Re in Chen 1973, J. Fluids Eng. 95, 153 (from memory).
-"""
-
-ENTRY_LENGTH_BOUNDARY_LAYER = 0.05534
-"""x+ at which the axis has 99 % of its developed velocity, as Re grows. Source: the same computation."""
-
 
 def developed_velocity(r: ArrayLike, radius: float, mean_velocity: float = 1.0) -> Any:
     """Axial velocity [m/s] at radius r: 2 U (1 - r2/R2). Source: Hagen-Poiseuille, exact."""

@@ -148,11 +148,6 @@ def mean_nusselt_T(x_star: ArrayLike) -> Any:
     return np.where(x < SHORTEST, near, mean_overall_nusselt(x, math.inf))[()]
 
 
-def temperature_T(r: ArrayLike, x_star: float) -> Any:
-    """(T_wall - T) / (T_wall - T_inlet) at radius r for one x* >= SHORTEST."""
-    return temperature_film(r, x_star, math.inf)
-
-
 def bulk_film(x_star: ArrayLike, biot: float) -> Any:
     """(T_ambient - T_bulk) / (T_ambient - T_inlet) at x*."""
     m = modes(biot)
