@@ -89,32 +89,42 @@ def dot(a, b):
 
 
 @kernel
-def line_sweep(cz, cr, b, x, downstream):
-    """One Gauss-Seidel sweep over radial lines, each solved exactly."""
+def factors(cz, cr, f):
+    """Inverse pivots of all radial lines, f (nz, nr): sweeps then need no divisions. Zero in cells without couplings."""
+    nz, nr = f.shape
+    for i in range(nz):
+        for j in range(nr):
+            a = cz[i, j] + cz[i + 1, j] + cr[i, j] + cr[i, j + 1]
+            if a == 0.0:
+                f[i, j] = 0.0
+            else:
+                f[i, j] = 1.0 / (a - (cr[i, j] * cr[i, j] * f[i, j - 1] if j > 0 else 0.0))
+
+
+@kernel
+def line_sweep(cz, cr, f, b, x, downstream):
+    """One Gauss-Seidel sweep over radial lines, each solved exactly; f from `factors`."""
     nz, nr = b.shape
-    c = np.empty(nr)
     y = np.empty(nr)
     for k in range(nz):
         i = k if downstream else nz - 1 - k
         for j in range(nr):
-            a = cz[i, j] + cz[i + 1, j] + cr[i, j] + cr[i, j + 1]
-            r = b[i, j]
-            if i > 0:
-                r += cz[i, j] * x[i - 1, j]
-            if i < nz - 1:
-                r += cz[i + 1, j] * x[i + 1, j]
-            if a == 0.0:
-                a, r = 1.0, 0.0
-            if j > 0:
-                f = 1.0 / (a - cr[i, j] * c[j - 1])
-                y[j] = (r + cr[i, j] * y[j - 1]) * f
-            else:
-                f = 1.0 / a
-                y[j] = r * f
-            c[j] = cr[i, j + 1] * f
-        x[i, nr - 1] = y[nr - 1]
+            y[j] = b[i, j]
+        if i > 0:
+            for j in range(nr):
+                y[j] += cz[i, j] * x[i - 1, j]
+        if i < nz - 1:
+            for j in range(nr):
+                y[j] += cz[i + 1, j] * x[i + 1, j]
+        below = 0.0
+        for j in range(nr):
+            below = (y[j] + cr[i, j] * below) * f[i, j]
+            y[j] = below
+        above = y[nr - 1]
+        x[i, nr - 1] = above
         for j in range(nr - 2, -1, -1):
-            x[i, j] = y[j] + c[j] * x[i, j + 1]
+            above = y[j] + cr[i, j + 1] * f[i, j] * above
+            x[i, j] = above
 
 
 @kernel

@@ -2,7 +2,7 @@
 
     (w + e + s + n + loss) x_P - w x_W - e x_E - s x_S - n x_N = b
 
-w, e, s, n, loss, b, x are (nz, nr); a coefficient towards the outside of the grid must be zero.
+w, e, s, n, loss, b, x are (nz, nr), d is the diagonal; a coefficient towards the outside of the grid must be zero.
 """
 
 import numpy as np
@@ -31,36 +31,45 @@ def upwind_links(gz, gr, wz, wr, loss, open_, w, e, s, n, d):
 
 
 @kernel
-def r_sweep(w, e, s, n, d, b, x, rising):
+def factors(w, e, s, n, d, fr, fz):
+    """Inverse pivots of all radial lines, fr, and all axial lines, fz, both (nz, nr): sweeps then need no divisions."""
+    nz, nr = d.shape
+    for i in range(nz):
+        for j in range(nr):
+            fr[i, j] = 1.0 / (d[i, j] - (s[i, j] * n[i, j - 1] * fr[i, j - 1] if j > 0 else 0.0))
+            fz[i, j] = 1.0 / (d[i, j] - (w[i, j] * e[i - 1, j] * fz[i - 1, j] if i > 0 else 0.0))
+
+
+@kernel
+def r_sweep(w, e, s, n, d, fr, fz, b, x, rising):
     """Radial lines one after the other, by rising or falling station."""
     nz, nr = b.shape
-    c = np.empty(nr)
     y = np.empty(nr)
     for k in range(nz):
         i = k if rising else nz - 1 - k
         for j in range(nr):
-            r = b[i, j]
-            if i > 0:
-                r += w[i, j] * x[i - 1, j]
-            if i < nz - 1:
-                r += e[i, j] * x[i + 1, j]
-            if j > 0:
-                f = 1.0 / (d[i, j] - s[i, j] * c[j - 1])
-                y[j] = (r + s[i, j] * y[j - 1]) * f
-            else:
-                f = 1.0 / d[i, j]
-                y[j] = r * f
-            c[j] = n[i, j] * f
-        x[i, nr - 1] = y[nr - 1]
+            y[j] = b[i, j]
+        if i > 0:
+            for j in range(nr):
+                y[j] += w[i, j] * x[i - 1, j]
+        if i < nz - 1:
+            for j in range(nr):
+                y[j] += e[i, j] * x[i + 1, j]
+        below = 0.0
+        for j in range(nr):
+            below = (y[j] + s[i, j] * below) * fr[i, j]
+            y[j] = below
+        above = y[nr - 1]
+        x[i, nr - 1] = above
         for j in range(nr - 2, -1, -1):
-            x[i, j] = y[j] + c[j] * x[i, j + 1]
+            above = y[j] + n[i, j] * fr[i, j] * above
+            x[i, j] = above
 
 
 @kernel
-def z_sweep(w, e, s, n, d, b, x):
+def z_sweep(w, e, s, n, d, fr, fz, b, x):
     """Axial lines, every second one first and then the others, so that stations are walked in the order of memory."""
     nz, nr = b.shape
-    c = np.empty((nz, nr))
     y = np.empty((nz, nr))
     for half in range(2):
         for i in range(nz):
@@ -71,17 +80,13 @@ def z_sweep(w, e, s, n, d, b, x):
                 if j < nr - 1:
                     r += n[i, j] * x[i, j + 1]
                 if i > 0:
-                    f = 1.0 / (d[i, j] - w[i, j] * c[i - 1, j])
-                    y[i, j] = (r + w[i, j] * y[i - 1, j]) * f
-                else:
-                    f = 1.0 / d[i, j]
-                    y[i, j] = r * f
-                c[i, j] = e[i, j] * f
+                    r += w[i, j] * y[i - 1, j]
+                y[i, j] = r * fz[i, j]
         for j in range(half, nr, 2):
             x[nz - 1, j] = y[nz - 1, j]
         for i in range(nz - 2, -1, -1):
             for j in range(half, nr, 2):
-                x[i, j] = y[i, j] + c[i, j] * x[i + 1, j]
+                x[i, j] = y[i, j] + e[i, j] * fz[i, j] * x[i + 1, j]
 
 
 @kernel

@@ -134,10 +134,17 @@ def sweep(m, mu, rho, u, v, p, mz, mr, su, sv, fc):
             cu, cw, cv, cp = cu * to_v, cw * to_v, cv * to_v, cp * to_v
         for j in range(nr - 2, -1, -1):
             to_v, to_p = -kc[j + 1, N], m.ring[j + 1] * m.dz[i] * m.open_v[i, j + 1]
-            for k in (12, 16):
-                c = to_v * x[j + 1, k + 2] + to_p * x[j + 1, k + 3]
-                for n in range(4):
-                    x[j, k + n] -= x[j, n] * x[j + 1, k] + x[j, 4 + n] * x[j + 1, k + 1] + x[j, 8 + n] * c
+            y, z = x[j], x[j + 1]
+            a, b, c = z[12], z[13], to_v * z[14] + to_p * z[15]
+            y[12] -= y[0] * a + y[4] * b + y[8] * c
+            y[13] -= y[1] * a + y[5] * b + y[9] * c
+            y[14] -= y[2] * a + y[6] * b + y[10] * c
+            y[15] -= y[3] * a + y[7] * b + y[11] * c
+            a, b, c = z[16], z[17], to_v * z[18] + to_p * z[19]
+            y[16] -= y[0] * a + y[4] * b + y[8] * c
+            y[17] -= y[1] * a + y[5] * b + y[9] * c
+            y[18] -= y[2] * a + y[6] * b + y[10] * c
+            y[19] -= y[3] * a + y[7] * b + y[11] * c
         more = 0.0
         if not first:
             have, gain = 0.0, 0.0
@@ -159,3 +166,11 @@ def sweep(m, mu, rho, u, v, p, mz, mr, su, sv, fc):
     for i in range(nz):
         for j in range(nr):
             p[i, j] -= shift * m.open_p[i, j]
+
+
+@kernel
+def damp(field, old, share):
+    """Keep only a share of the change of a field from `old`; both of one shape (n, m)."""
+    for i in range(field.shape[0]):
+        for j in range(field.shape[1]):
+            field[i, j] = old[i, j] + share * (field[i, j] - old[i, j])

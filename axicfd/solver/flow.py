@@ -5,6 +5,7 @@ to round-off. Pressure is the pressure in motion, zero at the outlet plane.
 """
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
@@ -116,6 +117,7 @@ class _Level:
 
     cz: Array
     cr: Array
+    pivots: Array
     b: Array
     x: Array
     pair_r: int = 1
@@ -128,7 +130,8 @@ class PressureCorrection:
         nz, nr = mesh.nz, mesh.nr
         self.levels: list[_Level] = []
         while True:
-            level = _Level(np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1)), np.zeros((nz, nr)), np.zeros((nz, nr)))
+            pivots, b, x = (np.zeros((nz, nr)) for _ in range(3))
+            level = _Level(np.zeros((nz + 1, nr)), np.zeros((nz, nr + 1)), pivots, b, x)
             self.levels.append(level)
             if nz <= COARSEST:
                 break
@@ -140,6 +143,8 @@ class PressureCorrection:
         """Solve the finest level's cz, cr, b to a share `drop` of the starting defect; its b is used up."""
         for fine, coarse in zip(self.levels[:-1], self.levels[1:], strict=True):
             continuity.coarsen(fine.cz, fine.cr, fine.pair_r, coarse.cz, coarse.cr)
+        for level in self.levels:
+            continuity.factors(level.cz, level.cr, level.pivots)
         top, x, ap = self.levels[0], self._x, self._ap
         r = top.b
         x[...] = 0.0
@@ -174,14 +179,14 @@ class PressureCorrection:
 
     def _cycle(self, k: int) -> None:
         level = self.levels[k]
-        continuity.line_sweep(level.cz, level.cr, level.b, level.x, True)
+        continuity.line_sweep(level.cz, level.cr, level.pivots, level.b, level.x, True)
         if k < len(self.levels) - 1:
             coarse = self.levels[k + 1]
             continuity.restrict_residual(level.cz, level.cr, level.b, level.x, level.pair_r, coarse.b)
             coarse.x[...] = 0.0
             self._cycle(k + 1)
             continuity.extend(coarse.x, level.pair_r, level.x)
-        continuity.line_sweep(level.cz, level.cr, level.b, level.x, False)
+        continuity.line_sweep(level.cz, level.cr, level.pivots, level.b, level.x, False)
 
 
 def neighbours(fine: Array, coarse: Array) -> tuple[NDArray[np.int64], Array]:
@@ -215,12 +220,21 @@ class Flow:
         self.u[1:] = mesh.open_u[1:] * (self.mass_flow / density / sections[1:])[:, None]
         self.mz, self.mr = np.zeros_like(self.u), np.zeros_like(self.v)
         self._su, self._sv = np.zeros_like(self.u), np.zeros_like(self.v)
+        self._before = np.zeros_like(self.u), np.zeros_like(self.v), np.zeros_like(self.p)
         self._ru, self._rv, self._rc = np.zeros_like(self.u), np.zeros_like(self.v), np.zeros_like(self.p)
-        self._du, self._dv = np.zeros_like(self.u), np.zeros_like(self.v)
         # sources of the coarse-mesh equations of a multigrid cycle (N, N, kg/s); zero on the finest mesh
         self.fu, self.fv, self.fc = np.zeros_like(self.u), np.zeros_like(self.v), np.zeros_like(self.p)
-        self._correction = PressureCorrection(mesh)
         self.refresh_mass()
+
+    # The coarse meshes of a multigrid cycle never need these.
+    @cached_property
+    def _correction(self) -> PressureCorrection:
+        return PressureCorrection(self.mesh)
+
+    @cached_property
+    def _per_pressure(self) -> tuple[Array, Array]:
+        """Velocity changes per unit of pressure correction, of u and v."""
+        return np.zeros_like(self.u), np.zeros_like(self.v)
 
     def start_from(self, u: Array, v: Array, p: Array) -> None:
         """Take fields carried over from another mesh; the inlet plane stays, and each section's flow is made exact."""
@@ -238,18 +252,21 @@ class Flow:
 
         The damping takes modes that are smooth along r and oscillate along z, which the sweep alone leaves near the inlet.
         """
-        before = self.u.copy(), self.v.copy(), self.p.copy()
+        fields = self.u, self.v, self.p
+        for field, old in zip(fields, self._before, strict=True):
+            np.copyto(old, field)
         self._explicit_terms()
         station.sweep(
             self.mesh, self.viscosity, self.density, self.u, self.v, self.p, self.mz, self.mr, self._su, self._sv, self.fc
         )
-        for field, old in zip((self.u, self.v, self.p), before, strict=True):
-            field -= (1.0 - DAMPING) * (field - old)
+        for field, old in zip(fields, self._before, strict=True):
+            station.damp(field, old, DAMPING)
         self.refresh_mass()
 
     def step(self) -> None:
         """One iteration: momentum with the present pressure, then the pressure correction."""
         m, mu = self.mesh, self.viscosity
+        du, dv = self._per_pressure
         self._explicit_terms()
         momentum.predict(
             m,
@@ -263,15 +280,15 @@ class Flow:
             self._sv,
             self.relax,
             1.0 if self.consistent else 0.0,
-            self._du,
-            self._dv,
+            du,
+            dv,
         )
         self.refresh_mass()
         top = self._correction.levels[0]
         continuity.mass_defect(self.mz, self.mr, m.open_p, self.fc, top.b)
-        continuity.coefficients(self.density, m.area, m.ring, m.dz, self._du, self._dv, top.cz, top.cr)
+        continuity.coefficients(self.density, m.area, m.ring, m.dz, du, dv, top.cz, top.cr)
         x = self._correction.solve()
-        continuity.correct(x, self._du, self._dv, m.open_p, self.relax_p, self.u, self.v, self.p)
+        continuity.correct(x, du, dv, m.open_p, self.relax_p, self.u, self.v, self.p)
         self.refresh_mass()
 
     def close_continuity(self) -> None:

@@ -46,6 +46,7 @@ class _Level:
     columns: NDArray[np.int64] = field(default_factory=lambda: np.zeros(0, np.int64))
     way: tuple = ()
     links: tuple[Array, ...] = ()
+    pivots: tuple[Array, ...] = ()
     left: Array = field(default_factory=lambda: np.zeros((0, 0)))
 
 
@@ -93,6 +94,8 @@ class HeatCycle:
             heat_lines.upwind_links(
                 gz, gr, np.ascontiguousarray(wz), np.ascontiguousarray(wr), loss, level.open_, *level.links
             )
+            level.pivots = np.empty(shape), np.empty(shape)
+            heat_lines.factors(*level.links, *level.pivots)
         self._coarsest = splu(_five_point(self.levels[-1].links))
 
     def solve(self, residual: Array, drop: float = DROP) -> Array | None:
@@ -139,14 +142,14 @@ class HeatCycle:
             assert self._coarsest is not None
             return self._coarsest.solve(b.ravel()).reshape(b.shape)
         x = np.zeros_like(b)
-        heat_lines.r_sweep(*level.links, b, x, True)
-        heat_lines.z_sweep(*level.links, b, x)
+        heat_lines.r_sweep(*level.links, *level.pivots, b, x, True)
+        heat_lines.z_sweep(*level.links, *level.pivots, b, x)
         heat_lines.remainder(*level.links, b, x, level.left)
         coarse = self._visit(k + 1, _sums(level.left, level))
         transfer.prolong_add(coarse, *level.way, level.open_, x)
-        heat_lines.z_sweep(*level.links, b, x)
-        heat_lines.r_sweep(*level.links, b, x, False)
-        heat_lines.r_sweep(*level.links, b, x, True)
+        heat_lines.z_sweep(*level.links, *level.pivots, b, x)
+        heat_lines.r_sweep(*level.links, *level.pivots, b, x, False)
+        heat_lines.r_sweep(*level.links, *level.pivots, b, x, True)
         return x
 
 
