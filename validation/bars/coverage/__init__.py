@@ -1,0 +1,1 @@
+"""Mesh errors of chosen cases on three meshes."""
