@@ -11,6 +11,7 @@ from axicfd.mesh.grid import NOTHING, frozen
 from axicfd.results import axial, cautions, summary, uncertainty
 from axicfd.solver.state import Solution
 
+BARS_APART = 3.0  # half-widths by which wall and bulk temperature must differ for a Nusselt number to mean anything
 WITH_BARS = "stream", "layer", "section", "sensor"  # parts of the tree whose quantities get a mesh error
 
 
@@ -101,6 +102,8 @@ def make_result(
         }
         tree = {**tree, **values}
         half_widths = {name: _curve_half_widths(name, curves) for name in curves[-1]}
+        for name, columns in curves[-1].items():
+            _blank_where_unknown(columns, half_widths[name])
     found = cautions.after(case, layout, {**head, **tree}, curves[-1], solution)
     refused = cautions.refusal(case, layout, solution)
     full = head | ({"refused": refused} if refused else {}) | {"cautions": found} | tree | nested
@@ -116,6 +119,15 @@ def make_result(
 def _leaves(tree: dict[str, Any], word: str) -> dict[str, Any]:
     """The tree of one word of each leaf of an estimate."""
     return {key: leaf[word] if word in leaf else _leaves(leaf, word) for key, leaf in tree.items()}
+
+
+def _blank_where_unknown(columns: dict[str, np.ndarray], half_widths: dict[str, np.ndarray]) -> None:
+    """Empty the heat transfer coefficient and Nusselt number where wall and bulk differ by less than three bars."""
+    wall, bulk = "wetted_wall_temperature_K", "bulk_temperature_K"
+    unknown = np.abs(columns[wall] - columns[bulk]) < BARS_APART * (half_widths[wall] + half_widths[bulk])
+    for name in ("heat_transfer_coefficient_W_m2K", "nusselt"):
+        for table in (columns, half_widths):
+            table[name] = np.where(unknown, np.nan, table[name])
 
 
 def _curve_half_widths(name: str, curves: list[dict[str, dict[str, np.ndarray]]]) -> dict[str, np.ndarray]:
