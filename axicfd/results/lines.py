@@ -4,6 +4,8 @@ import numpy as np
 
 from axicfd.mesh.grid import Array
 
+SAME_PLACE = 1e-12  # share of the length within which a place lies on a face
+
 
 def to_faces(values: Array, zc: Array, z: Array, breaks: tuple[int, ...]) -> tuple[Array, Array]:
     """Values on the axial faces from those of the stations, by cubics that do not reach across the faces `breaks`.
@@ -90,8 +92,11 @@ def extreme(z: Array, values: Array, sign: float) -> tuple[float, float]:
 
 
 def at_place(values: Array, zc: Array, z: Array, breaks: tuple[int, ...], place: float) -> float:
-    """The value at a place along z, by the cubic of its own stretch between breaks; nan where values are."""
+    """The value at a place along z, by the cubic of its own stretch between breaks; nan where values are.
+
+    At a break itself the stretch before it counts.
+    """
     cuts = sorted({0, len(zc), *(b for b in breaks if 0 < b < len(zc))})
-    k = int(np.searchsorted([z[c] for c in cuts[1:-1]], place, side="right"))
+    k = int(np.searchsorted([z[c] for c in cuts[1:-1]], place - SAME_PLACE * z[-1]))
     a, b = cuts[k], cuts[k + 1]
     return float(at_points(zc[a:b], values[a:b], np.array([place]))[0])

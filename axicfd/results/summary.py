@@ -23,6 +23,7 @@ from axicfd.theory import groups
 
 ENTRY_VELOCITY = 0.01  # the peak velocity counts as developed within this share
 ENTRY_NUSSELT = 0.05
+STILL = "nothing flows"  # why some quantities have no value
 STANDARD_GRAVITY = 9.80665  # m/s2, CGPM 1901
 
 
@@ -57,11 +58,11 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
         "coldest_wetted_wall_z_m": _from_start(view, coldest_z),
     }
     if view.mass_flow == 0.0:
-        return {**tree, **walls, "why": {"outlet_temperature_K": "nothing flows"}}
+        return {**tree, **walls, "why": {"outlet_temperature_K": STILL}}
     u, m = view.mean_velocity, view.mass_flow
     reynolds = groups.reynolds(view.density, u, view.diameter, mu)
     prandtl = groups.prandtl(mu, cp, k)
-    why: dict[str, str] = {}
+    why: dict[str, Any] = {}
     bulk_viscosity = fluid.viscosity(view.bulk + t_in)
     gain = float(view.enthalpy[-1] - view.enthalpy[0])
     span = temperature_span(view)
@@ -97,8 +98,13 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
     else:
         why["thermal_entry_length_m"] = "no uniform condition"
     tree["section_thermal_entry_length_m"] = {name: length for name, (length, _) in entries.items()}
+    reasons = {name: reason for name, (_, reason) in entries.items() if reason}
+    if reasons:
+        why["section_thermal_entry_length_m"] = reasons
     if heated == 0.0:
         why["graetz"] = "nothing is heated"
+    if tree["largest_wall_shear_stress_Pa"] is None:
+        why["largest_wall_shear_stress_Pa"] = "too short"
     if tree["thermal_resistance_K_W"] is None:
         why["thermal_resistance_K_W"] = "no heat is taken up"
     tree["why"] = why
@@ -136,7 +142,7 @@ def _surface_peak(solution: Solution) -> float:
     return float(solution.heat.minus[rows, grid.outer].max(where=solid, initial=-np.inf))
 
 
-def _hydrodynamic_entry(solution: Solution, view: StreamView, why: dict[str, str]) -> float | None:
+def _hydrodynamic_entry(solution: Solution, view: StreamView, why: dict[str, Any]) -> float | None:
     key = "hydrodynamic_entry_length_m"
     if not view.fluid.viscosity.is_constant:
         why[key] = "properties vary"
@@ -267,18 +273,21 @@ def _section(k: int, section: PlacedSection, solution: Solution, views: dict[str
         end = i0 if view.mirrored else i1
         bulk[name] = float(view.curves["bulk_temperature_K"][end])
         pressure[name] = float(view.curves["pressure_Pa"][end])
-    return tree | {"end_bulk_temperature_K": bulk, "end_pressure_Pa": pressure, "heat_to_stream_W": taken}
+    tree |= {"end_bulk_temperature_K": bulk, "end_pressure_Pa": pressure, "heat_to_stream_W": taken}
+    if None in bulk.values():
+        tree["why"] = {"end_bulk_temperature_K": STILL, "end_pressure_Pa": STILL}
+    return tree
 
 
-def _sensor(case: Case, solution: Solution, views: dict[str, StreamView], sensor: Any) -> dict[str, float | None]:
-    """Temperature at a sensor, by cubics along z that stop at joints."""
+def _sensor(case: Case, solution: Solution, views: dict[str, StreamView], sensor: Any) -> dict[str, Any]:
+    """Temperature at a sensor, by cubics along z that stop at joints; that of the bulk linearly between faces."""
     grid, heat = solution.grid, solution.heat
     (name,) = views
     view = views[name]
     z = float(np.clip(sensor.z, 0.0, grid.layout.length))
     if sensor.at == "bulk":
         if view.mass_flow == 0.0:
-            return {"temperature_K": None}
+            return {"temperature_K": None, "why": {"temperature_K": STILL}}
         return {"temperature_K": float(np.interp(z, view.curves["z_m"], view.curves["bulk_temperature_K"]))}
     j0, j1 = grid.streams[name]
     if sensor.at == "axis":
@@ -293,7 +302,9 @@ def _sensor(case: Case, solution: Solution, views: dict[str, StreamView], sensor
                 rows = slice(piece.i0, piece.i1)
                 stations[rows] = heat.plus[rows, piece.j0] if side == "inner" else heat.minus[rows, piece.j1]
     value = lines.at_place(stations, grid.zc, grid.z, grid.joints, z)
-    return {"temperature_K": value + view.t_in if np.isfinite(value) else None}
+    if not np.isfinite(value):
+        return {"temperature_K": None, "why": {"temperature_K": "no material there"}}
+    return {"temperature_K": value + view.t_in}
 
 
 # ------------------------------------------------------------------------------------------------ ledger

@@ -106,3 +106,13 @@ def test_at_a_place_by_the_cubic_of_its_own_side():
     assert lines.at_place(values, ZC, Z, (5,), 0.3) == pytest.approx(cubic(0.3), rel=1e-9)
     with_gap = np.where(np.arange(12) < 5, np.nan, ZC)
     assert np.isnan(lines.at_place(with_gap, ZC, Z, (5,), 0.3))
+
+
+def test_at_a_break_the_stretch_before_it_counts():
+    """A sensor where its layer ends used to read the section behind, which has no such layer."""
+    z = np.linspace(0.0, 0.3, 7)
+    zc = 0.5 * (z[1:] + z[:-1])
+    values = np.where(zc < 0.15, 1.0 + zc, np.nan)
+    for place in (z[3], 0.15, 0.15 * (1 + 1e-15)):
+        assert lines.at_place(values, zc, z, (3,), place) == pytest.approx(1.15)
+    assert np.isnan(lines.at_place(values, zc, z, (3,), 0.151))
