@@ -34,7 +34,7 @@ GREYS = (
     "#c8c8c8",
     "#e4e4e4",
 )  # wall layers from inside out, neighbours apart
-HEATED_TINT = "#fbe9d9"
+HEATED_TINT, COOLED_TINT = "#fbe9d9", "#e1ecf6"
 INK = "#222222"
 SOFT_INK = "#777777"
 CURVE_INKS = ("#22436b", "#b4552d")  # dark and light enough apart to read in grey, with line styles on top
@@ -44,7 +44,7 @@ PANELS = (
     ("temperature", ("bulk_temperature_K", "wetted_wall_temperature_K")),
     ("wall heat flux", ("wall_heat_flux_W_m2",)),
     ("Nusselt number", ("nusselt",)),
-    ("pressure in motion", ("pressure_Pa",)),
+    ("pressure above the outlet", ("pressure_Pa",)),
 )
 
 
@@ -154,7 +154,8 @@ def axial_picture(result: Any, stream: str) -> Figure:
     bottom = below + len(panels) * (panel_height + gap)
     tube_axes = figure.add_axes((LEFT, bottom / total, RULER, tube_height / total))
     _prepare_tube(tube_axes, tube, shown)
-    _shade_heated(tube_axes, tube, shown)
+    heat = _heat_taken(result)
+    _shade(tube_axes, tube, shown, heat)
     _draw_layers(tube_axes, tube, shown)
     _layer_edges(tube_axes, tube, shown)
     _centre_line(tube_axes, tube, shown)
@@ -166,7 +167,7 @@ def axial_picture(result: Any, stream: str) -> Figure:
     for number, (title, names) in enumerate(panels):
         bottom -= panel_height + gap
         axes = figure.add_axes((LEFT, bottom / total, RULER, panel_height / total))
-        _shade_heated(axes, tube, shown)
+        _shade(axes, tube, shown, heat)
         _curves(axes, z, columns, names, shown, title)
         axes.set_xlim(*tube_axes.get_xlim())
         if number == len(panels) - 1:
@@ -174,9 +175,9 @@ def axial_picture(result: Any, stream: str) -> Figure:
         else:
             axes.tick_params(bottom=False, labelbottom=False)
             axes.spines["bottom"].set_visible(False)
-    _heading(
-        figure, result, f"{stream}: along the tube; tube above with radius × {stretch}, heated parts shaded"
-    )
+    words = (("heated parts shaded", 1), ("cooled parts shaded blue", -1))
+    shaded = "".join(f", {word}" for word, sign in words if sign in heat.values())
+    _heading(figure, result, f"{stream}: along the tube; tube above with radius × {stretch}{shaded}")
     return figure
 
 
@@ -395,9 +396,7 @@ def _ruler(axes: Axes, tube: Any, shown: Shown) -> None:
     character = 0.0095 * length  # about the width of one on the ruler
     for section in tube.sections:
         z0, z1 = shown.value("length", section.z0), shown.value("length", section.z1)
-        axes.plot(
-            [z0, z1], [line, line], transform=across, color=INK, linewidth=1.0, marker="|", clip_on=False
-        )
+        axes.plot([z0, z1], [line, line], transform=across, color=INK, linewidth=1.0, marker="|", clip_on=False)
         # A name longer than its section goes one line lower, where its neighbours' names are not in the way.
         fits = len(section.name) * character <= z1 - z0
         axes.text(
@@ -438,18 +437,29 @@ def _stream_ends(axes: Axes, result: Any, shown: Shown) -> None:
             )
 
 
-def _is_heated(section: Any) -> bool:
-    """Whether a section exchanges heat with the outside or generates some."""
-    return not section.outside.insulated or any(
-        layer.generated or layer.heat_per_volume for layer in section.layers
-    )
+def _heat_taken(result: Any) -> dict[str, int]:
+    """Section name -> 1 where the tube takes heat in or generates some, -1 where it loses heat, 0 where neither.
+
+    Less than a thousandth of the largest is neither.
+    """
+    heat = {}
+    for section in result.layout.sections:
+        made = sum(
+            layer.generated
+            + layer.heat_per_volume * np.pi * (layer.r_outer**2 - layer.r_inner**2) * (section.z1 - section.z0)
+            for layer in section.layers
+        )
+        heat[section.name] = made + (result.summary["section"][section.name]["heat_in_W"] or 0.0)
+    least = 1e-3 * max(abs(watts) for watts in heat.values())
+    return {name: int(np.sign(watts)) if abs(watts) > least else 0 for name, watts in heat.items()}
 
 
-def _shade_heated(axes: Axes, tube: Any, shown: Shown) -> None:
+def _shade(axes: Axes, tube: Any, shown: Shown, heat: dict[str, int]) -> None:
     for section in tube.sections:
-        if _is_heated(section):
+        if heat[section.name]:
             z = shown.value("length", np.array([section.z0, section.z1]))
-            axes.axvspan(*z, facecolor=HEATED_TINT, edgecolor="none", zorder=0)
+            tint = HEATED_TINT if heat[section.name] > 0 else COOLED_TINT
+            axes.axvspan(*z, facecolor=tint, edgecolor="none", zorder=0)
 
 
 # --- fields and curves --------------------------------------------------------------------------------------
@@ -489,6 +499,7 @@ def _isotherms(
     r_points = np.concatenate([r[:1], (r[1:] + r[:-1]) / 2, r[-1:]])
     values = np.ma.concatenate([temperature[:1], temperature, temperature[-1:]])
     values = np.ma.concatenate([values[:, :1], values, values[:, -1:]], axis=1)
+    contours = []
     for side in (1, -1):
         lines = axes.contour(
             z_points,
@@ -500,10 +511,66 @@ def _isotherms(
             alpha=0.85,
             zorder=3,
         )
-        if side == 1:
-            labels = axes.clabel(lines, fmt=_plain_numbers(), fontsize=9, inline=True, inline_spacing=2)
-            for text in labels:
-                text.set_bbox({"facecolor": "white", "edgecolor": "none", "alpha": 0.7, "pad": 0.6})
+        contours.append(lines)
+    _isotherm_labels(axes, contours)
+
+
+def _isotherm_labels(axes: Axes, contours: list[Any]) -> None:
+    """An upright number on each piece of an isotherm, where none stands yet; none where there is no free place.
+
+    contours : those of the upper half and of its mirror image, which helps out where the upper half is full
+    """
+    to_dots = axes.transData
+    dot = axes.get_figure(root=True).dpi / 72.0  # type: ignore[union-attr]
+    frame = axes.get_window_extent()
+    end = 60 * dot  # the words at the ends of the stream
+    height = 13 * dot
+    taken: list[tuple[float, float, float, float]] = []
+
+    def write(text: str, piece: np.ndarray) -> bool:
+        width = (6.5 * len(text) + 5) * dot
+        for x, y in _from_the_middle(piece, 80):
+            box = (x, y, width, height)
+            inside = abs(y - (frame.y0 + frame.y1) / 2) < (frame.height - height) / 2
+            if not inside or not frame.x0 + end < x < frame.x1 - end or any(_overlap(box, b) for b in taken):
+                continue
+            taken.append(box)
+            z, r = to_dots.inverted().transform((x, y))
+            axes.text(
+                z,
+                r,
+                text,
+                fontsize=9,
+                color=INK,
+                ha="center",
+                va="center",
+                zorder=5.5,
+                bbox={"facecolor": "white", "edgecolor": "none", "alpha": 0.8, "pad": 0.6},
+            )
+            return True
+        return False
+
+    for number, level in enumerate(contours[0].levels):
+        halves = [lines.get_paths()[number].to_polygons(closed_only=False) for lines in contours]
+        for pieces in zip(*halves, strict=False):
+            for piece in pieces:
+                if write(f"{level:.10g}", to_dots.transform(piece)):
+                    break
+
+
+def _from_the_middle(path: np.ndarray, count: int) -> np.ndarray:
+    """Up to `count` points of a path (n, 2), evenly spread along it, those near its middle first."""
+    if len(path) < 2:
+        return path
+    along = np.concatenate([[0.0], np.cumsum(np.hypot(*np.diff(path, axis=0).T))])
+    even = np.linspace(0.0, along[-1], count)
+    points = np.column_stack([np.interp(even, along, path[:, 0]), np.interp(even, along, path[:, 1])])
+    return points[np.argsort(np.abs(even - along[-1] / 2), kind="stable")]
+
+
+def _overlap(one: tuple[float, float, float, float], other: tuple[float, float, float, float]) -> bool:
+    """Whether two boxes (x, y of the centre, width, height) touch."""
+    return abs(one[0] - other[0]) < (one[2] + other[2]) / 2 and abs(one[1] - other[1]) < (one[3] + other[3]) / 2
 
 
 def _present_columns(columns: dict[str, Any], names: tuple[str, ...]) -> list[str]:
@@ -521,12 +588,12 @@ def _sided_labels(name: str) -> tuple[str, str]:
     return f"inner {label}", f"outer {label}"
 
 
-def _curves(
-    axes: Axes, z: np.ndarray, columns: dict[str, Any], names: list[str], shown: Shown, title: str
-) -> None:
+def _curves(axes: Axes, z: np.ndarray, columns: dict[str, Any], names: list[str], shown: Shown, title: str) -> None:
     row = curve_row(names[0])
     unit = shown.unit(row.kind) if row.kind else row.unit
     values = [shown.value(row.kind, np.asarray(columns[name], float)) for name in names]
+    if names == ["pressure_Pa"]:  # the small drop would drown in the absolute pressure
+        values = [value - np.nanmin(value[[0, -1]]) for value in values]
     styles = ("-", (0, (5, 2)), (0, (1, 1.2)))
     for number, (name, value) in enumerate(zip(names, values, strict=True)):
         axes.plot(

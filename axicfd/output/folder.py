@@ -67,6 +67,11 @@ def half_width_name(stream: str) -> str:
 def refuse_unusable(path: Path, replace: bool) -> None:
     """Raise ResultsFolderError if the folder could not be written; asked before the solve and after."""
     if not path.exists() and not path.is_symlink():
+        parent = next((above for above in path.absolute().parents if above.exists()), Path("/"))
+        if not parent.is_dir() or not os.access(parent, os.W_OK):
+            raise ResultsFolderError(
+                f"cannot write the folder {path}: {parent} cannot be written to. Give another place with --out."
+            )
         return
     if not path.is_dir() or path.is_symlink():
         raise ResultsFolderError(f"{path} exists and is not a folder. Give another place with --out, or move it away.")

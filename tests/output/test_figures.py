@@ -112,3 +112,25 @@ def test_equal_pictures_make_equal_bytes(result, tmp_path):
         (tmp_path / name).mkdir()
         written.append(figures.draw_all(result, tmp_path / name, ".svg")[0].read_bytes())
     assert written[0] == written[1]
+
+
+def test_isotherm_numbers_stand_apart(result):
+    figure = figures.temperature_picture(result)
+    figure.draw_without_rendering()
+    numbers = [text for text in figure.axes[0].texts if text.get_text().isdigit()]
+    assert len(numbers) > 3
+    boxes = [text.get_window_extent() for text in numbers]
+    assert not any(one.overlaps(other) for i, one in enumerate(boxes) for other in boxes[:i])
+
+
+def test_cooled_parts_are_not_shown_as_heated():
+    result = made_up()
+    result.summary["section"]["jacket"]["heat_in_W"] = -100.0
+    figure = figures.axial_picture(result, "syrup")
+    assert any("cooled parts shaded blue" in word and "heated" not in word for word in texts(figure))
+
+
+def test_pressure_is_drawn_from_the_outlet(result):
+    pressure = figures.axial_picture(result, "syrup").axes[-1].lines[0].get_ydata()
+    assert pressure[-1] == pytest.approx(0.0, abs=1e-6)
+    assert pressure[0] == pytest.approx(4000.0)

@@ -127,3 +127,9 @@ def test_a_broken_file_is_named(result, tmp_path, name):
 
 def test_spaces_in_names_become_dashes():
     assert folder.file_name("thick syrup") == "thick-syrup"
+
+
+def test_a_place_that_cannot_be_written_to_is_said_before_the_solve(tmp_path, monkeypatch):
+    monkeypatch.setattr("axicfd.output.folder.os.access", lambda *_: False)
+    with pytest.raises(ResultsFolderError, match="cannot be written to"):
+        folder.refuse_unusable(tmp_path / "missing" / "r", replace=False)
