@@ -52,7 +52,8 @@ def estimate(values: list[float], singular: bool = False) -> Estimate:
     older, last = medium - coarse, fine - medium
     size = max(abs(v) for v in values[-3:])
     if max(abs(older), abs(last)) <= ROUND_OFF * size:
-        return Estimate(fine, 0.0, None, EXACT)
+        # what changes at all is known to no less than round-off: a small pressure drop lies on top of an atmosphere
+        return Estimate(fine, ROUND_OFF * size if older or last else 0.0, None, EXACT)
     order = log2(older / last) if older * last > 0.0 else None
     mixed = SAFE * abs(-5.0 * fine + 6.0 * medium - coarse) / 3.0  # from the limit of value + a h + b h^2
     if singular:
