@@ -67,20 +67,28 @@ class Climb:
     seconds: float
 
 
+PATIENCE = 300.0  # seconds of one processor that a case may take
+
+
 class NotConverged(Exception):
-    """A mesh that the tool would print no mesh error for."""
+    """A mesh that does not converge, so that no mesh error is printed; or a case that takes too long."""
 
 
 def climb(case: Case, more: int = 0) -> Climb:
     """The trees of the meshes that the tool solves in full, and of `more` halvings beyond."""
-    begun = time.perf_counter()
+    begun, busy = time.perf_counter(), time.process_time()
     place = layout(case)
     meshes = family(case, place)
     solution, trees = None, []
+
+    def not_for_ever(iteration: int, residual: float) -> None:
+        if time.process_time() - busy > PATIENCE:
+            raise NotConverged(f"level {level}: {residual:.1e} after {PATIENCE:.0f} s")
+
     for level in range(LEVELS - 1, -1 - more, -1):
         counts = level < NESTED
         below = case.solve.stop_below if counts else max(START_BELOW, case.solve.stop_below)
-        solution = solve_on(case, meshes.grid(level), solution, below)
+        solution = solve_on(case, meshes.grid(level), solution, below, not_for_ever)
         if not counts:
             solution = None if solution.stop_reason == "diverged" else solution
             continue

@@ -57,7 +57,7 @@ def tube(
     dissipation: bool = False,
     at_most: int | None = None,
 ) -> Case:
-    """A case; diameter [mm], inlet [degC]. Sensors on the axis, in the bulk and outside at 30, 55, 80 % of the length."""
+    """A case; diameter [mm], inlet [degC]. Sensors on the axis, in the bulk, outside at 30, 55, 80 % of the length."""
     mu = liquid.viscosity
     law = f'{{ at = "{inlet} degC", value = "{mu:.8g} Pa s", exponent = "{liquid.falls:.8g} 1/K" }}'
     viscosity = law if liquid.falls else f'"{mu:.8g} Pa s"'

@@ -12,6 +12,7 @@ from axicfd.results.result import Result
 from validation.bars import study
 from validation.bars.classes import CLASSES, SMOOTH, cases
 from validation.bars.limits import MESHES, TRIPLES
+from validation.bars.tube import Liquid, Stretch, tube
 from validation.common import Row
 
 HERE = Path(__file__).parent
@@ -68,8 +69,29 @@ def check() -> list[Row]:
         rows.append(_least(f"limits inside, {group}", here.inside, CLASS_INSIDE))
         fattest = FATTEST if group == SMOOTH else None
         rows.append(_most(f"median bar over error, {group}", here.over_error, fattest))
+    rows += exact()
     rows.append(_most("median bar on the chosen mesh, share of the scale", chosen.half, HALF))
     rows.append(_most("90th percentile of the bar on the chosen mesh, share of the scale", chosen.ninety, NINETY))
+    return rows
+
+
+def exact() -> list[Row]:
+    """Developed flow from inlet to outlet: the bars of the three meshes hold the closed form."""
+    liquid, reynolds, diameter, length = Liquid(), 100.0, 0.01, 0.2
+    case = tube("developed flow", liquid, reynolds, 1e3 * diameter, [Stretch(1e3 * length)], profile="developed")
+    mean = reynolds * liquid.viscosity / (liquid.density * diameter)
+    wanted = {
+        "pressure_drop_Pa": 32.0 * liquid.viscosity * mean * length / diameter**2,
+        "largest_wall_shear_stress_Pa": 8.0 * liquid.viscosity * mean / diameter,
+    }
+    rows = []
+    for mesh in MESHES:
+        result = solve(case.replace({"mesh.at_most": mesh}))
+        bars = result.summary["numerical_uncertainty"]["stream"]["liquid"]
+        for key, value in wanted.items():
+            found = _number(result, f"stream.liquid.{key}")
+            what = f"{key} of developed flow, at most {mesh} cells: allowed is its bar"
+            rows.append(Row(what, found, value, bars[key] / value, "Hagen-Poiseuille"))
     return rows
 
 
