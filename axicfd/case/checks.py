@@ -421,7 +421,9 @@ def _settles(outside: Outside) -> bool:
 
 def _settled_inside(case: Case, sections: tuple[PlacedSection, ...], s: int, layer: PlacedLayer) -> bool:
     if layer.kind == "stream":
-        return not case.stream[layer.material].is_still
+        stream = case.stream[layer.material]
+        forgotten = all(getattr(stream, flow) is None for flow in stream.FLOWS)  # said by itself
+        return forgotten or not stream.is_still
     ends = [end for end, at in (("first", 0), ("last", len(sections) - 1)) if at == s]
     return any(_settles(case.ends.of(end, layer.name)) for end in ends)
 

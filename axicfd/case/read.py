@@ -131,6 +131,9 @@ def _syntax_mistake(file: str | None, text: str, why: str) -> Mistake:
         and "Cannot overwrite" not in why
     ):
         instead = f'A quantity or a word stands in quotes: "{after.partition("#")[0].strip()}".'
+    elif "illegal character '\\n'" in why.lower():
+        why = "a text has no closing quote"
+        instead = f"Write {read.partition('#')[0].rstrip()}{after[:1]}."
     elif "Cannot overwrite" in why or "twice" in why or "declared" in why:
         instead = (
             "The same key or table stands twice; for several sections or layers write [[section]], [[layer]]."

@@ -412,3 +412,10 @@ def test_mistakes_in_python_name_the_key_without_a_line():
         )
     assert all(mistake.line is None and mistake.file is None for mistake in caught.value.mistakes)
     assert "`stream.w.reynolds = 5`" in str(caught.value)
+
+
+def test_a_forgotten_flow_is_one_mistake():
+    with pytest.raises(InputError) as raised:
+        load(AIR.replace("reynolds = 500\n", ""))
+    assert "needs its flow" in str(raised.value)
+    assert len(raised.value.mistakes) == 1

@@ -280,3 +280,10 @@ def test_a_case_without_sections_or_streams():
 )
 def test_wrong_shapes_are_mistakes_and_no_crash(text):
     mistakes_in(text)
+
+
+def test_a_missing_closing_quote_is_said():
+    text = BASE.replace('mass_flow         = "4 g/s"', 'mass_flow = "4 g/s  # what the pump gives')
+    wanted = 'line 7: is not TOML: a text has no closing quote .* Write mass_flow = "4 g/s"'
+    with pytest.raises(InputError, match=wanted):
+        load(text)
