@@ -291,8 +291,8 @@ class Flow:
         continuity.correct(x, du, dv, m.open_p, self.relax_p, self.u, self.v, self.p)
         self.refresh_mass()
 
-    def close_continuity(self) -> None:
-        """Correct the velocities until mass is conserved to round-off, by the gradient of a potential.
+    def close_continuity(self, to: float = CLOSED) -> None:
+        """Correct the velocities until no more than a share `to` of the mass flow is missing, by the gradient of a potential.
 
         The pressure is left as it is; what is missing is of the size of the residual.
         """
@@ -302,7 +302,7 @@ class Flow:
         du[0] = 0.0
         for _ in range(CLOSING_PASSES):
             defect = continuity.mass_defect(self.mz, self.mr, m.open_p, self.fc, top.b)
-            if defect <= CLOSED * self.mass_flow:
+            if defect <= to * self.mass_flow:
                 return
             continuity.coefficients(self.density, m.area, m.ring, m.dz, du, dv, top.cz, top.cr)
             x = self._correction.solve(drop=1e-4, cycles=30)
