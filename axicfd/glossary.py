@@ -140,7 +140,7 @@ SUMMARY = (
         "thermal resistance",
         "R",
         "K/W",
-        "(hottest solid - inlet temperature) / heat taken up",
+        "(hottest solid - inlet temperature) / heat brought in",
     ),
     Reported("mean_residence_s", "mean residence time", "t", "s", "fluid volume / volume flow"),
     Reported(

@@ -128,9 +128,16 @@ def can_hurt(result: Any) -> bool:
 def _print_effort(out: Console, summary: dict[str, Any], where: str) -> None:
     cells = f"{summary['cells']:,}".replace(",", " ")
     out.print(
-        f"{cells} cells, {summary['iterations']} iterations, residual {summary['residual']:.1e}, "
+        f"{cells} cells{_counts(summary)}, {summary['iterations']} iterations, residual {summary['residual']:.1e}, "
         f"{summary['seconds']:.1f} s; results in {where}"
     )
+
+
+def _counts(summary: dict[str, Any]) -> str:
+    """The counts of the finest mesh, all layers: " (56 across, 704 along)"."""
+    if "cells_across" not in summary:
+        return ""
+    return f" ({summary['cells_across']} across, {summary['cells_along']} along)"
 
 
 def _fact(value: Any) -> str:

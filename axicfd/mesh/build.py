@@ -12,6 +12,7 @@ import numpy as np
 
 from axicfd.case.layout import Layout, PlacedSection
 from axicfd.case.model import Case
+from axicfd.errors import bad_input
 from axicfd.mesh.grid import NOTHING, SOLID, STREAM, Array, Grid, Piece, frozen
 from axicfd.mesh.spacing import Map, graded_map, length_weight, stretch_for_end_cell
 
@@ -119,6 +120,11 @@ def family(case: Case, layout: Layout) -> Family:
             end_cell = (END_CELL_SINGULAR if step else END_CELL) * radius
             stretch = stretch_for_end_cell(cells, length, end_cell, at_start, at_end)
         axial.append(Segment(section.z0, section.z1, cells, graded_map(stretch, at_start, at_end)))
+    total = across * sum(s.cells for s in axial)
+    if "at_most" in choice.model_fields_set and total > choice.at_most:
+        counts = f"{across} x {sum(s.cells for s in axial)} cells"
+        allowed = f"is less than the {counts} that {'`radial` and `axial` ask' if choice.axial else 'this case needs'} for"
+        raise bad_input("mesh.at_most", choice.at_most, allowed, f"Write at_most = {total} or more, or leave it out.")
     return Family(layout, radial, tuple(axial), places)
 
 

@@ -17,11 +17,27 @@ def to_faces(values: Array, zc: Array, z: Array, breaks: tuple[int, ...]) -> tup
     cuts = sorted({0, len(zc), *(b for b in breaks if 0 < b < len(zc))})
     before, after = np.empty((len(z), *values.shape[1:])), np.empty((len(z), *values.shape[1:]))
     for a, b in zip(cuts[:-1], cuts[1:], strict=True):
-        inside = at_points(zc[a:b], values[a:b], z[a : b + 1])
+        inside = _without_overshoot(at_points(zc[a:b], values[a:b], z[a : b + 1]), values[a:b])
         after[a:b] = inside[:-1]
         before[a + 1 : b + 1] = inside[1:]
     before[0], after[-1] = after[0], before[-1]
     return before, after
+
+
+def _without_overshoot(faces: Array, stations: Array) -> Array:
+    """Face values kept as close to the range of the two stations beside them as the curvature there allows.
+
+    A smooth extreme lies beyond both neighbours by up to an eighth of the second difference; at a kink, as at the end of a
+    ramp, the second difference of one side vanishes and the cubic may not swing past. The end faces stay as they are.
+    """
+    if len(stations) < 4:
+        return faces
+    low, high = np.minimum(stations[1:], stations[:-1]), np.maximum(stations[1:], stations[:-1])
+    bend = np.abs(np.diff(stations, n=2, axis=0))
+    room = 0.25 * np.minimum(np.concatenate([bend[:1], bend]), np.concatenate([bend, bend[-1:]]))
+    faces = faces.copy()
+    faces[1:-1] = np.clip(faces[1:-1], low - room, high + room)
+    return faces
 
 
 def at_points(x: Array, y: Array, at: Array) -> Array:

@@ -80,6 +80,8 @@ def make_result(
         "residual": solution.residual,
         "seconds": seconds,
         "cells": solution.grid.cells,
+        "cells_across": solution.grid.nr,
+        "cells_along": solution.grid.nz,
         "version": version,
     }
     tree, half_widths = trees[-1], {}

@@ -14,7 +14,7 @@ from axicfd.case.layout import Layout, PlacedSection
 from axicfd.case.model import Case
 from axicfd.mesh.grid import SOLID
 from axicfd.results import lines
-from axicfd.results.axial import StreamView, temperature_span
+from axicfd.results.axial import StreamView
 from axicfd.solver import developed
 from axicfd.solver.energy import ONE_MILLIKELVIN
 from axicfd.solver.flow import stream_mesh
@@ -23,6 +23,7 @@ from axicfd.theory import groups
 
 ENTRY_VELOCITY = 0.01  # the peak velocity counts as developed within this share
 ENTRY_NUSSELT = 0.05
+TRICKLE_OF_HEAT = 0.01  # share of all heats below which what is brought in is no base for a thermal resistance
 STILL = "nothing flows"  # why some quantities have no value
 STANDARD_GRAVITY = 9.80665  # m/s2, CGPM 1901
 
@@ -65,7 +66,7 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
     why: dict[str, Any] = {}
     bulk_viscosity = fluid.viscosity(view.bulk + t_in)
     gain = float(view.enthalpy[-1] - view.enthalpy[0])
-    span = temperature_span(view)
+    brought = _heat_brought_in(layout, solution)
     body = solution.heat.t[solution.grid.kind == SOLID]
     peak = max(float(body.max()), _surface_peak(solution)) if body.size else hottest
     tree |= {
@@ -84,7 +85,7 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
         "heat_gain_W": gain,
         **walls,
         "largest_wall_shear_stress_Pa": view.largest_shear(),
-        "thermal_resistance_K_W": peak / gain if abs(peak) > 1e-9 * span and abs(gain) > 1e-12 else None,
+        "thermal_resistance_K_W": peak / brought if peak > 0.0 and brought else None,
         "mean_residence_s": view.density * view.area * layout.length / m,
         "hydrodynamic_entry_length_m": _hydrodynamic_entry(solution, view, why),
         "thermal_entry_length_m": None,
@@ -106,9 +107,18 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
     if tree["largest_wall_shear_stress_Pa"] is None:
         why["largest_wall_shear_stress_Pa"] = "too short"
     if tree["thermal_resistance_K_W"] is None:
-        why["thermal_resistance_K_W"] = "no heat is taken up"
+        why["thermal_resistance_K_W"] = "no heat is brought in"
     tree["why"] = why
     return tree
+
+
+def _heat_brought_in(layout: Layout, solution: Solution) -> float:
+    """[W] heat that sections, generation and end faces bring in; 0 where it is a trickle beside what leaves."""
+    grid, heat = solution.grid, solution.heat
+    parts = [float(heat.outside[grid.section == k].sum()) for k in range(len(layout.sections))]
+    parts += [float(heat.generated.sum()), float(heat.first.sum()), float(heat.last.sum())]
+    brought = sum(part for part in parts if part > 0.0)
+    return brought if brought > TRICKLE_OF_HEAT * sum(abs(part) for part in parts) else 0.0
 
 
 def _is_heated(section: PlacedSection) -> bool:

@@ -116,3 +116,19 @@ def test_at_a_break_the_stretch_before_it_counts():
     for place in (z[3], 0.15, 0.15 * (1 + 1e-15)):
         assert lines.at_place(values, zc, z, (3,), place) == pytest.approx(1.15)
     assert np.isnan(lines.at_place(values, zc, z, (3,), 0.151))
+
+
+def test_no_overshoot_at_the_ends_of_a_ramp():
+    zc = np.linspace(0.0, 1.0, 41)
+    z = np.concatenate([[-0.0125], 0.5 * (zc[1:] + zc[:-1]), [1.0125]])
+    ramp = np.clip((zc - 0.41) / 0.2, 0.0, 1.0)
+    before, after = lines.to_faces(ramp, zc, z, ())
+    assert before.min() > -1e-12 and before.max() < 1.0 + 1e-12
+    assert (before == after).all()
+
+
+def test_a_smooth_extreme_between_two_stations_is_kept():
+    zc = np.linspace(-1.0, 1.0, 40)  # no station at 0
+    z = np.concatenate([[-1.1], 0.5 * (zc[1:] + zc[:-1]), [1.1]])
+    before, _ = lines.to_faces(1.0 - zc**2, zc, z, ())
+    assert before[20] == pytest.approx(1.0, abs=1e-12)
