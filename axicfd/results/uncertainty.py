@@ -20,6 +20,7 @@ SECOND_ORDER = 3.2, 5.0  # ratio of successive changes that counts as second ord
 SAFE, CAREFUL = 1.25, 3.0  # Roache's safety factors
 LEAST_OF_CORRECTION = 0.1  # the half-width of an extrapolated value is at least this share of the correction
 LEAST_OF_COARSER = 0.05  # and of the half-width that one mesh less would have given
+LEAST_OF_SETTLED = 0.05  # share of the correction where all changes between four meshes are those of second order
 ROUND_OFF = 1e-11  # changes below this share of the value are round-off
 
 EXTRAPOLATED, FINEST, SINGULAR, OSCILLATES, EXACT = "extrapolated", "finest", "singular", "oscillates", "exact"
@@ -60,17 +61,36 @@ def estimate(values: list[float], singular: bool = False) -> Estimate:
         return Estimate(fine, max(SAFE * abs(last), mixed), order, SINGULAR)
     if order is None:
         return Estimate(fine, max(CAREFUL * max(abs(last), abs(older) / 4.0), mixed), None, OSCILLATES)
-    if SECOND_ORDER[0] <= older / last <= SECOND_ORDER[1]:
+    if _is_second_order(older, last):
         value = (4.0 * fine - medium) / 3.0
         before = (4.0 * medium - coarse) / 3.0
-        half = SAFE * max(abs(value - before), LEAST_OF_CORRECTION * abs(value - fine))
+        moved = abs(value - before)
+        half = SAFE * max(moved, LEAST_OF_CORRECTION * abs(value - fine))
         if len(values) > 3:
-            coarser = estimate(values[:-1], singular).half_width
-            half = max(half, LEAST_OF_COARSER * (coarser or 0.0))
+            if _is_second_order(coarse - values[-4], older):
+                left = _left(before - (4.0 * coarse - values[-4]) / 3.0, moved)
+                half = SAFE * max(left, LEAST_OF_SETTLED * abs(value - fine))
+            else:
+                coarser = estimate(values[:-1], singular).half_width
+                half = max(half, LEAST_OF_COARSER * (coarser or 0.0))
         return Estimate(value, half, order, EXTRAPOLATED)
     # here the observed order is not plausible; first order of a place nobody knows of may hide behind it
     clipped = min(max(order, 1.0), 2.0)
     return Estimate(fine, max(CAREFUL * abs(last) / (2.0**clipped - 1.0), mixed), order, FINEST)
+
+
+def _is_second_order(older: float, last: float) -> bool:
+    """Whether two successive changes have the ratio of second order; written without a division, `last` may be zero."""
+    return older * last > 0.0 and SECOND_ORDER[0] * abs(last) <= abs(older) <= SECOND_ORDER[1] * abs(last)
+
+
+def _left(moved_before: float, moved: float) -> float:
+    """What an extrapolated value has still to go, from how far its last two halvings moved it.
+
+    As a geometric series of their ratio, which is not trusted to be more than 4 although 8 or 16 is what smooth fields
+    give; and no more than the last move, where the ratio is 2 or less.
+    """
+    return moved / max(1.0, min(abs(moved_before) / moved, 4.0) - 1.0) if moved else 0.0
 
 
 def grid_convergence_index(values: tuple[float, float, float], ratios: tuple[float, float]) -> dict[str, float]:

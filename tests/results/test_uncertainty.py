@@ -120,6 +120,25 @@ def test_a_lucky_change_does_not_make_a_bar_vanish():
     assert 0.05 * less > 1.25 * 0.1 * 0.005
 
 
+def test_four_meshes_of_second_order_tell_what_is_left():
+    """Errors h^2 + h^4 / 8: the extrapolated value moves by a sixteenth each time; a ratio of 4 at most is trusted."""
+    values = [LIMIT + h**2 + h**4 / 8 for h in (1.0, 0.5, 0.25, 0.125)]
+    value, before = (4.0 * values[3] - values[2]) / 3.0, (4.0 * values[2] - values[1]) / 3.0
+    left = 1.25 * abs(value - before) / 3.0
+    correction = 1.25 * 0.05 * abs(value - values[3])
+    assert estimate(values).half_width == pytest.approx(max(left, correction))
+    assert abs(value - LIMIT) < estimate(values).half_width < 0.5 * estimate(values[1:]).half_width
+
+
+def test_a_value_that_still_moves_keeps_its_last_move():
+    """Second order in all changes, but the extrapolated value moves as far as before."""
+    values = [1.0 + 0.16, 1.0 + 0.04, 1.0 + 0.01, 1.0 + 0.0028]
+    moved = [(4.0 * b - a) / 3.0 for a, b in zip(values[:-1], values[1:], strict=True)]
+    found = estimate(values)
+    assert abs(moved[1] - moved[0]) < abs(moved[2] - moved[1])
+    assert found.half_width == pytest.approx(1.25 * abs(moved[2] - moved[1]))
+
+
 @pytest.mark.parametrize(
     "order, factor",
     [(1.6, 3.0 / (2.0**1.6 - 1.0)), (3.0, 3.0 / 3.0), (0.5, 3.0)],
