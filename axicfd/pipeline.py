@@ -10,13 +10,13 @@ from typing import Any
 
 from axicfd.case.layout import layout
 from axicfd.case.model import Case
-from axicfd.errors import RefusedModel
 from axicfd.mesh.build import LEVELS, family
 from axicfd.results import cautions
 from axicfd.results.axial import stream_view
 from axicfd.results.result import Result, make_result
 from axicfd.solver.solve import solve_on
 from axicfd.solver.state import Solution
+from axicfd.solver.warm_up import warm_up
 from axicfd.version import VERSION
 
 START_BELOW = 1e-5  # residual at which a coarse mesh that only gives a start hands over to the next one
@@ -53,10 +53,9 @@ def solve(case: Case, on_progress: OnProgress | None = None, *, halvings: int = 
     Raises `RefusedModel` where the laminar model is known not to hold before anything is solved. A solve that does not
     converge is a Result with `converged` False.
     """
+    cautions.before(case)  # raises where the model is refused
+    warm_up()
     begun = time.perf_counter()
-    for found in cautions.before(case):
-        if found.get("refused"):
-            raise RefusedModel(found["text"])
     place = layout(case)
     meshes = family(case, place)
     levels = LEVELS + halvings

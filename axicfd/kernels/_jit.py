@@ -71,3 +71,8 @@ if CACHE_FOLDER is not None:
 def kernel(function):
     """Compile a kernel on first use."""
     return numba.njit(cache=CACHE_FOLDER is not None, **OPTIONS)(function)
+
+
+def is_warm() -> bool:
+    """Whether kernels of this version lie compiled in the cache."""
+    return CACHE_FOLDER is not None and any(CACHE_FOLDER.rglob("*.nbi"))

@@ -44,7 +44,10 @@ def run(arguments: argparse.Namespace) -> int:
 
     from axicfd.cli.progress import Progress
     from axicfd.pipeline import solve
+    from axicfd.solver.warm_up import is_cold
 
+    if is_cold():
+        print("compiling the numerical kernels, once on this machine: half a minute or so", file=sys.stderr, flush=True)
     progress = Progress(shown_units(case))
     try:
         result = solve(case, on_progress=progress)
