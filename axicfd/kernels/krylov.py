@@ -31,6 +31,24 @@ def orthogonalise(basis, k, w, h):
 
 
 @kernel
+def rotate(column, turns, k, g):
+    """Bring column k of the Hessenberg matrix to triangular form by plane rotations, and the right-hand side g with it.
+
+    column (m + 1,) is overwritten; turns (m, 2) holds cosine and sine of every rotation so far and receives one more.
+    Returns the norm of the residual.
+    """
+    for i in range(k):
+        c, s = turns[i, 0], turns[i, 1]
+        column[i], column[i + 1] = c * column[i] + s * column[i + 1], c * column[i + 1] - s * column[i]
+    size = np.sqrt(column[k] ** 2 + column[k + 1] ** 2)
+    c, s = (column[k] / size, column[k + 1] / size) if size > 0.0 else (1.0, 0.0)
+    turns[k, 0], turns[k, 1] = c, s
+    column[k], column[k + 1] = size, 0.0
+    g[k], g[k + 1] = c * g[k], -s * g[k]
+    return abs(g[k + 1])
+
+
+@kernel
 def combine(basis, y, k, x):
     """x = the sum of y[i] times direction i, for i < k."""
     for j in range(len(x)):

@@ -92,3 +92,18 @@ def prolong_add(coarse, zi, zw, ri, rw, open_, fine):
             low = coarse[a, c] + rw[j] * (coarse[a, d] - coarse[a, c])
             high = coarse[b, c] + rw[j] * (coarse[b, d] - coarse[b, c])
             fine[i, j] += open_[i, j] * (low + zw[i] * (high - low))
+
+
+@kernel
+def sums(values, rows, columns, total):
+    """Sums over joined cells: values (nz, nr); rows, columns: first fine station and ring of each coarse cell of `total`."""
+    nz, nr = values.shape
+    for a in range(len(rows)):
+        i1 = rows[a + 1] if a + 1 < len(rows) else nz
+        for b in range(len(columns)):
+            total[a, b] = 0.0
+        for i in range(rows[a], i1):
+            for b in range(len(columns)):
+                j1 = columns[b + 1] if b + 1 < len(columns) else nr
+                for j in range(columns[b], j1):
+                    total[a, b] += values[i, j]

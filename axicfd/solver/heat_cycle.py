@@ -119,19 +119,16 @@ class HeatCycle:
         size = krylov.norm(r)
         basis = np.empty((STEPS + 1, len(r)))
         basis[0] = r / size
-        h = np.zeros((STEPS + 1, STEPS))
-        y: Any = np.zeros(0)
+        columns, turns, g = np.zeros((STEPS, STEPS + 1)), np.zeros((STEPS, 2)), np.zeros(STEPS + 1)
+        g[0] = size
         k = 0
         for k in range(1, STEPS + 1):
             w = self._matrix @ self._visit(0, basis[k - 1].reshape(shape)).ravel()
-            krylov.orthogonalise(basis, k - 1, w, column := np.zeros(STEPS + 1))
-            h[:, k - 1] = column
-            rhs = np.zeros(k + 1)
-            rhs[0] = size
-            y = np.linalg.lstsq(h[: k + 1, :k], rhs, rcond=None)[0]
+            krylov.orthogonalise(basis, k - 1, w, columns[k - 1])
             self.steps += 1
-            if not np.linalg.norm(rhs - h[: k + 1, :k] @ y) > goal:
+            if not krylov.rotate(columns[k - 1], turns, k - 1, g) > goal:
                 break
+        y = np.linalg.lstsq(columns[:k, :k].T, g[:k], rcond=None)[0]
         u = np.empty_like(r)
         krylov.combine(basis, y, k, u)
         return self._visit(0, u.reshape(shape)).ravel()
@@ -184,7 +181,9 @@ def _within(
 
 def _sums(values: Array, level: _Level) -> Array:
     """Sums over the fine cells of each coarse cell."""
-    return np.add.reduceat(np.add.reduceat(values, level.rows, axis=0), level.columns, axis=1)
+    total = np.empty((len(level.rows), len(level.columns)))
+    transfer.sums(values, level.rows, level.columns, total)
+    return total
 
 
 def _means(values: Array, level: _Level) -> Array:

@@ -60,3 +60,11 @@ def test_prolonged_changes_are_bilinear():
     open_[3, 1] = 0.0
     transfer.prolong_add(coarse, *neighbours(fine_z, coarse_z), *neighbours(fine_r, coarse_r), open_, fine)
     assert fine == pytest.approx(1.0 + expected * open_, rel=1e-14)
+
+
+def test_sums_over_joined_cells_of_any_size():
+    values = np.random.default_rng(5).normal(size=(7, 5))
+    rows, columns = np.array([0, 2, 3, 5]), np.array([0, 1, 3])
+    total = np.empty((4, 3))
+    transfer.sums(values, rows, columns, total)
+    np.testing.assert_allclose(total, np.add.reduceat(np.add.reduceat(values, rows, axis=0), columns, axis=1))
