@@ -20,7 +20,8 @@ SECOND_ORDER = 3.2, 5.0  # ratio of successive changes that counts as second ord
 SAFE, CAREFUL = 1.25, 3.0  # Roache's safety factors
 LEAST_OF_CORRECTION = 0.1  # the half-width of an extrapolated value is at least this share of the correction
 LEAST_OF_COARSER = 0.05  # and of the half-width that one mesh less would have given
-LEAST_OF_SETTLED = 0.05  # share of the correction where all changes between four meshes are those of second order
+SETTLED = 3.4, 4.8  # the ratio on coarser meshes that, with it on the finest, makes four meshes agree on second order
+LEAST_OF_SETTLED = 0.05  # share of the correction where they do
 ROUND_OFF = 1e-11  # changes below this share of the value are round-off
 
 EXTRAPOLATED, FINEST, SINGULAR, OSCILLATES, EXACT = "extrapolated", "finest", "singular", "oscillates", "exact"
@@ -61,13 +62,13 @@ def estimate(values: list[float], singular: bool = False) -> Estimate:
         return Estimate(fine, max(SAFE * abs(last), mixed), order, SINGULAR)
     if order is None:
         return Estimate(fine, max(CAREFUL * max(abs(last), abs(older) / 4.0), mixed), None, OSCILLATES)
-    if _is_second_order(older, last):
+    if _is_within(SECOND_ORDER, older, last):
         value = (4.0 * fine - medium) / 3.0
         before = (4.0 * medium - coarse) / 3.0
         moved = abs(value - before)
         half = SAFE * max(moved, LEAST_OF_CORRECTION * abs(value - fine))
         if len(values) > 3:
-            if _is_second_order(coarse - values[-4], older):
+            if _is_within(SETTLED, coarse - values[-4], older):
                 left = _left(before - (4.0 * coarse - values[-4]) / 3.0, moved)
                 half = SAFE * max(left, LEAST_OF_SETTLED * abs(value - fine))
             else:
@@ -79,9 +80,9 @@ def estimate(values: list[float], singular: bool = False) -> Estimate:
     return Estimate(fine, max(CAREFUL * abs(last) / (2.0**clipped - 1.0), mixed), order, FINEST)
 
 
-def _is_second_order(older: float, last: float) -> bool:
-    """Whether two successive changes have the ratio of second order; written without a division, `last` may be zero."""
-    return older * last > 0.0 and SECOND_ORDER[0] * abs(last) <= abs(older) <= SECOND_ORDER[1] * abs(last)
+def _is_within(ratios: tuple[float, float], older: float, last: float) -> bool:
+    """Whether two successive changes have a ratio in a range; written without a division, `last` may be zero."""
+    return older * last > 0.0 and ratios[0] * abs(last) <= abs(older) <= ratios[1] * abs(last)
 
 
 def _left(moved_before: float, moved: float) -> float:

@@ -67,7 +67,7 @@ class Climb:
     seconds: float
 
 
-PATIENCE = 300.0  # seconds of one processor that a case may take
+PATIENCE = 120.0  # seconds of one processor that a case may take
 
 
 class NotConverged(Exception):
