@@ -12,7 +12,7 @@ march would be unstable.
 import numpy as np
 
 from axicfd.kernels._jit import kernel
-from axicfd.kernels.momentum import N, E, P, R, S, W, u_line, v_line
+from axicfd.kernels.momentum import N, E, P, R, S, W, explicit_terms, mass_fluxes, u_line, v_line
 
 WEST_HOLD = 0.3  # share of the upstream coefficient added to the diagonal: 13 cycles become 8
 
@@ -166,6 +166,25 @@ def sweep(m, mu, rho, u, v, p, mz, mr, su, sv, fc):
     for i in range(nz):
         for j in range(nr):
             p[i, j] -= shift * m.open_p[i, j]
+
+
+@kernel
+def smooth(m, mu, rho, u, v, p, mz, mr, fu, fv, fc, su, sv, old_u, old_v, old_p, share, times):
+    """Sweeps with refreshed explicit terms and mass fluxes, of each of which only a share of the change is taken.
+
+    One call for all of it: handing over the mesh costs as much as a sweep over a few hundred cells.
+    fu, fv [N], fc [kg/s] : given sources        old_u, old_v, old_p : work space of the shapes of u, v, p
+    """
+    for _ in range(times):
+        old_u[:, :] = u
+        old_v[:, :] = v
+        old_p[:, :] = p
+        explicit_terms(m, mu, u, v, mz, mr, fu, fv, su, sv)
+        sweep(m, mu, rho, u, v, p, mz, mr, su, sv, fc)
+        damp(u, old_u, share)
+        damp(v, old_v, share)
+        damp(p, old_p, share)
+        mass_fluxes(m, rho, u, v, mz, mr)
 
 
 @kernel

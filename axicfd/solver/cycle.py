@@ -80,11 +80,9 @@ class FlowCycle:
     def _visit(self, k: int) -> None:
         fine = self.flows[k]
         if k == len(self.flows) - 1:
-            for _ in range(SMOOTH_COARSEST):
-                fine.smooth()
+            fine.smooth(SMOOTH_COARSEST)
             return
-        for _ in range(SMOOTH_BEFORE):
-            fine.smooth()
+        fine.smooth(SMOOTH_BEFORE)
         link, coarse, m = self.links[k], self.flows[k + 1], fine.mesh
         volume = m.area[None, :] * m.dz[:, None] * m.open_p
         transfer.restrict_velocity(
@@ -108,8 +106,7 @@ class FlowCycle:
         ):
             transfer.prolong_add(change, *way, open_, field)
         fine.refresh_mass()
-        for _ in range(SMOOTH_AFTER):
-            fine.smooth()
+        fine.smooth(SMOOTH_AFTER)
 
 
 def _open(mesh: FlowMesh) -> tuple[Array, Array, Array]:

@@ -220,7 +220,6 @@ class Flow:
         self.u[1:] = mesh.open_u[1:] * (self.mass_flow / density / sections[1:])[:, None]
         self.mz, self.mr = np.zeros_like(self.u), np.zeros_like(self.v)
         self._su, self._sv = np.zeros_like(self.u), np.zeros_like(self.v)
-        self._before = np.zeros_like(self.u), np.zeros_like(self.v), np.zeros_like(self.p)
         self._ru, self._rv, self._rc = np.zeros_like(self.u), np.zeros_like(self.v), np.zeros_like(self.p)
         # sources of the coarse-mesh equations of a multigrid cycle (N, N, kg/s); zero on the finest mesh
         self.fu, self.fv, self.fc = np.zeros_like(self.u), np.zeros_like(self.v), np.zeros_like(self.p)
@@ -247,21 +246,15 @@ class Flow:
         self.p[...] = p * m.open_p
         self.refresh_mass()
 
-    def smooth(self) -> None:
-        """One sweep of coupled stations downstream, for a multigrid cycle.
+    def smooth(self, times: int = 1) -> None:
+        """Sweeps of coupled stations downstream, for a multigrid cycle.
 
         The damping takes modes that are smooth along r and oscillate along z, which the sweep alone leaves near the inlet.
         """
-        fields = self.u, self.v, self.p
-        for field, old in zip(fields, self._before, strict=True):
-            np.copyto(old, field)
-        self._explicit_terms()
-        station.sweep(
-            self.mesh, self.viscosity, self.density, self.u, self.v, self.p, self.mz, self.mr, self._su, self._sv, self.fc
-        )
-        for field, old in zip(fields, self._before, strict=True):
-            station.damp(field, old, DAMPING)
-        self.refresh_mass()
+        station.smooth(
+            self.mesh, self.viscosity, self.density, self.u, self.v, self.p, self.mz, self.mr,
+            self.fu, self.fv, self.fc, self._su, self._sv, self._ru, self._rv, self._rc, DAMPING, times,
+        )  # fmt: skip
 
     def step(self) -> None:
         """One iteration: momentum with the present pressure, then the pressure correction."""
