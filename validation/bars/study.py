@@ -290,7 +290,8 @@ def line(name: str, of: list[Judged]) -> str:
     c = count(of)
     if not c.triples:
         return f"| {name} | 0 | | | | |"
-    return f"| {name} | {c.triples} | {c.inside:.1%} | {c.over_error:.1f} | {c.half:.4%} | {c.ninety:.4%} |"
+    over = f"{c.over_error:.1f}" if c.over_error < 1e4 else "no error"
+    return f"| {name} | {c.triples} | {c.inside:.1%} | {over} | {c.half:.4%} | {c.ninety:.4%} |"
 
 
 HEAD = [
