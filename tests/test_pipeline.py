@@ -287,10 +287,9 @@ def test_a_slug_from_a_file_is_a_flat_inlet(tmp_path):
 def test_errors_of_the_two_directions_are_told_apart(result):
     """Their sum is the correction that extrapolation makes; second order is exact only in the limit."""
     bars = result.summary["numerical_uncertainty"]
-    for part, name, key in ("stream", "water", "pressure_drop_Pa"), ("layer", "inner wall", "hottest_K"):
-        r, z = (bars[word][part][name][key] for word in ("from_r", "from_z"))
-        correction = result.summary["finest_mesh"][part][name][key] - result.summary[part][name][key]
-        assert r + z == pytest.approx(correction, rel=0.3), key
+    r, z = (bars[word]["stream"]["water"]["pressure_drop_Pa"] for word in ("from_r", "from_z"))
+    path = "stream.water.pressure_drop_Pa"
+    assert r + z == pytest.approx(result["finest_mesh." + path] - result[path], rel=0.3)
 
 
 @pytest.fixture
@@ -305,7 +304,7 @@ def test_the_mesh_is_refined_until_the_accuracy_is_reached(coarse):
     found = solve(asked, events.append)
     said = found.summary["accuracy"]
     assert said["reached"] and said["stopped_by"] is None
-    assert said["solves"] > 1 and found.summary["cells"] > 3000
+    assert said["solves"] > 1 and found.summary["cells"] > 2304
     assert events[-1].refinements == said["solves"] - 1 and events[0].refinements == 0
     assert not [c for c in found.summary["cautions"] if c["code"] == "mesh-error"]
     for path, judged in said["quantity"].items():
@@ -320,7 +319,7 @@ def test_a_hopeless_accuracy_says_what_stopped_it(coarse):
     found = solve(asked)
     said = found.summary["accuracy"]
     assert found.converged and not said["reached"] and said["stopped_by"] == "cells"
-    assert "more than 9000 cells" in said["text"] and 3000 < found.summary["cells"] <= 9000
+    assert "more than 9000 cells" in said["text"] and 4000 < found.summary["cells"] <= 9000
     (caution,) = [c for c in found.summary["cautions"] if c["code"] == "mesh-error"]
     assert caution["place"] == "stream.water.pressure_drop_Pa" and caution["found"] > caution["limit"]
 

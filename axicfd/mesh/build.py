@@ -7,6 +7,7 @@ The mesh chooses itself from the case; `[mesh]` keys override the choice.
 
 from collections.abc import Callable
 from dataclasses import dataclass, replace
+from itertools import product
 from math import ceil, log, sqrt
 
 import numpy as np
@@ -98,11 +99,13 @@ class Family:
         if radial * axial > 1.0 and radial * axial * self.cells > at_most:  # less of both, in proportion
             share = log(max(at_most / self.cells, 1.0)) / log(radial * axial)
             radial, axial = radial**share, axial**share
-        for rounded in (ceil, int):
-            finer = replace(self, radial=_more(self.radial, radial, rounded), axial=_more(self.axial, axial, rounded))
-            if WORTHWHILE * self.cells <= finer.cells <= at_most:
-                return finer
-        return None
+        ways: tuple[Callable[[float], int], ...] = (ceil, int)
+        tried = [
+            replace(self, radial=_more(self.radial, radial, up_r), axial=_more(self.axial, axial, up_z))
+            for up_r, up_z in product(ways, repeat=2)
+        ]
+        good = [finer for finer in tried if WORTHWHILE * self.cells <= finer.cells <= at_most]
+        return max(good, key=lambda finer: finer.cells, default=None)
 
     def grid(self, level: int = 0, radial_level: int | None = None) -> Grid:
         """The grid of a level: 0 the finest, 1, 2 ... coarser, -1, -2 ... two or four times finer per direction.
@@ -147,7 +150,7 @@ def family(case: Case, layout: Layout) -> Family:
             stretch = stretch_for_end_cell(cells, length, end_cell, at_start, at_end)
         axial.append(Segment(section.z0, section.z1, cells, graded_map(stretch, at_start, at_end)))
     total = across * sum(s.cells for s in axial)
-    if "at_most" in choice.model_fields_set and total > choice.at_most:
+    if choice.at_most is not None and total > choice.at_most:
         counts = f"{across} x {sum(s.cells for s in axial)} cells"
         allowed = f"is less than the {counts} that {'`radial` and `axial` ask' if choice.axial else 'this case needs'} for"
         raise bad_input("mesh.at_most", choice.at_most, allowed, f"Write at_most = {total} or more, or leave it out.")

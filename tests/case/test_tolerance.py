@@ -62,7 +62,7 @@ def test_it_is_written_as_given(value):
         ('{ "layer.oil.pressure_drop" = "1 %" }', 'solve.accuracy."layer.oil.pressure_drop"', "stream.NAME"),
         ('{ pressure_drop = "1 K" }', "solve.accuracy.pressure_drop", "Pa"),
         ('{ pressure_drop = "-1 Pa" }', "solve.accuracy.pressure_drop", "greater than 0"),
-        ('{ outlet_temperature = "0.1 degC" }', "solve.accuracy.outlet_temperature", '"0.1 K"'),
+        ('{ outlet_temperature = "1 mm" }', "solve.accuracy.outlet_temperature", '"0.1 K"'),
         ('{ "stream.oli.pressure_drop" = "1 %" }', 'solve.accuracy."stream.oli.pressure_drop"', "stream.oil.pres"),
         ('{ "layer.oil.hottest" = "1 %" }', 'solve.accuracy."layer.oil.hottest"', "no solid layer"),
         ('{ "section.oven.heat_in" = "1 %" }', 'solve.accuracy."section.oven.heat_in"', "lead-in, heater"),
