@@ -702,7 +702,7 @@ class SolveChoice(Part):
 
     accuracy: Annotated[
         Tolerance | dict[str, Tolerance] | None,
-        Accuracy("largest mesh error of the headline quantities, or of named ones; the mesh is refined as far"),
+        Accuracy("largest mesh error of all headline quantities, or of named ones, for which the mesh is refined"),
     ] = None
 
 

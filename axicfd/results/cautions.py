@@ -459,7 +459,8 @@ def _mesh_error(found: Found) -> Iterator[Caution]:
     off = half / allowed if half is not None and allowed else math.inf
     yield Caution(
         "mesh-error",
-        f"{asked['text']} The values stand, with the mesh errors printed beside them.",
+        "Mesh errors are larger than the accuracy asked for" + (f", by most in {asked['worst']}" if worst else "")
+        + ": what stopped the refinement stands beside the answer. The values hold within the mesh errors printed.",
         place=str(asked["worst"] or "whole tube"),
         found=half,
         limit=allowed,
