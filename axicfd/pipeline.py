@@ -8,12 +8,13 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
 
-from axicfd.case.layout import layout
+from axicfd.case.layout import Layout, layout
 from axicfd.case.model import Case
-from axicfd.mesh.build import LEVELS, family
-from axicfd.results import cautions
+from axicfd.mesh.build import LEVELS, Family, family
+from axicfd.results import accuracy, cautions
+from axicfd.results.accuracy import Verdict
 from axicfd.results.axial import stream_view
-from axicfd.results.result import Result, make_result
+from axicfd.results.result import Result, make_result, with_accuracy
 from axicfd.solver.solve import solve_on
 from axicfd.solver.state import Solution
 from axicfd.solver.warm_up import warm_up
@@ -21,6 +22,8 @@ from axicfd.version import VERSION
 
 START_BELOW = 1e-5  # residual at which a coarse mesh that only gives a start hands over to the next one
 NESTED = 4  # finest meshes that are solved in full, for the mesh error
+REFINED_TO = 400_000  # cells up to which a mesh is refined for an accuracy, where the case does not say
+SOLVES = 10  # meshes tried for an accuracy
 
 
 @dataclass(frozen=True)
@@ -30,6 +33,7 @@ class Progress:
     level of levels : mesh, 1 is the coarsest        cells : of that mesh
     outlet_temperature [K], pressure_drop [Pa] : of the last finished mesh, None before it or without flow
     seconds : since the start        residual : the last seen        done : this mesh is finished
+    refinements : how often the whole family of meshes was made finer for the accuracy asked for
     """
 
     level: int
@@ -40,49 +44,122 @@ class Progress:
     seconds: float
     residual: float
     done: bool
+    refinements: int = 0
 
 
 OnProgress = Callable[[Progress], Any]
 
 
 def solve(case: Case, on_progress: OnProgress | None = None, *, halvings: int = 0) -> Result:
-    """Solve a case on the meshes it chooses (or its `[mesh]` asks for).
+    """Solve a case on the meshes it chooses (or its `[mesh]` asks for), or as fine as its `accuracy` needs.
 
     on_progress : called with a `Progress` now and then
     halvings    : solve on a mesh refined this many times more, beyond the case's own finest
     Raises `RefusedModel` where the laminar model is known not to hold before anything is solved. A solve that does not
-    converge is a Result with `converged` False.
+    converge is a Result with `converged` False; an accuracy that is not reached is said in `summary["accuracy"]`.
     """
     cautions.before(case)  # raises where the model is refused
     warm_up()
-    begun = time.perf_counter()
     place = layout(case)
+    climb = _Climb(case, place, on_progress, halvings)
     meshes = family(case, place)
-    levels = LEVELS + halvings
-    solution: Solution | None = None
-    start: Solution | None = None  # nothing is taken from a mesh too coarse to converge on
-    solutions: list[Solution] = []
-    history = []
-    shown: tuple[float | None, float | None] = (None, None)
-    for number, level in enumerate(range(LEVELS - 1, -1 - halvings, -1), start=1):
-        grid = meshes.grid(level)
+    return climb.on(meshes) if case.solve.accuracy is None else _accurate(case, meshes, climb)
 
-        def tell(residual: float, done: bool, number: int = number, cells: int = grid.cells) -> None:
-            if on_progress is not None:
-                on_progress(Progress(number, levels, cells, *shown, time.perf_counter() - begun, residual, done))
 
-        def looked(_: int, residual: float, tell: Callable[[float, bool], None] = tell) -> None:
-            tell(residual, False)
+class _Climb:
+    """From the coarsest mesh of a family to the finest, as often as asked; progress and seconds run on."""
 
-        counts = number > levels - NESTED
-        below = case.solve.stop_below if counts else max(START_BELOW, case.solve.stop_below)
-        solution = solve_on(case, grid, start, below, looked)
-        history.append((number, grid.cells, solution.iterations, solution.residual))
-        shown = _headline(case, solution)
-        tell(solution.residual, True)
-        solutions = [*solutions, solution][-NESTED:] if solution.converged else [solution]
-        start = None if solution.stop_reason == "diverged" else solution
-    return make_result(case, place, solutions, history, time.perf_counter() - begun, VERSION)
+    def __init__(self, case: Case, place: Layout, on_progress: OnProgress | None, halvings: int):
+        self.case, self.place, self.on_progress, self.halvings = case, place, on_progress, halvings
+        self.begun = time.perf_counter()
+        self._shown: tuple[float | None, float | None] = (None, None)
+
+    def on(self, meshes: Family, refinements: int = 0) -> Result:
+        """Solve on the meshes of a family, each starting from the one before, and interpret them."""
+        case, levels = self.case, LEVELS + self.halvings
+        start: Solution | None = None  # nothing is taken from a mesh too coarse to converge on
+        solutions: list[Solution] = []
+        history = []
+        self._shown = None, None
+        for number, level in enumerate(range(LEVELS - 1, -1 - self.halvings, -1), start=1):
+            grid = meshes.grid(level)
+
+            def tell(residual: float, done: bool, number: int = number, cells: int = grid.cells) -> None:
+                if self.on_progress is not None:
+                    seconds = time.perf_counter() - self.begun
+                    event = Progress(number, levels, cells, *self._shown, seconds, residual, done, refinements)
+                    self.on_progress(event)
+
+            def looked(_: int, residual: float, tell: Callable[[float, bool], None] = tell) -> None:
+                tell(residual, False)
+
+            counts = number > levels - NESTED
+            below = case.solve.stop_below if counts else max(START_BELOW, case.solve.stop_below)
+            solution = solve_on(case, grid, start, below, looked)
+            history.append((number, grid.cells, solution.iterations, solution.residual))
+            self._shown = _headline(case, solution)
+            tell(solution.residual, True)
+            solutions = [*solutions, solution][-NESTED:] if solution.converged else [solution]
+            start = None if solution.stop_reason == "diverged" else solution
+        halves = self._halves(meshes, solutions)
+        seconds = time.perf_counter() - self.begun
+        return make_result(case, self.place, solutions, history, seconds, VERSION, halves)
+
+    def _halves(self, meshes: Family, solutions: list[Solution]) -> tuple[Solution, Solution] | None:
+        """Solutions on the second finest mesh, coarsened along r only and along z only; a quarter of the finest's cost.
+
+        None where the mesh errors have no sound base.
+        """
+        if len(solutions) < 3 or not all(s.converged for s in solutions):
+            return None
+        medium = 1 - self.halvings
+        coarse_r = solve_on(self.case, meshes.grid(medium, medium + 1), solutions[-2])
+        coarse_z = solve_on(self.case, meshes.grid(medium + 1, medium), solutions[-2])
+        return (coarse_r, coarse_z) if coarse_r.converged and coarse_z.converged else None
+
+    def ended(self, found: tuple[Result, Verdict], stopped_by: str | None, why: str, solves: int) -> Result:
+        """The result with what came of the accuracy asked for."""
+        result, verdict = found
+        said = accuracy.as_summary(verdict, stopped_by, why, solves)
+        return with_accuracy(result, said, time.perf_counter() - self.begun)
+
+
+def _accurate(case: Case, meshes: Family, climb: _Climb) -> Result:
+    """Solve on finer and finer families of meshes until the mesh errors are within the accuracy, or something stops it.
+
+    The answer is that of the mesh with the smallest errors, held against what is allowed.
+    """
+    limit = case.mesh.at_most or REFINED_TO
+    best: tuple[Result, Verdict] | None = None
+    for solves in range(1, SOLVES + 1):
+        try:
+            result = climb.on(meshes, solves - 1)
+        except MemoryError:
+            if best is None:
+                raise
+            return climb.ended(best, "memory", f"there is no memory for a mesh of {meshes.cells} cells.", solves)
+        verdict = accuracy.judge(case, result.summary, result.solution)
+        if result.summary.get("refused"):
+            return climb.ended((result, verdict), "model", "the model does not hold.", solves)
+        if not result.converged:
+            why = f"the solve on a mesh of {meshes.cells} cells did not converge."
+            return climb.ended(best or (result, verdict), "convergence", why, solves)
+        if best is None or verdict.ratio < best[1].ratio:
+            best = result, verdict
+        if verdict.reached:
+            return climb.ended(best, None, "", solves)
+        free = case.mesh.radial is None, case.mesh.axial is None
+        finer_r, finer_z = (verdict.finer_r if free[0] else 1.0), (verdict.finer_z if free[1] else 1.0)
+        if max(finer_r, finer_z) == 1.0:
+            why = f"`radial` or `axial` in [mesh] fixes the mesh, of {meshes.cells} cells."
+            return climb.ended(best, "mesh", why, solves)
+        refined = meshes.refined(finer_r, finer_z, limit)
+        if refined is None:
+            break
+        meshes = refined
+    assert best is not None
+    why = f"a finer mesh would have more than {limit} cells. Give a larger at_most in [mesh], or ask for less."
+    return climb.ended(best, "cells", why, solves)
 
 
 def _headline(case: Case, solution: Solution) -> tuple[float | None, float | None]:

@@ -7,6 +7,7 @@ import pytest
 
 import axicfd
 from axicfd.errors import RefusedModel
+from axicfd.mesh import build
 from axicfd.pipeline import Progress, solve
 from tests.laws import tubes
 
@@ -281,3 +282,63 @@ def test_a_slug_from_a_file_is_a_flat_inlet(tmp_path):
     assert np.isnan(plain.axial["water"]["apparent_friction_factor"][near]).all()
     key = "stream.water.largest_wall_shear_stress_Pa"
     assert read[key] == pytest.approx(plain[key], rel=1e-6)
+
+
+def test_errors_of_the_two_directions_are_told_apart(result):
+    """Their sum is the correction that extrapolation makes; second order is exact only in the limit."""
+    bars = result.summary["numerical_uncertainty"]
+    r, z = (bars[word]["stream"]["water"]["pressure_drop_Pa"] for word in ("from_r", "from_z"))
+    path = "stream.water.pressure_drop_Pa"
+    assert r + z == pytest.approx(result["finest_mesh." + path] - result[path], rel=0.3)
+
+
+@pytest.fixture
+def coarse(monkeypatch):
+    """The tool's own first mesh is small."""
+    monkeypatch.setattr(build, "CELLS", 3000)
+
+
+def test_the_mesh_is_refined_until_the_accuracy_is_reached(coarse):
+    asked = axicfd.load(tubes.text(viscous=True, rest='[solve]\naccuracy = "0.3 %"\n'))
+    events: list[Progress] = []
+    found = solve(asked, events.append)
+    said = found.summary["accuracy"]
+    assert said["reached"] and said["stopped_by"] is None
+    assert said["solves"] > 1 and found.summary["cells"] > 2304
+    assert events[-1].refinements == said["solves"] - 1 and events[0].refinements == 0
+    assert not [c for c in found.summary["cautions"] if c["code"] == "mesh-error"]
+    for path, judged in said["quantity"].items():
+        assert judged["half_width"] <= judged["allowed"], path
+    finer = solve(asked.replace({"solve.accuracy": None, "mesh.at_most": 40_000}))
+    for path, judged in said["quantity"].items():
+        assert abs(finer[path] - found[path]) <= judged["allowed"], path
+
+
+def test_a_hopeless_accuracy_says_what_stopped_it(coarse):
+    asked = axicfd.load(tubes.text(rest='[solve]\naccuracy = { pressure_drop = "1e-7 %" }\n[mesh]\nat_most = 9000\n'))
+    found = solve(asked)
+    said = found.summary["accuracy"]
+    assert found.converged and not said["reached"] and said["stopped_by"] == "cells"
+    assert "more than 9000 cells" in said["text"] and 4000 < found.summary["cells"] <= 9000
+    (caution,) = [c for c in found.summary["cautions"] if c["code"] == "mesh-error"]
+    assert caution["place"] == "stream.water.pressure_drop_Pa" and caution["found"] > caution["limit"]
+
+
+def test_counts_given_by_the_case_fix_the_mesh():
+    found = solve(axicfd.load(tubes.text(rest=MESH + '[solve]\naccuracy = { pressure_drop = "1e-7 %" }\n')))
+    assert found.summary["accuracy"]["stopped_by"] == "mesh" and found.summary["accuracy"]["solves"] == 1
+
+
+def test_without_memory_for_a_finer_mesh_the_best_so_far_stands(coarse, monkeypatch):
+    from axicfd import pipeline
+
+    def short_of_memory(case, grid, *rest):
+        if grid.cells > 4500:
+            raise MemoryError
+        return solve_on(case, grid, *rest)
+
+    solve_on = pipeline.solve_on
+    monkeypatch.setattr(pipeline, "solve_on", short_of_memory)
+    found = solve(axicfd.load(tubes.text(rest='[solve]\naccuracy = { pressure_drop = "1e-7 %" }\n')))
+    assert found.summary["accuracy"]["stopped_by"] == "memory" and found.summary["cells"] <= 4500
+    assert found.converged

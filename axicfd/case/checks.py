@@ -12,6 +12,7 @@ from axicfd.case.keys import ZTable
 from axicfd.case.layout import PlacedLayer, PlacedSection, end_temperatures, layout
 from axicfd.case.model import Case, FileProfile, Outside, Section
 from axicfd.case.presence import Findings, Place
+from axicfd.case.tolerance import parts_of
 from axicfd.errors import Mistake
 
 if TYPE_CHECKING:
@@ -37,6 +38,7 @@ def contradictions(case: Case, source: Source) -> list[Mistake]:
     _places(case, tube.sections, found)
     _inlets(case, tube.bore_diameter, found)
     _mesh(case, tube.sections, found)
+    _accuracy(case, tube.sections, found)
     if not found.mistakes:
         _heat_has_somewhere_to_go(case, tube.sections, found)
         _gas(case, found)
@@ -360,13 +362,37 @@ def _mesh(case: Case, sections: tuple[PlacedSection, ...], found: Findings) -> N
             f"must be at least one cell for each of the {len(sections)} sections",
         )
     fewest = mesh.radial * mesh.axial if mesh.radial and mesh.axial else 0
-    if fewest > mesh.at_most:
+    if mesh.at_most is not None and fewest > mesh.at_most:
         found.add(
             ("mesh", "at_most"),
             mesh.at_most,
             f"is less than `radial` times `axial`, {fewest}",
             f"Write at_most = {2 * fewest}, or smaller counts.",
         )
+
+
+def _accuracy(case: Case, sections: tuple[PlacedSection, ...], found: Findings) -> None:
+    """Names in the table of `accuracy` that the case does not have."""
+    wanted = case.solve.accuracy
+    if not isinstance(wanted, dict):
+        return
+    solids = dict.fromkeys(p.name for s in sections for p in s.layers if p.kind == "solid")
+    have = {"stream": list(case.stream), "layer": list(solids), "sensor": list(case.sensor)}
+    have["section"] = [section.name for section in sections]
+    for path in wanted:
+        parts = parts_of(path)
+        assert parts is not None
+        name, measured = parts
+        names = have[measured.part]
+        what = "solid layer" if measured.part == "layer" else measured.part
+        place: Place = ("solve", "accuracy", path)
+        if name is not None and name not in names:
+            near = keys.nearest(name, names)
+            listed = f"There are: {', '.join(names)}." if names else f"The case has no {what}."
+            instead = f'Write "{measured.part}.{near}.{measured.name}".' if near else listed
+            found.add(place, _given(found, place, None), f"names no {what} of the case", instead)
+        elif not names:
+            found.add(place, _given(found, place, None), f"needs a {what}, and the case has none", "Take it out.")
 
 
 # ------------------------------------------------------------------------------------------------ heat

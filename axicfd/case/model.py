@@ -29,6 +29,7 @@ from axicfd.case.keys import (
     Text,
     ZTable,
 )
+from axicfd.case.tolerance import Accuracy, Tolerance
 from axicfd.materials import laws
 from axicfd.materials.library import FLUIDS, SOLIDS
 
@@ -641,8 +642,15 @@ class MeshChoice(Part):
     """The mesh, where the tool's own choice is not wanted."""
 
     at_most: Annotated[
-        int, Number("cells in all", whole=True, at_least=100, at_most=5_000_000, sample=40000)
-    ] = 40000
+        int | None,
+        Number(
+            "cells in all; 40 000 where it is not given, and up to 400 000 where `accuracy` asks for more",
+            whole=True,
+            at_least=100,
+            at_most=5_000_000,
+            sample=40000,
+        ),
+    ] = None
     radial: Annotated[
         int | None,
         Number(
@@ -692,7 +700,10 @@ class SolveChoice(Part):
         Number("normalised residual at which the solve ends", at_least=1e-13, at_most=1e-2, sample=1e-8),
     ] = 1e-8
 
-    not_yet = {"accuracy": "refining the mesh until the error bars are small enough"}
+    accuracy: Annotated[
+        Tolerance | dict[str, Tolerance] | None,
+        Accuracy("largest mesh error of all headline quantities, or of named ones, for which the mesh is refined"),
+    ] = None
 
 
 class ResultsChoice(Part):

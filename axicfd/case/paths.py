@@ -43,7 +43,7 @@ def spelled(tree: Any, place: Place) -> str:
         except (KeyError, IndexError, TypeError):
             there = None
         if isinstance(step, str):
-            names.append(step)
+            names.append(f'"{step}"' if "." in step else step)
         elif names and names[-1] in ("section", "layer"):
             names.append(_entry_name(names[-1], there, step))
         here = there

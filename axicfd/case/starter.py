@@ -90,7 +90,7 @@ stations = ["100 mm", "400 mm"]     # places of radial profiles
 viscous_heating = true
 
 [mesh]
-at_most = 40000                     # cells in all
+# at_most = 40000                   # cells in all
 # radial = 48                       # cells from the axis to the bore's wall
 # axial  = 600                      # cells along the tube
 # stretch_to_walls = 4              # largest over smallest cell across a layer
@@ -98,4 +98,5 @@ at_most = 40000                     # cells in all
 
 [solve]
 stop_below = 1e-8                   # the residual at which the solve ends
+# accuracy = "0.5 %"                # refine the mesh until the mesh errors are within this share of their scales
 """

@@ -51,6 +51,8 @@ class Progress:
     def line(self, event: Any) -> str:
         """`mesh 4 of 5   40 960 cells   outlet 41.3 degC   drop 0.182 bar   1.1 s`."""
         parts = [f"mesh {event.level} of {event.levels}", f"{grouped(event.cells)} cells"]
+        if event.refinements:
+            parts.insert(0, f"refinement {event.refinements}")
         if event.outlet_temperature is not None:
             parts.append(f"outlet {amount(self._shown, 'temperature', event.outlet_temperature)}")
         if event.pressure_drop is not None:

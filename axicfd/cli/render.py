@@ -11,7 +11,7 @@ from rich.table import Table
 from rich.text import Text
 
 from axicfd.output.headline import amount, headline, number
-from axicfd.output.shown import shown_units
+from axicfd.output.shown import Shown, shown_units
 
 PLAIN_WIDTH = 120  # columns where the output is no terminal
 CAUTIONS_SHOWN = 2  # the rest with --verbose
@@ -81,6 +81,8 @@ def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, wher
         out.print("By hand: constant inlet properties, no conduction along the wall, section by section.")
     if not bars:
         out.print("No mesh error is known for these values.")
+    if "accuracy" in summary:
+        _print_accuracy(out, summary["accuracy"], shown)
     out.print(STANDING)
     print_cautions(out, summary["cautions"], verbose)
     if can_hurt(result):
@@ -123,6 +125,21 @@ def can_hurt(result: Any) -> bool:
         or any(value is not None and value < HURTS_BELOW for value in coldest)
         or any(value > HURTS_PRESSURE for value in pressures)
     )
+
+
+def _print_accuracy(out: Console, found: dict[str, Any], shown: Shown) -> None:
+    """Whether the mesh errors are as small as asked, and what per cent mean."""
+    scale = found["scale"]
+    span = f"{number(float(shown.difference('temperature', scale['temperature_K'])))} {_difference_unit(shown)}"
+    sizes = [f"temperature {span}", f"heat {amount(shown, 'heat', scale['heat_W'])}"]
+    sizes += [f"pressure {amount(shown, 'pressure', drop)}" for drop in scale["pressure_Pa"].values()]
+    out.print(Text(found["text"], style="" if found["reached"] else "bold"))
+    out.print(f"Scales of per cent: {', '.join(sizes)}.")
+
+
+def _difference_unit(shown: Shown) -> str:
+    """Of a temperature difference; degC and K are alike there."""
+    return {"degC": "K", "degF": "degF"}.get(shown.unit("temperature"), shown.unit("temperature"))
 
 
 def _print_effort(out: Console, summary: dict[str, Any], where: str) -> None:

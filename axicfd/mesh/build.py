@@ -5,8 +5,10 @@ face of the finest one (m < 0 refines it), so coarse faces are fine faces and a 
 The mesh chooses itself from the case; `[mesh]` keys override the choice.
 """
 
-from dataclasses import dataclass
-from math import ceil, sqrt
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from itertools import product
+from math import ceil, log, sqrt
 
 import numpy as np
 
@@ -19,6 +21,7 @@ from axicfd.mesh.spacing import Map, graded_map, length_weight, stretch_for_end_
 NEST = 8  # finest counts are multiples of this: three clean halvings
 LEVELS = 5  # meshes climbed, the finest included
 CELLS = 40_000  # default number of cells of the finest mesh
+WORTHWHILE = 1.2  # least growth of the cells for which a finer family is solved
 ACROSS_STREAM = 48  # cells from the axis to the bore's wall in CELLS cells
 ACROSS_SOLID = 8  # cells across a layer up to half as thick as the bore's radius
 STRETCH_TO_WALLS = 4.0  # largest over smallest cell across a layer
@@ -83,10 +86,34 @@ class Family:
             "axial": sum(s.cells for s in self.axial),
         }
 
-    def grid(self, level: int = 0) -> Grid:
-        """The grid of a level: 0 the finest, 1, 2 ... coarser, -1, -2 ... two or four times finer per direction."""
+    @property
+    def cells(self) -> int:
+        """Cells of the finest mesh."""
+        return sum(s.cells for s in self.radial) * sum(s.cells for s in self.axial)
+
+    def refined(self, radial: float, axial: float, at_most: int) -> "Family | None":
+        """The family whose finest mesh has so many times the cells in each direction, as far as `at_most` allows.
+
+        None where that leaves hardly more cells than there are. The maps stay; counts stay multiples of NEST.
+        """
+        if radial * axial > 1.0 and radial * axial * self.cells > at_most:  # less of both, in proportion
+            share = log(max(at_most / self.cells, 1.0)) / log(radial * axial)
+            radial, axial = radial**share, axial**share
+        ways: tuple[Callable[[float], int], ...] = (ceil, int)
+        tried = [
+            replace(self, radial=_more(self.radial, radial, up_r), axial=_more(self.axial, axial, up_z))
+            for up_r, up_z in product(ways, repeat=2)
+        ]
+        good = [finer for finer in tried if WORTHWHILE * self.cells <= finer.cells <= at_most]
+        return max(good, key=lambda finer: finer.cells, default=None)
+
+    def grid(self, level: int = 0, radial_level: int | None = None) -> Grid:
+        """The grid of a level: 0 the finest, 1, 2 ... coarser, -1, -2 ... two or four times finer per direction.
+
+        radial_level : of the faces along r, where it is not that of the faces along z
+        """
         z = _line(self.axial, level)
-        r = _line(self.radial, level)
+        r = _line(self.radial, level if radial_level is None else radial_level)
         return _grid(self.layout, z, r, tuple(p.z for p in self.places))
 
 
@@ -98,6 +125,8 @@ def family(case: Case, layout: Layout) -> Family:
     """
     choice = case.mesh
     budget = choice.at_most or CELLS
+    if case.solve.accuracy is not None:
+        budget = min(budget, CELLS)  # to begin with; it is refined as far as needed
     places = _places(case, layout)
     radial = _radial_segments(case, layout, budget)
     across = sum(s.cells for s in radial)
@@ -121,7 +150,7 @@ def family(case: Case, layout: Layout) -> Family:
             stretch = stretch_for_end_cell(cells, length, end_cell, at_start, at_end)
         axial.append(Segment(section.z0, section.z1, cells, graded_map(stretch, at_start, at_end)))
     total = across * sum(s.cells for s in axial)
-    if "at_most" in choice.model_fields_set and total > choice.at_most:
+    if choice.at_most is not None and total > choice.at_most:
         counts = f"{across} x {sum(s.cells for s in axial)} cells"
         allowed = f"is less than the {counts} that {'`radial` and `axial` ask' if choice.axial else 'this case needs'} for"
         raise bad_input("mesh.at_most", choice.at_most, allowed, f"Write at_most = {total} or more, or leave it out.")
@@ -206,6 +235,14 @@ def coarser(grid: Grid) -> Grid | None:
     if len(z) == len(grid.z) and len(r) == len(grid.r):
         return None
     return _grid(grid.layout, frozen(z), frozen(r), tuple(grid.z[i] for i in grid.joints))
+
+
+def _more(segments: tuple[Segment, ...], factor: float, rounded: Callable[[float], int]) -> tuple[Segment, ...]:
+    """Segments with so many times the cells; those with fewer than NEST cells, the voids, stay as they are."""
+    return tuple(
+        replace(s, cells=NEST * max(s.cells // NEST, rounded(s.cells * factor / NEST))) if s.cells >= NEST else s
+        for s in segments
+    )
 
 
 def _every_second(faces: Array, ends: list[int]) -> Array:

@@ -449,6 +449,26 @@ def _balance(found: Found) -> Iterator[Caution]:
             )
 
 
+def _mesh_error(found: Found) -> Iterator[Caution]:
+    """The accuracy asked for was not reached."""
+    asked = found.summary.get("accuracy")
+    if not asked or asked["reached"]:
+        return
+    worst = asked["quantity"].get(asked["worst"] or "", {})
+    half, allowed = worst.get("half_width"), worst.get("allowed")
+    off = half / allowed if half is not None and allowed else math.inf
+    yield Caution(
+        "mesh-error",
+        "Mesh errors are larger than the accuracy asked for" + (f", by most in {asked['worst']}" if worst else "")
+        + ": what stopped the refinement stands beside the answer. The values hold within the mesh errors printed.",
+        place=str(asked["worst"] or "whole tube"),
+        found=half,
+        limit=allowed,
+        source="accuracy of the case",
+        weight=max(1.0, min(100.0, off)),
+    )
+
+
 # ----- rules: the flow
 
 
@@ -1069,6 +1089,7 @@ BEFORE: tuple[Callable[[Ahead], Iterator[Caution]], ...] = (
 AFTER: tuple[Callable[[Found], Iterator[Caution]], ...] = (
     _not_converged,
     _balance,
+    _mesh_error,
     _reynolds,
     _small_peclet,
     _gas_density_found,

@@ -1,6 +1,6 @@
 """Result: the case, its fields, curves and headline quantities; read-only."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
@@ -8,7 +8,7 @@ import numpy as np
 from axicfd.case.layout import Layout
 from axicfd.case.model import Case
 from axicfd.mesh.grid import NOTHING, frozen
-from axicfd.results import axial, cautions, summary, uncertainty
+from axicfd.results import accuracy, axial, cautions, summary, uncertainty
 from axicfd.solver.state import Solution
 
 BARS_APART = 3.0  # half-widths by which wall and bulk temperature must differ for a Nusselt number to mean anything
@@ -62,11 +62,15 @@ def make_result(
     history: list[tuple[int, int, int, float]],
     seconds: float,
     version: str,
+    halves: tuple[Solution, Solution] | None = None,
 ) -> Result:
     """Interpret the solutions of nested meshes, each half as fine as the next; the finest, last, gives the fields.
 
     With three or more converged meshes every headline quantity is extrapolated where its sequence allows it, and
     gets the half-width of its mesh error.
+
+    halves : solutions on the mesh before the finest, coarsened once more along r only and along z only; they tell
+             the errors of the two directions apart
     """
     solution = solutions[-1]
     views = [axial.stream_views(case, s) for s in solutions]
@@ -94,12 +98,14 @@ def make_result(
             return float(dz[np.clip(np.searchsorted(z, place) - 1, 0, len(dz) - 1)])
 
         values, widths, hows = uncertainty.estimate_tree(parts, cell)
+        along = _told_apart(case, layout, trees[-2], halves, widths, hows) if halves is not None else {}
         nested = {
             "finest_mesh": parts[-1],
             "numerical_uncertainty": {
                 **widths,
                 "observed_order": _leaves(hows, "observed_order"),
                 "rule": _leaves(hows, "rule"),
+                **along,
             },
         }
         tree = {**tree, **values}
@@ -116,6 +122,38 @@ def make_result(
     fields = _fields(case, solution)
     radial = axial.radial_profiles(case, solution)
     return Result(case, layout, version, full, curves[-1], half_widths, outside, radial, fields, history, solution)
+
+
+def with_accuracy(result: Result, found: dict[str, Any], seconds: float) -> Result:
+    """The result with what came of the accuracy asked for, the caution about it, and the seconds of all solves."""
+    full = {**result.summary, "accuracy": found, "seconds": seconds}
+    full["cautions"] = cautions.after(result.case, result.layout, full, result.axial, result.solution)
+    return replace(result, summary=full)
+
+
+def _told_apart(
+    case: Case,
+    layout: Layout,
+    medium: dict[str, Any],
+    halves: tuple[Solution, Solution],
+    widths: dict[str, Any],
+    hows: dict[str, Any],
+) -> dict[str, Any]:
+    """Errors of the headline quantities from the cells along r and along z; widens half-widths where they cancel."""
+    coarse_r, coarse_z = (summary.summary(case, layout, s, axial.stream_views(case, s)) for s in halves)
+    along: dict[str, Any] = {"from_r": {}, "from_z": {}}
+    for part, name, key in accuracy.quantities(medium):
+        found = uncertainty.split(*(tree[part][name].get(key) for tree in (medium, coarse_r, coarse_z)))
+        half = widths.get(part, {}).get(name, {}).get(key)
+        if found is None or half is None:
+            continue
+        for word, value in ("from_r", found.r), ("from_z", found.z):
+            along[word].setdefault(part, {}).setdefault(name, {})[key] = value
+        how = hows[part][name][key]
+        if found.opposed > half and how["rule"] != uncertainty.EXACT:
+            widths[part][name][key] = found.opposed
+            how["rule"] = f"{how['rule']}, {uncertainty.OPPOSED}"
+    return along
 
 
 def _leaves(tree: dict[str, Any], word: str) -> dict[str, Any]:

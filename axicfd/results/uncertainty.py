@@ -26,6 +26,10 @@ ROUND_OFF = 1e-11  # changes below this share of the value are round-off
 
 EXTRAPOLATED, FINEST, SINGULAR, OSCILLATES, EXACT = "extrapolated", "finest", "singular", "oscillates", "exact"
 SPACING = "spacing"  # a place: known to a cell of the finest mesh
+OPPOSED = "r and z opposed"  # added to a rule where the errors of the two directions cancel and widen the half-width
+# Coarsening the medium mesh in one direction changes a value by three of its errors there, twelve of the finest mesh's
+TWELVE = 12.0
+CANCELS = 0.25  # the errors of r and z cancel where the smaller is this share of the larger; less hides too little
 
 
 @dataclass(frozen=True)
@@ -151,6 +155,27 @@ def estimate_tree(trees: list[Any], cell: Callable[[float], float], path: tuple[
         return finest, max(cell(finest), abs(trees[-1] - trees[-2])), {"observed_order": None, "rule": SPACING}
     found = estimate([float(v) for v in usable])
     return found.value, found.half_width, {"observed_order": found.order, "rule": found.rule}
+
+
+@dataclass(frozen=True)
+class Split:
+    """Errors of the finest value [its unit] from the cells along r and along z, signed; second order is assumed."""
+
+    r: float
+    z: float
+
+    @property
+    def opposed(self) -> float:
+        """The half-width that errors of opposite sign must not fall below: joint refinement sees only their sum."""
+        small, large = sorted((abs(self.r), abs(self.z)))
+        return large if self.r * self.z < 0.0 and small >= CANCELS * large else 0.0
+
+
+def split(medium: Any, coarse_r: Any, coarse_z: Any) -> Split | None:
+    """From the values on the medium mesh and on that mesh coarsened along r only and along z only."""
+    if not all(_is_number(value) for value in (medium, coarse_r, coarse_z)):
+        return None
+    return Split((coarse_r - medium) / TWELVE, (coarse_z - medium) / TWELVE)
 
 
 def _is_number(leaf: Any) -> bool:

@@ -102,12 +102,12 @@ def test_tables_that_do_not_stand_in_the_file_are_made():
         ("stream..mass_flow", ("not a path",)),
         ("", ("not a path",)),
         ('stream."oil.mass_flow', ("not a path",)),
-        ("solve.accuracy", ("not available yet",)),
+        ("solve.accuracy", ("at most 100 %",)),
     ],
 )
 def test_wrong_paths(path, words):
     with pytest.raises(InputError) as caught:
-        load(BASE).replace({path: 1.0})
+        load(BASE).replace({path: 1.0 if path != "solve.accuracy" else 1.5})
     assert all(word in str(caught.value) for word in words), str(caught.value)
 
 
@@ -117,3 +117,9 @@ def test_every_value_of_a_case_has_a_path():
     assert "section.heater.outside.ambient" in listed and "layer.tube.thickness" in listed
     assert "section.hotter.outside.temperature" in listed
     assert all(paths.find(case._tree, path) is not None for path in listed)
+
+
+def test_a_name_with_dots_stands_in_quotes_in_a_path():
+    case = load(BASE).replace({"solve.accuracy": {"stream.oil.pressure_drop": "1 %"}})
+    (path,) = [path for path in paths.values_in(case) if path.startswith("solve.accuracy")]
+    assert path == 'solve.accuracy."stream.oil.pressure_drop"' and paths.find(case._tree, path) == "1 %"

@@ -12,7 +12,7 @@ class Terminal(io.StringIO):
         return True
 
 
-def event(level, done, cells=40960, outlet=314.45):
+def event(level, done, cells=40960, outlet=314.45, refinements=0):
     return SimpleNamespace(
         level=level,
         levels=5,
@@ -22,6 +22,7 @@ def event(level, done, cells=40960, outlet=314.45):
         seconds=1.1,
         residual=1e-9,
         done=done,
+        refinements=refinements,
     )
 
 
@@ -44,6 +45,11 @@ def test_plain_lines_elsewhere():
     progress.close()
     assert "\x1b" not in out.getvalue() and "\r" not in out.getvalue()
     assert sum("mesh 2 of 5" in line for line in out.getvalue().splitlines()) == 1
+
+
+def test_a_refined_family_of_meshes_is_told_apart():
+    line = Progress(shown_units(load(TEXT)), io.StringIO()).line(event(2, True, refinements=1))
+    assert line.startswith("refinement 1   mesh 2 of 5   ")
 
 
 def test_nothing_flowing_has_no_outlet():

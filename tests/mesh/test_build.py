@@ -211,3 +211,34 @@ def test_arrays_are_read_only():
     for array in (grid.z, grid.r, grid.kind, grid.piece, grid.section, grid.volume, grid.rc):
         with pytest.raises(ValueError, match="read-only"):
             array[0] = 1
+
+
+def test_one_direction_may_be_coarser_than_the_other():
+    f = jacketed()
+    grid = f.grid(1, 2)
+    np.testing.assert_array_equal(grid.z, f.grid(1).z)
+    np.testing.assert_array_equal(grid.r, f.grid(2).r)
+
+
+def test_a_refined_family_keeps_maps_and_nests():
+    f = jacketed()
+    finer = f.refined(2.0, 1.0, 10 * f.cells)
+    np.testing.assert_array_equal(finer.grid(0).z, f.grid(0).z)
+    np.testing.assert_allclose(finer.grid(1).r, f.grid(0).r, rtol=1e-14)
+    assert 1.9 * f.cells < finer.cells == finer.grid().cells <= 2 * f.cells  # the void keeps its one cell
+    odd = f.refined(1.0, 1.3, 10 * f.cells)
+    assert all(s.cells % 8 == 0 and a.cells < s.cells for a, s in zip(f.axial, odd.axial, strict=True))
+    assert set(odd.grid(3).z) <= set(odd.grid(0).z)
+
+
+@pytest.mark.parametrize("room", [1.5, 2.5, 3.7])
+def test_refining_stays_below_at_most(room):
+    f = jacketed()
+    finer = f.refined(2.0, 2.0, int(room * f.cells))
+    assert 1.2 * f.cells <= finer.cells <= room * f.cells
+
+
+def test_where_there_is_no_room_nothing_is_refined():
+    f = jacketed()
+    assert f.refined(2.0, 2.0, int(1.1 * f.cells)) is None
+    assert f.refined(2.0, 2.0, f.cells // 2) is None

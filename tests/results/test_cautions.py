@@ -172,6 +172,17 @@ def test_a_balance_that_is_no_number_was_not_checked():
     assert not only(found, "balance")["checked"]
 
 
+@pytest.mark.parametrize("reached, count", [(True, 0), (False, 1)])
+def test_an_accuracy_that_is_not_reached(reached, count):
+    case, tube, tree, curves, solution = solved()
+    path = "stream.liquid.pressure_drop_Pa"
+    asked = {"reached": reached, "text": "Not reached.", "worst": path}
+    asked["quantity"] = {path: {"half_width": 3.0, "allowed": 1.5}}
+    found = coded(cautions.after(case, tube, tree | {"accuracy": asked}, curves, solution), "mesh-error")
+    assert len(found) == count
+    assert all((c["found"], c["limit"], c["weight"]) == (3.0, 1.5, 2.0) for c in found)
+
+
 # ----- Reynolds
 
 

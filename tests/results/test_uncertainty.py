@@ -9,7 +9,7 @@ import numpy as np
 import pytest
 
 from axicfd.results import uncertainty
-from axicfd.results.uncertainty import curve_half_widths, estimate, estimate_tree, grid_convergence_index
+from axicfd.results.uncertainty import curve_half_widths, estimate, estimate_tree, grid_convergence_index, split
 
 EXAMPLES = Path(__file__).parents[2] / "validation" / "reference" / "gci_worked_examples.csv"
 
@@ -290,3 +290,19 @@ def test_a_curve_without_value_has_no_bar():
     widths = curve_half_widths(z, columns)
     assert np.isnan(widths[0]) and np.isfinite(widths[1:]).all()
     assert np.isnan(curve_half_widths(z, [np.full_like(x, np.nan) for x in z])).all()
+
+
+def test_errors_of_r_and_z_from_a_mesh_coarsened_in_one_direction():
+    """value = exact + a hr^2 + b hz^2 with a = 3, b = -2 and h = 1 on the finest mesh, 2 on the medium one."""
+    found = split(3.0 * 4 - 2.0 * 4, 3.0 * 16 - 2.0 * 4, 3.0 * 4 - 2.0 * 16)
+    assert (found.r, found.z) == (3.0, -2.0)
+    assert found.opposed == 3.0
+
+
+@pytest.mark.parametrize("r, z, opposed", [(3.0, 2.0, 0.0), (-3.0, -2.0, 0.0), (1.0, -4.0, 4.0), (1.0, -4.1, 0.0)])
+def test_errors_cancel_where_they_are_opposed_and_alike(r, z, opposed):
+    assert uncertainty.Split(r, z).opposed == opposed
+
+
+def test_what_has_no_value_is_not_split():
+    assert split(1.0, None, 2.0) is None and split(1.0, 2.0, float("nan")) is None

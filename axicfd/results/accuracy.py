@@ -1,0 +1,170 @@
+"""The accuracy a case asks for, held against the mesh errors found, and where the mesh is to be finer.
+
+Per cent mean a share of a scale: of temperatures the largest distance from the inlet temperature, of heats the larger
+of what is put in or taken out and of what a stream takes up, of pressure the pressure drop.
+"""
+
+import math
+from collections.abc import Iterator
+from dataclasses import asdict, dataclass
+from typing import Any
+
+import numpy as np
+
+from axicfd.case.model import Case
+from axicfd.case.tolerance import HEADLINE, MEASURED, Measured, Tolerance, parts_of
+from axicfd.mesh.grid import NOTHING
+from axicfd.solver.state import Solution
+
+SMALLEST_TEMPERATURE = 1e-6  # K; a smaller scale is zero: nothing is refined for a share of it
+FINER, FINEST = 1.25, 2.0  # least and most refinement of a direction at a time
+
+BY_KEY: dict[tuple[str, str], Measured] = {(m.part, m.key): m for m in MEASURED}
+
+
+def quantities(tree: dict[str, Any]) -> Iterator[tuple[str, str, str]]:
+    """(part, name, key) of the quantities of a tree whose mesh error can be asked for: headline and sensors."""
+    for measured in MEASURED:
+        for name, entries in (tree.get(measured.part) or {}).items():
+            if isinstance(entries.get(measured.key), int | float):
+                yield measured.part, name, measured.key
+
+
+def scales(summary: dict[str, Any], solution: Solution) -> dict[str, Any]:
+    """What per cent mean: {"temperature_K": ..., "heat_W": ..., "pressure_Pa": {stream: ...}}."""
+    ledger = summary["ledger"]
+    heats = *ledger["section"].values(), *ledger["ends"].values(), *ledger["generated"].values()
+    gains = [abs(e.get("heat_gain_W") or 0.0) for e in summary["stream"].values()]
+    t = np.abs(solution.heat.t[solution.grid.kind != NOTHING])
+    return {
+        "temperature_K": float(t.max()),
+        "heat_W": max(math.fsum(abs(heat) for heat in heats), *gains),
+        "pressure_Pa": {name: abs(e.get("pressure_drop_Pa") or 0.0) for name, e in summary["stream"].items()},
+    }
+
+
+@dataclass(frozen=True)
+class Judged:
+    """One quantity: the half-width of its mesh error, None where it has none, and the one allowed; SI."""
+
+    half_width: float | None
+    allowed: float
+
+    @property
+    def ratio(self) -> float:
+        """Half-width over the allowed one; inf where there is no half-width."""
+        return math.inf if self.half_width is None else self.half_width / self.allowed
+
+
+@dataclass(frozen=True)
+class Verdict:
+    """The quantities asked for by their dotted path, with the refinement that would do along r and along z."""
+
+    quantity: dict[str, Judged]
+    scale: dict[str, Any]
+    finer_r: float
+    finer_z: float
+
+    @property
+    def worst(self) -> str | None:
+        """The path of the quantity that is furthest outside, or nearest to it."""
+        return max(self.quantity, key=lambda path: self.quantity[path].ratio, default=None)
+
+    @property
+    def ratio(self) -> float:
+        """The largest half-width over the allowed one."""
+        return max((judged.ratio for judged in self.quantity.values()), default=0.0)
+
+    @property
+    def reached(self) -> bool:
+        return self.ratio <= 1.0
+
+
+def judge(case: Case, summary: dict[str, Any], solution: Solution) -> Verdict:
+    """Hold the mesh errors of a solved case against the accuracy it asks for.
+
+    Each direction is refined until its share of a half-width is below half of what is allowed, as if half-widths
+    went with the square of the cell size; the direction with the larger share so comes first.
+    """
+    bars = summary.get("numerical_uncertainty") or {}
+    scale = scales(summary, solution)
+    found: dict[str, Judged] = {}
+    finer = [1.0, 1.0]
+    for (part, name, key), tolerance in _asked(case, summary).items():
+        allowed = _allowed(tolerance, BY_KEY[part, key], name, scale)
+        if allowed is None:
+            continue
+        judged = Judged(_leaf(bars, part, name, key), allowed)
+        found[f"{part}.{name}.{key}"] = judged
+        if judged.ratio <= 1.0:
+            continue
+        errors = [_leaf(bars.get(word) or {}, part, name, key) for word in ("from_r", "from_z")]
+        total = sum(abs(e) for e in errors if e is not None)
+        for k, error in enumerate(errors):
+            share = 0.5 if error is None or total == 0.0 else abs(error) / total
+            if 2.0 * share * judged.ratio > 1.0:
+                finer[k] = max(finer[k], FINER, min(FINEST, math.sqrt(2.0 * share * judged.ratio)))
+    return Verdict(found, scale, *finer)
+
+
+def as_summary(verdict: Verdict, stopped_by: str | None, why: str, solves: int) -> dict[str, Any]:
+    """The entry `accuracy` of the summary.
+
+    stopped_by : None, "cells", "memory", "mesh" (counts fixed by the case), "convergence" or "model"
+    why        : the sentence about what stopped it
+    """
+    if verdict.reached and stopped_by is None:
+        text = "The accuracy asked for is reached."
+    else:
+        worst = f"`{verdict.worst}`" if verdict.worst else "the mesh error"
+        judged = verdict.quantity.get(verdict.worst or "")
+        known = "" if judged is None or judged.half_width is None else f", {judged.ratio:.3g} times what is allowed"
+        text = f"The accuracy asked for is not reached, by most in {worst}{known}: {why}"
+    return {
+        "reached": verdict.reached and stopped_by is None,
+        "stopped_by": stopped_by,
+        "text": text,
+        "solves": solves,
+        "worst": verdict.worst,
+        "scale": verdict.scale,
+        "quantity": {path: asdict(judged) for path, judged in verdict.quantity.items()},
+    }
+
+
+def _asked(case: Case, tree: dict[str, Any]) -> dict[tuple[str, str, str], Tolerance]:
+    """The quantities that have a value, with the tolerance of each; a path counts before a name for all."""
+    wanted = case.solve.accuracy
+    have = list(quantities(tree))
+    if wanted is None:
+        return {}
+    if isinstance(wanted, Tolerance):
+        headline = {(m.part, m.key) for m in HEADLINE}
+        return {(part, name, key): wanted for part, name, key in have if (part, key) in headline}
+    asked: dict[tuple[str, str, str], Tolerance] = {}
+    for path, tolerance in sorted(wanted.items(), key=lambda entry: "." in entry[0]):
+        parts = parts_of(path)
+        assert parts is not None
+        one, measured = parts
+        for part, name, key in have:
+            if (part, key) == (measured.part, measured.key) and one in (None, name):
+                asked[part, name, key] = tolerance
+    return asked
+
+
+def _allowed(tolerance: Tolerance, measured: Measured, name: str, scale: dict[str, Any]) -> float | None:
+    """The half-width allowed in SI, or None where it would be a share of nothing."""
+    if tolerance.amount is not None:
+        return tolerance.amount
+    assert tolerance.per_cent is not None
+    share = tolerance.per_cent / 100.0
+    if measured.kind == "pressure":
+        return share * scale["pressure_Pa"][name] or None
+    if scale["temperature_K"] <= SMALLEST_TEMPERATURE:
+        return None  # heats are round-off too where nothing is warmed or cooled
+    return share * scale["temperature_K" if measured.kind == "temperature_difference" else "heat_W"] or None
+
+
+def _leaf(tree: Any, *path: str) -> float | None:
+    for step in path:
+        tree = tree.get(step) if isinstance(tree, dict) else None
+    return tree
