@@ -52,11 +52,7 @@ def shown(value: object, longest: int = 60) -> str:
     elif isinstance(value, str):
         text = f'"{value}"'
     elif isinstance(value, dict):
-        text = (
-            "{ " + ", ".join(f"{name} = {shown(entry)}" for name, entry in value.items()) + " }"
-            if value
-            else "{}"
-        )
+        text = "{ " + ", ".join(f"{name} = {shown(entry)}" for name, entry in value.items()) + " }" if value else "{}"
     elif isinstance(value, list | tuple):
         text = "[" + ", ".join(shown(entry) for entry in value) + "]"
     else:

@@ -32,21 +32,13 @@ class Reported:
 
 SUMMARY = (
     Reported("mass_flow_kg_s", "mass flow", "m", "kg/s", "mass per time through the stream", "mass_flow"),
-    Reported(
-        "mean_velocity_m_s", "mean velocity", "u_m", "m/s", "mean axial velocity at the inlet", "velocity"
-    ),
-    Reported(
-        "reynolds", "Reynolds number", "Re", "", "density x mean velocity x D_h / viscosity, inlet state"
-    ),
+    Reported("mean_velocity_m_s", "mean velocity", "u_m", "m/s", "mean axial velocity at the inlet", "velocity"),
+    Reported("reynolds", "Reynolds number", "Re", "", "density x mean velocity x D_h / viscosity, inlet state"),
     Reported("prandtl", "Prandtl number", "Pr", "", "viscosity x specific heat / conductivity, inlet state"),
     Reported("peclet", "Péclet number", "Pe", "", "Re Pr, inlet state"),
     Reported("graetz", "Graetz number", "Gz", "", "Re Pr D_h / heated length, inlet state"),
-    Reported(
-        "heated_length_m", "heated length", "L_h", "m", "length of all sections that exchange heat", "length"
-    ),
-    Reported(
-        "largest_reynolds", "largest Reynolds number", "Re_max", "", "largest along the tube, bulk viscosity"
-    ),
+    Reported("heated_length_m", "heated length", "L_h", "m", "length of all sections that exchange heat", "length"),
+    Reported("largest_reynolds", "largest Reynolds number", "Re_max", "", "largest along the tube, bulk viscosity"),
     Reported(
         "inlet_temperature_K",
         "inlet temperature",
@@ -196,12 +188,8 @@ SUMMARY = (
 
 CURVES = (
     Reported("z_m", "z", "z", "m", "from the tube's start", "length"),
-    Reported(
-        "bulk_temperature_K", "bulk temperature", "T_b", "K", "temperature of the mixed fluid", "temperature"
-    ),
-    Reported(
-        "wetted_wall_temperature_K", "wetted wall", "T_w", "K", "fluid's side of the wall", "temperature"
-    ),
+    Reported("bulk_temperature_K", "bulk temperature", "T_b", "K", "temperature of the mixed fluid", "temperature"),
+    Reported("wetted_wall_temperature_K", "wetted wall", "T_w", "K", "fluid's side of the wall", "temperature"),
     Reported("wall_heat_flux_W_m2", "wall heat flux", "q", "W/m²", "positive into the stream", "heat_flux"),
     Reported(
         "heat_transfer_coefficient_W_m2K",
@@ -226,15 +214,9 @@ CURVES = (
         "",
         "8 x wall shear x bulk density / mass velocity²",
     ),
-    Reported(
-        "wall_shear_stress_Pa", "wall shear stress", "τ_w", "Pa", "negative where the flow runs backwards"
-    ),
-    Reported(
-        "axis_velocity_m_s", "velocity on the axis", "u_0", "m/s", "axial velocity at r = 0", "velocity"
-    ),
-    Reported(
-        "peak_velocity_m_s", "peak velocity", "u_max", "m/s", "largest axial velocity at this z", "velocity"
-    ),
+    Reported("wall_shear_stress_Pa", "wall shear stress", "τ_w", "Pa", "negative where the flow runs backwards"),
+    Reported("axis_velocity_m_s", "velocity on the axis", "u_0", "m/s", "axial velocity at r = 0", "velocity"),
+    Reported("peak_velocity_m_s", "peak velocity", "u_max", "m/s", "largest axial velocity at this z", "velocity"),
     Reported(
         "apparent_friction_factor",
         "apparent friction factor",
@@ -255,9 +237,7 @@ CURVES = (
 
 OUTSIDE = (
     Reported("z_m", "z", "z", "m", "from the tube's start", "length"),
-    Reported(
-        "temperature_K", "outside surface", "T_o", "K", "temperature of the outer surface", "temperature"
-    ),
+    Reported("temperature_K", "outside surface", "T_o", "K", "temperature of the outer surface", "temperature"),
     Reported(
         "heat_flux_W_m2",
         "heat flux",

@@ -31,9 +31,7 @@ KINDS = {
     "temperature": Kind("a temperature", "K", "20 degC", ("degC", "K", "degF")),
     "temperature_difference": Kind("a temperature difference", "K", "0.1 K", ("K",)),
     "mass_flow": Kind("a mass flow", "kg/s", "4 g/s", ("kg/s", "g/s", "g/min", "kg/h", "lb/h")),
-    "volume_flow": Kind(
-        "a volume flow", "m^3/s", "100 mL/min", ("mL/min", "L/min", "L/h", "m^3/h", "uL/min")
-    ),
+    "volume_flow": Kind("a volume flow", "m^3/s", "100 mL/min", ("mL/min", "L/min", "L/h", "m^3/h", "uL/min")),
     "velocity": Kind("a velocity", "m/s", "0.1 m/s", ("m/s", "mm/s", "ft/s")),
     "pressure": Kind("an absolute pressure", "Pa", "1 atm", ("Pa", "kPa", "bar", "atm", "psi")),
     "density": Kind("a density", "kg/m^3", "998 kg/m^3", ("kg/m^3", "g/cm^3", "kg/L")),
@@ -45,9 +43,7 @@ KINDS = {
     "heat_per_length": Kind("a heat rate per length", "W/m", "20 W/m", ("W/m", "W/cm", "W/ft")),
     "film_coefficient": Kind("a film coefficient", "W/m^2/K", "900 W/m^2/K", ("W/m^2/K", "kW/m^2/K")),
     "contact_resistance": Kind("a contact resistance", "m^2 K/W", "1e-4 m^2 K/W", ("m^2 K/W", "cm^2 K/W")),
-    "heat_per_volume": Kind(
-        "a heat rate per volume", "W/m^3", "2 MW/m^3", ("W/m^3", "kW/m^3", "MW/m^3", "W/cm^3")
-    ),
+    "heat_per_volume": Kind("a heat rate per volume", "W/m^3", "2 MW/m^3", ("W/m^3", "kW/m^3", "MW/m^3", "W/cm^3")),
     "per_kelvin": Kind("an exponent per kelvin", "1/K", "0.05 1/K", ("1/K",)),
 }
 
@@ -77,9 +73,7 @@ def split(text: str) -> tuple[float, str]:
         raise UnitError("must be a number with a unit")
     rest = text[found.end() :].strip()
     if re.match(r"[,']\d", rest):
-        raise UnitError(
-            "has no plain number", f'Write "{re.sub(r"[,]", ".", text, count=1)}": a point, no comma.'
-        )
+        raise UnitError("has no plain number", f'Write "{re.sub(r"[,]", ".", text, count=1)}": a point, no comma.')
     number = float(found.group(1))
     if not math.isfinite(number):
         raise UnitError("must be a finite number with a unit")
@@ -211,9 +205,7 @@ def _scale(unit: str, kind: str) -> tuple[float, float] | None:
             "degF": (5 / 9, 459.67),
             "°F": (5 / 9, 459.67),
         }
-        known |= dict.fromkeys(("degC", "°C", "celsius", "degree_Celsius"), (1.0, 273.15)) | {
-            "mK": (1e-3, 0.0)
-        }
+        known |= dict.fromkeys(("degC", "°C", "celsius", "degree_Celsius"), (1.0, 273.15)) | {"mK": (1e-3, 0.0)}
         return known.get(spelling)
     if re.search(r"(?<![A-Za-z])(g_0|delta_|dB)", spelling):
         return None

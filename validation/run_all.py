@@ -1,6 +1,6 @@
 """Run every validation problem and write validation/SUMMARY.md and the pictures.
 
-    python -m validation.run_all [WORD ...]     only problems whose path holds one of the words; SUMMARY.md then stays
+python -m validation.run_all [WORD ...]     only problems whose path holds one of the words; SUMMARY.md then stays
 """
 
 import importlib
@@ -41,7 +41,8 @@ def as_markdown(folder: Path, rows: list[Row], seconds: float) -> list[str]:
         allowed = "" if row.margin is None else f"{row.margin:.2g}"
         source = row.source + (f"; {row.note}" if row.note else "")
         lines.append(
-            f"| {row.quantity} | {row.computed:.7g} | {row.expected:.7g} | {row.deviation:+.2e} | {allowed} | {verdict} | {source} |"
+            f"| {row.quantity} | {row.computed:.7g} | {row.expected:.7g} | {row.deviation:+.2e} "
+            f"| {allowed} | {verdict} | {source} |"
         )
     return [*lines, ""]
 
@@ -54,7 +55,10 @@ def main(words: list[str]) -> int:
         bad = [row for row in rows if row.passed is False]
         failed += len(bad)
         worst = max((abs(r.deviation) / r.margin for r in rows if r.margin), default=float("nan"))
-        print(f"{folder.relative_to(HERE)}: {len(rows)} rows, {len(bad)} failed, worst {worst:.2f} of its margin, {seconds:.0f} s")
+        print(
+            f"{folder.relative_to(HERE)}: {len(rows)} rows, {len(bad)} failed, "
+            f"worst {worst:.2f} of its margin, {seconds:.0f} s"
+        )
         for row in bad:
             print(f"    {row.quantity}: {row.computed:.7g} instead of {row.expected:.7g} ({row.deviation:+.2e})")
         text += as_markdown(folder, rows, seconds)
@@ -64,7 +68,8 @@ def main(words: list[str]) -> int:
         f"axicfd {__version__}, {date.today().isoformat()}: {judged - failed} of {judged} checks within their margins. "
         "Written by `python -m validation.run_all`.",
         "",
-        "Deviation is (computed - expected) / scale; rows marked `shown` are not judged, with the reason beside the source.",
+        "Deviation is (computed - expected) / scale; rows marked `shown` are not judged, with the reason beside the "
+        "source.",
         "",
     ]
     if not words:

@@ -115,8 +115,7 @@ def _layer_means_one_thing(case: Case, found: Findings) -> None:
                 found.add(
                     (*place, i),
                     None,
-                    f'is called "{layer.name}", the name of a layer of {first[layer.name][1]} in '
-                    "another section",
+                    f'is called "{layer.name}", the name of a layer of {first[layer.name][1]} in another section',
                     'Give it another name = "...".',
                 )
 
@@ -159,9 +158,7 @@ def _is_pinned(outside: Outside) -> bool:
     resistance = outside.contact_resistance
     if outside.temperature is None:
         return False
-    return resistance is None or (
-        min(resistance.value) <= 0 if isinstance(resistance, ZTable) else resistance <= 0
-    )
+    return resistance is None or (min(resistance.value) <= 0 if isinstance(resistance, ZTable) else resistance <= 0)
 
 
 _STEP = "the heat beside a step of prescribed temperature grows without limit as the mesh is refined"
@@ -193,12 +190,7 @@ def _joints(case: Case, found: Findings) -> None:
                         "Make it shorter.",
                     )
                     break
-        elif (
-            both[0] is not None
-            and both[1] is not None
-            and _is_pinned(left.outside)
-            and _is_pinned(right.outside)
-        ):
+        elif both[0] is not None and both[1] is not None and _is_pinned(left.outside) and _is_pinned(right.outside):
             if abs(both[0][1] - both[1][0]) > SAME_TEMPERATURE:
                 was, now = (units.written(T, "temperature", "degC") for T in (both[0][1], both[1][0]))
                 at = ("section", i, "outside", "temperature")
@@ -246,9 +238,7 @@ def _end_joints(case: Case, end: str, section: Section, k: int, found: Findings)
             was = units.written(outside[k], "temperature", "degC")
             key = last.name if last.name in getattr(case.ends, end) else "all"
             place = ("ends", end, key, "temperature")
-            written = _given(found, place, None) or _given(
-                found, ("ends", end, "temperature"), face.temperature
-            )
+            written = _given(found, place, None) or _given(found, ("ends", end, "temperature"), face.temperature)
             found.add(
                 place if key != "all" else ("ends", end, "temperature"),
                 written,
@@ -415,9 +405,7 @@ def _heat_has_somewhere_to_go(case: Case, sections: tuple[PlacedSection, ...], f
             if j and (s, j - 1) in group:
                 group[root((s, j))] = root((s, j - 1))
             for b, before in enumerate(sections[s - 1].layers) if s else ():
-                if before.kind != "void" and min(before.r_outer, layer.r_outer) > max(
-                    before.r_inner, layer.r_inner
-                ):
+                if before.kind != "void" and min(before.r_outer, layer.r_outer) > max(before.r_inner, layer.r_inner):
                     group[root((s, j))] = root((s - 1, b))
     settled = set()
     for s, section in enumerate(sections):

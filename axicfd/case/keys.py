@@ -68,9 +68,7 @@ class Key:
         """TOML text of a value that is accepted."""
         raise NotImplementedError
 
-    def refuse(
-        self, value: Any, allowed: str = "", instead: str = "", inner: tuple[str | int, ...] = ()
-    ) -> BadValue:
+    def refuse(self, value: Any, allowed: str = "", instead: str = "", inner: tuple[str | int, ...] = ()) -> BadValue:
         return BadValue(Problem(value, allowed or self.allowed, instead or self.instead, inner))
 
     def __get_pydantic_core_schema__(self, source: Any, handler: Any) -> CoreSchema:
@@ -141,9 +139,7 @@ class Quantity(_Bounded):
             try:
                 number = units.parse(value, self.kind)
             except units.UnitError as bad:
-                raise BadValue(
-                    Problem(value, bad.allowed, bad.instead or self.instead, (), bad.looks_like)
-                ) from None
+                raise BadValue(Problem(value, bad.allowed, bad.instead or self.instead, (), bad.looks_like)) from None
         elif isinstance(value, bool) or not isinstance(value, int | float):
             raise self.refuse(value, f"must be {self._words}, written as text with a unit")
         elif in_file:
@@ -211,9 +207,7 @@ class Number(_Bounded):
     @property
     def allowed(self) -> str:
         limits = self._limits(lambda limit: f"{limit:g}")
-        return f"must be a {'whole ' if self.whole else ''}number without a unit" + (
-            f", {limits}" if limits else ""
-        )
+        return f"must be a {'whole ' if self.whole else ''}number without a unit" + (f", {limits}" if limits else "")
 
     @property
     def example(self) -> str:
@@ -281,9 +275,7 @@ class Text(Key):
 
     @property
     def allowed(self) -> str:
-        return (
-            "must be a name of letters, digits, spaces, - and _" if self.name else "must be text on one line"
-        )
+        return "must be a name of letters, digits, spaces, - and _" if self.name else "must be text on one line"
 
     @property
     def example(self) -> str:
@@ -335,18 +327,14 @@ def read_columns(key: Key, value: dict, columns: Mapping[str, Key], in_file: boo
     for name in value:
         if name not in columns:
             near = nearest(name, columns)
-            problems.append(
-                Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,))
-            )
+            problems.append(Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,)))
     for name, entry in columns.items():
         column = value.get(name)
         if column is None:
             problems.append(Problem(value, f"needs `{name}`", f"Write {name} = [{entry.example}, ...]."))
             continue
         if not isinstance(column, list | tuple):
-            problems.append(
-                Problem(column, "must be a list", f"Write {name} = [{entry.example}, ...].", (name,))
-            )
+            problems.append(Problem(column, "must be a list", f"Write {name} = [{entry.example}, ...].", (name,)))
             continue
         entries = []
         for i, item in enumerate(column):
@@ -354,8 +342,7 @@ def read_columns(key: Key, value: dict, columns: Mapping[str, Key], in_file: boo
                 entries.append(entry.read(item, in_file))
             except BadValue as bad:
                 problems += [
-                    Problem(p.value, p.allowed, p.instead, (name, i, *p.inner), p.looks_like)
-                    for p in bad.problems
+                    Problem(p.value, p.allowed, p.instead, (name, i, *p.inner), p.looks_like) for p in bad.problems
                 ]
         read[name] = tuple(entries)
     if problems:
@@ -392,9 +379,7 @@ class Along(Quantity):
             return value
         if not isinstance(value, dict) or _is_spread(value):
             return super().read(value, in_file)
-        one = Quantity(
-            self.meaning, self.kind, above=self.above, at_least=self.at_least, at_most=self.at_most
-        )
+        one = Quantity(self.meaning, self.kind, above=self.above, at_least=self.at_least, at_most=self.at_most)
         z = Quantity("distance from the section's start", "length", at_least=0)
         read = read_columns(self, value, {"z": z, "value": one}, in_file)
         back = _first_step_back(read["z"])
@@ -456,9 +441,7 @@ class Property(Quantity):
         for name in value:
             if name not in entries:
                 near = nearest(name, entries)
-                problems.append(
-                    Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,))
-                )
+                problems.append(Problem(value[name], "is not a known key", f"Write `{near}`." if near else "", (name,)))
         for name, entry in entries.items():
             if name not in value:
                 problems.append(Problem(value, f"needs `{name}`", f"Write {name} = {entry.example}."))
@@ -467,8 +450,7 @@ class Property(Quantity):
                 read[name] = entry.read(value[name], in_file)
             except BadValue as bad:
                 problems += [
-                    Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like)
-                    for p in bad.problems
+                    Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems
                 ]
         if problems:
             raise BadValue(*problems)
@@ -486,9 +468,7 @@ class Property(Quantity):
         if isinstance(value, laws.Exponential):
             at = Quantity("", "temperature").write(value.at, raw.get("at"))
             exponent = Quantity("", "per_kelvin").write(value.exponent, raw.get("exponent"))
-            return (
-                f"{{ at = {at}, value = {one.write(value.value, raw.get('value'))}, exponent = {exponent} }}"
-            )
+            return f"{{ at = {at}, value = {one.write(value.value, raw.get('value'))}, exponent = {exponent} }}"
         temperature = _write_list(Quantity("", "temperature"), value.temperature, raw.get("temperature"))
         return f"{{ temperature = {temperature}, value = {_write_list(one, value.value, raw.get('value'))} }}"
 
@@ -508,9 +488,7 @@ class ListOf(Key):
             try:
                 entries.append(self.entry.read(item, in_file))
             except BadValue as bad:
-                problems += [
-                    Problem(p.value, p.allowed, p.instead, (i, *p.inner), p.looks_like) for p in bad.problems
-                ]
+                problems += [Problem(p.value, p.allowed, p.instead, (i, *p.inner), p.looks_like) for p in bad.problems]
         if problems:
             raise BadValue(*problems)
         return tuple(entries)
@@ -544,8 +522,7 @@ class PerName(Key):
                 entries[name] = self.entry.read(item, in_file)
             except BadValue as bad:
                 problems += [
-                    Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like)
-                    for p in bad.problems
+                    Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems
                 ]
         if problems:
             raise BadValue(*problems)
@@ -555,9 +532,7 @@ class PerName(Key):
         raw = raw if isinstance(raw, dict) else {}
         return (
             "{ "
-            + ", ".join(
-                f"{toml_key(name)} = {self.entry.write(item, raw.get(name))}" for name, item in value.items()
-            )
+            + ", ".join(f"{toml_key(name)} = {self.entry.write(item, raw.get(name))}" for name, item in value.items())
             + " }"
         )
 
@@ -573,7 +548,5 @@ class PerName(Key):
 def toml_key(name: str) -> str:
     """A name as a TOML key, quoted where it needs to be."""
     return (
-        name
-        if name and all(mark.isascii() and (mark.isalnum() or mark in "-_") for mark in name)
-        else toml_text(name)
+        name if name and all(mark.isascii() and (mark.isalnum() or mark in "-_") for mark in name) else toml_text(name)
     )

@@ -90,9 +90,7 @@ class Layout:
     @property
     def stream_names(self) -> tuple[str, ...]:
         """Streams from the axis outward, each once."""
-        names = (
-            layer.material for section in self.sections for layer in section.layers if layer.kind == "stream"
-        )
+        names = (layer.material for section in self.sections for layer in section.layers if layer.kind == "stream")
         return tuple(dict.fromkeys(names))
 
 
@@ -158,12 +156,8 @@ def _with_ramps(case: Case) -> list[Outside]:
     outsides = []
     for section, points in zip(case.section, tables, strict=True):
         outside = section.outside
-        if points is not None and (
-            isinstance(outside.temperature, ZTable) or len({value for _, value in points}) > 1
-        ):
-            outside = outside.model_copy(
-                update={"temperature": ZTable(*map(tuple, zip(*points, strict=True)))}
-            )
+        if points is not None and (isinstance(outside.temperature, ZTable) or len({value for _, value in points}) > 1):
+            outside = outside.model_copy(update={"temperature": ZTable(*map(tuple, zip(*points, strict=True)))})
         outsides.append(outside)
     return outsides
 

@@ -42,9 +42,7 @@ GAS_BELOW_DENSITY = 50.0
 class Part(BaseModel):
     """A table of a case file."""
 
-    model_config = ConfigDict(
-        frozen=True, extra="forbid", arbitrary_types_allowed=True, hide_input_in_errors=True
-    )
+    model_config = ConfigDict(frozen=True, extra="forbid", arbitrary_types_allowed=True, hide_input_in_errors=True)
 
     # Known keys that are not open yet, each with what it will do.
     not_yet: ClassVar[Mapping[str, str]] = {}
@@ -93,21 +91,13 @@ class Profile(Key):
 
     def _from_file(self, value: dict) -> FileProfile:
         if set(value) != {"file"}:
-            raise self.refuse(
-                value, "names a file and says more beside it", 'Write { file = "inlet.csv" } alone.'
-            )
+            raise self.refuse(value, "names a file and says more beside it", 'Write { file = "inlet.csv" } alone.')
         name = value["file"]
         if not isinstance(name, str) or not name:
             raise self.refuse(name, "must be the name of a file", inner=("file",))
-        wanted = (
-            "Give a file with the header row `r_m,velocity,temperature_K` and one row of numbers per radius."
-        )
+        wanted = "Give a file with the header row `r_m,velocity,temperature_K` and one row of numbers per radius."
         try:
-            rows = [
-                row.split(",")
-                for row in Path(name).read_text(encoding="utf-8-sig").splitlines()
-                if row.strip()
-            ]
+            rows = [row.split(",") for row in Path(name).read_text(encoding="utf-8-sig").splitlines() if row.strip()]
         except (OSError, UnicodeDecodeError) as why:
             reason = getattr(why, "strerror", None) or "it is not UTF-8 text"
             raise self.refuse(name, f"cannot be read: {reason}", wanted, ("file",)) from None
@@ -136,9 +126,7 @@ class Profile(Key):
             raise self.refuse(
                 name, "has a negative radius or velocity, or a temperature not above 0 K", wanted, ("file",)
             )
-        return self._increasing(
-            FileProfile(**{column: tuple(numbers) for column, numbers in columns.items()}), value
-        )
+        return self._increasing(FileProfile(**{column: tuple(numbers) for column, numbers in columns.items()}), value)
 
     def _increasing(self, profile: FileProfile, value: dict) -> FileProfile:
         if any(b <= a for a, b in zip(profile.r_m, profile.r_m[1:], strict=False)):
@@ -158,8 +146,7 @@ class Profile(Key):
         return (
             "{ "
             + ", ".join(
-                f"{name} = {text}"
-                for name, text in zip(("r_m", "velocity", "temperature_K"), lists, strict=True)
+                f"{name} = {text}" for name, text in zip(("r_m", "velocity", "temperature_K"), lists, strict=True)
             )
             + " }"
         )
@@ -198,8 +185,7 @@ class Stream(Part):
     inlet_profile: Annotated[
         str | FileProfile,
         Profile(
-            "shape of the velocity at the inlet: flat, developed, or from a file with r_m, velocity, "
-            "temperature_K"
+            "shape of the velocity at the inlet: flat, developed, or from a file with r_m, velocity, temperature_K"
         ),
     ] = "flat"
     direction: Annotated[str, Choice("the way it flows along z", ("+z", "-z"))] = "+z"
@@ -236,8 +222,7 @@ Stream.displaces = {flow: tuple(other for other in Stream.FLOWS if other != flow
 # ------------------------------------------------------------------------------------------------ materials
 
 _OUTSIDE_RANGE = Choice(
-    "what to do where a table is left: refuse the answer, hold the end value, or extend it in a "
-    "straight line",
+    "what to do where a table is left: refuse the answer, hold the end value, or extend it in a straight line",
     ("refuse", "hold", "extend"),
 )
 
@@ -295,21 +280,16 @@ class Conductivity(Property):
             ("z", Property(self.meaning, self.kind, at_least=0)),
         ):
             if name not in value:
-                problems.append(
-                    keys.Problem(value, f"needs `{name}`", 'Write { r = "0.3 W/m/K", z = "2 W/m/K" }.')
-                )
+                problems.append(keys.Problem(value, f"needs `{name}`", 'Write { r = "0.3 W/m/K", z = "2 W/m/K" }.'))
                 continue
             try:
                 read[name] = key.read(value[name], in_file)
             except keys.BadValue as bad:
                 problems += [
-                    keys.Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like)
-                    for p in bad.problems
+                    keys.Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems
                 ]
         problems += [
-            keys.Problem(value[name], "is not a known key", "", (name,))
-            for name in value
-            if name not in ("r", "z")
+            keys.Problem(value[name], "is not a known key", "", (name,)) for name in value if name not in ("r", "z")
         ]
         if problems:
             raise keys.BadValue(*problems)
@@ -329,9 +309,7 @@ class Solid(Part):
         Law | AlongAcross,
         Conductivity("thermal conductivity, or { r = across, z = along }", "conductivity", above=0),
     ]
-    density: Annotated[Law | None, Property("density; only a solve in time needs it", "density", above=0)] = (
-        None
-    )
+    density: Annotated[Law | None, Property("density; only a solve in time needs it", "density", above=0)] = None
     specific_heat: Annotated[
         Law | None, Property("specific heat; only a solve in time needs it", "specific_heat", above=0)
     ] = None
@@ -387,9 +365,7 @@ def _continued_down(law: Law) -> Law:
     if not isinstance(law, laws.Table) or law.temperature[0] != begins:
         return law
     (T0, T1), (k0, k1) = law.temperature[:2], law.value[:2]
-    return laws.Table(
-        (low, *law.temperature), (k0 + (k1 - k0) * (low - T0) / (T1 - T0), *law.value), law.logarithmic
-    )
+    return laws.Table((low, *law.temperature), (k0 + (k1 - k0) * (low - T0) / (T1 - T0), *law.value), law.logarithmic)
 
 
 def _common_span(*of: Law) -> tuple[float, float]:
@@ -421,9 +397,9 @@ class Layer(Part):
             instead="Give the thickness of this layer alone, or its `outer_diameter`.",
         ),
     ] = None
-    outer_diameter: Annotated[
-        float | None, Quantity("outer diameter, instead of the thickness", "length", above=0)
-    ] = None
+    outer_diameter: Annotated[float | None, Quantity("outer diameter, instead of the thickness", "length", above=0)] = (
+        None
+    )
     contact_resistance: Annotated[
         float | None,
         Quantity(
@@ -432,9 +408,7 @@ class Layer(Part):
             at_least=0,
         ),
     ] = None
-    heat_per_volume: Annotated[
-        float | None, Quantity("heat generated in it, per volume", "heat_per_volume")
-    ] = None
+    heat_per_volume: Annotated[float | None, Quantity("heat generated in it, per volume", "heat_per_volume")] = None
     cells_across: Annotated[
         int | None, Number("number of cells across it", whole=True, at_least=1, at_most=2000, sample=12)
     ] = None
@@ -491,15 +465,11 @@ class Outside(Part):
     ] = None
     contact_resistance: Annotated[
         float | ZTable | None,
-        Along(
-            "thermal resistance between that temperature and the surface", "contact_resistance", at_least=0
-        ),
+        Along("thermal resistance between that temperature and the surface", "contact_resistance", at_least=0),
     ] = None
     heat_flux: Annotated[float | ZTable | None, Along("heat brought in per area", "heat_flux")] = None
     heat: Annotated[float | None, Quantity("heat brought in, total over the section", "heat")] = None
-    heat_per_length: Annotated[
-        float | ZTable | None, Along("heat brought in per length", "heat_per_length")
-    ] = None
+    heat_per_length: Annotated[float | ZTable | None, Along("heat brought in per length", "heat_per_length")] = None
     film_coefficient: Annotated[
         float | ZTable | None,
         Along(
@@ -549,18 +519,14 @@ class EndFace(Outside):
     temperature: Annotated[float | None, Quantity("prescribed temperature", "temperature")] = None
     contact_resistance: Annotated[
         float | None,
-        Quantity(
-            "thermal resistance between that temperature and the face", "contact_resistance", at_least=0
-        ),
+        Quantity("thermal resistance between that temperature and the face", "contact_resistance", at_least=0),
     ] = None
     heat_flux: Annotated[float | None, Quantity("heat brought in per area", "heat_flux")] = None
     heat: Annotated[float | None, Quantity("heat brought in, total over the face", "heat")] = None
     heat_per_length: Annotated[None, Quantity("not for an end face", "heat_per_length")] = None
     film_coefficient: Annotated[
         float | None,
-        Quantity(
-            "heat transfer coefficient to the surroundings at `ambient`", "film_coefficient", at_least=0
-        ),
+        Quantity("heat transfer coefficient to the surroundings at `ambient`", "film_coefficient", at_least=0),
     ] = None
     ambient: Annotated[
         float | None, Quantity("temperature of the surroundings, with `film_coefficient`", "temperature")
@@ -575,9 +541,7 @@ class Section(Part):
     outside: Outside
     generated: Annotated[
         dict[str, float],
-        PerName(
-            "heat generated in the named layer within this section", Quantity("heat", "heat"), name="LAYER"
-        ),
+        PerName("heat generated in the named layer within this section", Quantity("heat", "heat"), name="LAYER"),
     ] = {}
     joint_length: Annotated[
         float | None,
@@ -681,9 +645,7 @@ class MeshChoice(Part):
 class Physics(Part):
     """Switches for single effects."""
 
-    viscous_heating: Annotated[
-        bool, Switch("heat from friction, always together with the work of pressure")
-    ] = True
+    viscous_heating: Annotated[bool, Switch("heat from friction, always together with the work of pressure")] = True
 
     not_yet = {
         "buoyancy": "free convection in a vertical tube",
@@ -711,9 +673,7 @@ class ResultsChoice(Part):
 
     stations: Annotated[
         tuple[float, ...],
-        ListOf(
-            "places of radial profiles, from the tube's start", Quantity("distance", "length", at_least=0)
-        ),
+        ListOf("places of radial profiles, from the tube's start", Quantity("distance", "length", at_least=0)),
     ] = ()
 
 
@@ -859,9 +819,7 @@ class Case(Part):
         )
         if own.outside_range == "extend":
             across, along = across.extended(), along.extended()
-        return UsedSolid(
-            name, across, along, own.density, own.specific_heat, own.outside_range, "given in the case"
-        )
+        return UsedSolid(name, across, along, own.density, own.specific_heat, own.outside_range, "given in the case")
 
     def layers_of(self, section: Section) -> tuple[Layer, ...]:
         """The stack of a section: its own, or the case's."""

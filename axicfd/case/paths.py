@@ -161,11 +161,7 @@ def _no_such(path: str, kind: str, name: str, names: list[str]) -> InputError:
     near = keys.nearest(name, names)
     listed = ", ".join(names)
     instead = (
-        f"Write {near}."
-        if near
-        else f"There are: {listed}."
-        if listed
-        else f"The case has no {kind} of its own there."
+        f"Write {near}." if near else f"There are: {listed}." if listed else f"The case has no {kind} of its own there."
     )
     return bad_input(path, None, f"names no {kind} of the case", instead)
 

@@ -40,9 +40,7 @@ def in_structure(tree: dict, source: Source) -> list[Mistake]:
     _stack(found, ("layer",), tree.get("layer"))
     sections = tree.get("section")
     if sections == []:
-        found.add(
-            ("section",), None, "is empty", "Write at least one [[section]] with `length` and `outside`."
-        )
+        found.add(("section",), None, "is empty", "Write at least one [[section]] with `length` and `outside`.")
     for i, section in _entries(sections):
         _stack(found, ("section", i, "layer"), section.get("layer"))
         if not section.get("layer") and not tree.get("layer"):
@@ -224,9 +222,7 @@ def _stream_in_place(found: Findings, place: Place, layer: dict, on_axis: bool) 
     if isinstance(name, str) and name not in streams:
         near = keys.nearest(name, streams)
         listed = f"There is: {', '.join(streams)}." if streams else "Write its table [stream.NAME]."
-        found.add(
-            (*place, "stream"), name, "is not a [stream] of the case", f'Write "{near}".' if near else listed
-        )
+        found.add((*place, "stream"), name, "is not a [stream] of the case", f'Write "{near}".' if near else listed)
     elif isinstance(name, str) and not on_axis:
         found.add(
             (*place, "stream"),
@@ -257,9 +253,7 @@ def _size(found: Findings, place: Place, layer: dict, on_axis: bool) -> None:
                     else "Write `diameter`: twice this, if it was meant as a radius.",
                 )
         if not {"diameter", "thickness", "outer_diameter"} & set(layer):
-            found.add(
-                place, None, "has no diameter", 'The layer on the axis needs one: write diameter = "12 mm".'
-            )
+            found.add(place, None, "has no diameter", 'The layer on the axis needs one: write diameter = "12 mm".')
         return
     if "diameter" in layer:
         found.add(
@@ -330,16 +324,14 @@ def _condition(found: Findings, place: Place, condition: Any) -> None:
                 extra(
                     name,
                     "stands beside a prescribed `temperature`, which settles the heat by itself",
-                    "A film is film_coefficient with ambient; a resistance to a temperature is "
-                    "contact_resistance.",
+                    "A film is film_coefficient with ambient; a resistance to a temperature is contact_resistance.",
                 )
         return
     if "contact_resistance" in given:
         extra(
             "contact_resistance",
             "stands without the `temperature` it leads to",
-            'Write temperature = "85 degC" beside it; for a resistance between two layers write it in '
-            "the [[layer]].",
+            'Write temperature = "85 degC" beside it; for a resistance between two layers write it in the [[layer]].',
         )
     for name in heats[1:]:
         extra(
@@ -353,24 +345,17 @@ def _condition(found: Findings, place: Place, condition: Any) -> None:
         extra(
             "ambient",
             "stands without `film_coefficient`",
-            'Write film_coefficient = "10 W/m^2/K" beside it, or `temperature` if the surface itself '
-            "is held at it.",
+            'Write film_coefficient = "10 W/m^2/K" beside it, or `temperature` if the surface itself is held at it.',
         )
 
 
 def _generation(found: Findings, place: Place, generated: Any, stack: Any) -> None:
-    layers = (
-        {layer_name(layer): layer for layer in stack if isinstance(layer, dict)}
-        if isinstance(stack, list)
-        else {}
-    )
+    layers = {layer_name(layer): layer for layer in stack if isinstance(layer, dict)} if isinstance(stack, list) else {}
     for name, heat in _table(generated).items() if layers else ():
         if name not in layers:
             near = keys.nearest(name, layers)
             listed = f"Its layers are: {', '.join(layers)}."
-            found.add(
-                (*place, name), heat, "names no layer of this section", f"Write `{near}`." if near else listed
-            )
+            found.add((*place, name), heat, "names no layer of this section", f"Write `{near}`." if near else listed)
         elif layers[name].get("void"):
             found.add(
                 (*place, name),
@@ -381,11 +366,7 @@ def _generation(found: Findings, place: Place, generated: Any, stack: Any) -> No
 
 
 def _end_names(found: Findings, place: Place, faces: dict, stack: Any) -> None:
-    layers = (
-        {layer_name(layer): layer for layer in stack if isinstance(layer, dict)}
-        if isinstance(stack, list)
-        else {}
-    )
+    layers = {layer_name(layer): layer for layer in stack if isinstance(layer, dict)} if isinstance(stack, list) else {}
     solids = [name for name, layer in layers.items() if layer.get("solid")]
     listed = f"Solid layers there: {', '.join(solids)}." if solids else "There is no solid layer there."
     for name, face in faces.items():
@@ -395,9 +376,7 @@ def _end_names(found: Findings, place: Place, faces: dict, stack: Any) -> None:
             found.add((*place, name), None, "has no end face with a condition: only solids have", listed)
         elif name not in solids:
             near = keys.nearest(name, solids)
-            found.add(
-                (*place, name), None, "names no layer of this end", f"Write `{near}`." if near else listed
-            )
+            found.add((*place, name), None, "names no layer of this end", f"Write `{near}`." if near else listed)
     if (
         layers
         and not solids

@@ -60,9 +60,7 @@ def load(case: str | os.PathLike, set: Mapping[str, Any] | None = None) -> Case:
     if set:
         before = tree
         tree = paths.replaced(tree, set)
-        settings = [
-            place for key in set if (place := paths.place_of(tree, key) or paths.place_of(before, key))
-        ]
+        settings = [place for key in set if (place := paths.place_of(tree, key) or paths.place_of(before, key))]
     _find_files(tree, directory)
     return build(tree, Source(file, lines_of(text), tuple(settings)))
 
@@ -102,13 +100,9 @@ def _text_of(case: str | os.PathLike) -> tuple[str, str | None, Path]:
         hint = f"Did you mean {folder / near}?" if near else "`axicfd new NAME` writes a case to start from."
         raise InputError([Mistake(str(path), None, "", None, "does not exist", hint)]) from None
     except UnicodeDecodeError:
-        raise InputError(
-            [Mistake(str(path), None, "", None, "is not UTF-8 text", "Save it as UTF-8.")]
-        ) from None
+        raise InputError([Mistake(str(path), None, "", None, "is not UTF-8 text", "Save it as UTF-8.")]) from None
     except OSError as why:
-        raise InputError(
-            [Mistake(str(path), None, "", None, f"cannot be read: {why.strerror or why}")]
-        ) from None
+        raise InputError([Mistake(str(path), None, "", None, f"cannot be read: {why.strerror or why}")]) from None
 
 
 def _syntax_mistake(file: str | None, text: str, why: str) -> Mistake:
@@ -124,20 +118,13 @@ def _syntax_mistake(file: str | None, text: str, why: str) -> Mistake:
     read = text.splitlines()[line - 1].strip() if line and line <= len(text.splitlines()) else ""
     instead = ""
     after = read.partition("=")[2].strip()
-    if (
-        after
-        and after[0] not in "\"'[{"
-        and any(mark.isalpha() for mark in after)
-        and "Cannot overwrite" not in why
-    ):
+    if after and after[0] not in "\"'[{" and any(mark.isalpha() for mark in after) and "Cannot overwrite" not in why:
         instead = f'A quantity or a word stands in quotes: "{after.partition("#")[0].strip()}".'
     elif "illegal character '\\n'" in why.lower():
         why = "a text has no closing quote"
         instead = f"Write {read.partition('#')[0].rstrip()}{after[:1]}."
     elif "Cannot overwrite" in why or "twice" in why or "declared" in why:
-        instead = (
-            "The same key or table stands twice; for several sections or layers write [[section]], [[layer]]."
-        )
+        instead = "The same key or table stands twice; for several sections or layers write [[section]], [[layer]]."
     allowed = f"is not TOML: {why[:1].lower()}{why[1:]}" + (f" in `{read}`" if read else "")
     return Mistake(file, line, "", None, allowed, instead)
 
@@ -157,11 +144,7 @@ def _find_files(tree: dict, directory: Path) -> None:
 def plain(data: Any) -> Any:
     """A copy made of dicts, lists and values only; keys whose value is None are left out."""
     if isinstance(data, BaseModel):
-        return {
-            name: plain(getattr(data, name))
-            for name in type(data).model_fields
-            if name in data.model_fields_set
-        }
+        return {name: plain(getattr(data, name)) for name in type(data).model_fields if name in data.model_fields_set}
     if isinstance(data, Mapping):
         return {key: plain(value) for key, value in data.items() if value is not None}
     if isinstance(data, list | tuple) and type(data) in (list, tuple):
@@ -193,9 +176,7 @@ def as_input_error(found: ValidationError, tree: Any, source: Source, others: li
         if kind == "bad_value":
             for problem in error["ctx"]["bad"].problems:
                 instead = _right_key(part, str(place[-1]), problem) or problem.instead
-                mistakes.append(
-                    source.mistake(tree, place + problem.inner, problem.value, problem.allowed, instead)
-                )
+                mistakes.append(source.mistake(tree, place + problem.inner, problem.value, problem.allowed, instead))
         elif kind == "missing":
             mistakes.append(_missing(tree, place, part, source))
         elif kind == "extra_forbidden":
@@ -267,9 +248,7 @@ def _missing(tree: Any, place: Place, part: type[Part] | None, source: Source) -
     name = str(place[-1])
     key = declared(part, name) if part else None
     if key:
-        return source.mistake(
-            tree, place, None, f"is missing; it {key.allowed}", f"Write {name} = {key.example}."
-        )
+        return source.mistake(tree, place, None, f"is missing; it {key.allowed}", f"Write {name} = {key.example}.")
     instead = {
         "stream": "Write a table [stream.NAME] with its fluid, inlet temperature and flow.",
         "section": "Write at least one [[section]] with `length` and `outside`.",
@@ -281,9 +260,7 @@ def _missing(tree: Any, place: Place, part: type[Part] | None, source: Source) -
 def _unknown(tree: Any, place: Place, value: Any, part: type[Part] | None, source: Source) -> Mistake:
     name = str(place[-1])
     if part and name in part.not_yet:
-        return source.mistake(
-            tree, place, value, f"is not available yet ({part.not_yet[name]})", "Take it out."
-        )
+        return source.mistake(tree, place, value, f"is not available yet ({part.not_yet[name]})", "Take it out.")
     table = _table_words(place[:-1])
     if place[:-1] and name in Case.model_fields and declared(Case, name):
         return source.mistake(
@@ -291,9 +268,7 @@ def _unknown(tree: Any, place: Place, value: Any, part: type[Part] | None, sourc
         )
     known = [*part.model_fields, *part.not_yet] if part else []
     if part is Case and name in Stream.model_fields:
-        return source.mistake(
-            tree, place, value, "stands above the first table", f"Move it into {_home_of(name)}."
-        )
+        return source.mistake(tree, place, value, "stands above the first table", f"Move it into {_home_of(name)}.")
     near = keys.nearest(name, known)
     if near:
         return source.mistake(tree, place, value, "is not a known key", f"Write `{near}`.")
@@ -310,9 +285,7 @@ def _unknown(tree: Any, place: Place, value: Any, part: type[Part] | None, sourc
     if home:
         return source.mistake(tree, place, value, f"is not a key of {table}", f"It belongs into {home}.")
     listed = ", ".join(part.model_fields) if part else ""
-    return source.mistake(
-        tree, place, value, "is not a known key", f"Known here: {listed}." if listed else ""
-    )
+    return source.mistake(tree, place, value, "is not a known key", f"Known here: {listed}." if listed else "")
 
 
 _NAMELESS = "must be a table with a name"
@@ -352,18 +325,12 @@ def _wrong_shape(tree: Any, place: Place, value: Any, source: Source) -> Mistake
     first = str(place[0]) if place else ""
     if first in ("section", "layer") or "layer" in place:
         name = ".".join(str(step) for step in place if isinstance(step, str))
-        return source.mistake(
-            tree, place, value, "must be a list of tables", f"Write [[{name}]] above each one."
-        )
+        return source.mistake(tree, place, value, "must be a list of tables", f"Write [[{name}]] above each one.")
     if first in ("stream", "fluid", "solid", "sensor") and len(place) <= 2:
         return source.mistake(tree, place, value, _NAMELESS, f"Write [{first}.NAME] above its keys.")
     if "outside" in place or first == "ends":
-        return source.mistake(
-            tree, place, value, "must be a table", "Write it in braces: { insulated = true }."
-        )
-    return source.mistake(
-        tree, place, value, "must be a table", f"Write [{first}] above its keys." if first else ""
-    )
+        return source.mistake(tree, place, value, "must be a table", "Write it in braces: { insulated = true }.")
+    return source.mistake(tree, place, value, "must be a table", f"Write [{first}] above its keys." if first else "")
 
 
 __all__ = [

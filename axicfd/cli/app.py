@@ -98,9 +98,7 @@ def _parser() -> argparse.ArgumentParser:
     parser.add_argument("--version", action="version", version=f"axicfd {__version__}")
     commands = parser.add_subparsers(dest="command", metavar="COMMAND", title="commands")
     for name, module in COMMANDS.items():
-        command = commands.add_parser(
-            name, help=module.SUMMARY, description=module.SUMMARY + ".", allow_abbrev=False
-        )
+        command = commands.add_parser(name, help=module.SUMMARY, description=module.SUMMARY + ".", allow_abbrev=False)
         module.add_arguments(command)
     parser.epilog = "Not available yet: " + ", ".join(LATER) + "."
     return parser

@@ -17,9 +17,7 @@ VOID_MARK = "."
 
 def first_line(tube: Any, shown: Shown) -> str:
     """`bore 12 mm, outside 14 mm, 1.4 m long`."""
-    bore, outside = (
-        number(shown.value("diameter", value)) for value in (tube.bore_diameter, tube.outer_diameter)
-    )
+    bore, outside = (number(shown.value("diameter", value)) for value in (tube.bore_diameter, tube.outer_diameter))
     unit = shown.unit("diameter")
     length = amount(shown, "length", tube.length)
     if tube.bore_diameter == tube.outer_diameter:
@@ -152,9 +150,7 @@ def _ruler(edges: list[int]) -> str:
 
 def _layer_words(layer: Any, shown: Shown) -> str:
     if layer.kind == "stream":
-        return (
-            f"{layer.name} to {number(shown.value('diameter', 2 * layer.r_outer))} {shown.unit('diameter')}"
-        )
+        return f"{layer.name} to {number(shown.value('diameter', 2 * layer.r_outer))} {shown.unit('diameter')}"
     thickness = number(shown.value("diameter", layer.r_outer - layer.r_inner))
     what = "no material" if layer.kind == "void" else layer.name
     if layer.kind == "solid" and layer.material and layer.material != layer.name:

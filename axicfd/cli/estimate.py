@@ -31,9 +31,7 @@ def by_hand(case: Case) -> dict[str, float] | None:
     }
     sections = _in_flow_order(case, layout(case))
     for section, stretch in zip(sections, found.stretches, strict=True):
-        estimate[f"section.{section.name}.heat_in"] = (
-            stretch.heat - _generated_per_length(section) * section.length
-        )
+        estimate[f"section.{section.name}.heat_in"] = stretch.heat - _generated_per_length(section) * section.length
     return estimate
 
 
@@ -170,7 +168,6 @@ def _axial_conduction(case: Case, tube: Layout, stream: HandStream, length: floa
     if not solids:
         return None
     carried = math.fsum(
-        float(case.solid_of(layer.material).conductivity_z(stream.inlet_temperature)) * layer.area
-        for layer in solids
+        float(case.solid_of(layer.material).conductivity_z(stream.inlet_temperature)) * layer.area for layer in solids
     )
     return groups.axial_conduction_number(carried, 1.0, length, stream.mass_flow * stream.specific_heat)

@@ -5,8 +5,10 @@ error_model="numpy"  : a division by zero gives inf, which the divergence watch 
 no fastmath          : it makes isnan false, so that divergence would go unseen
 serial               : on shared cores threads that wait cost more than they bring; parallelism goes across cases
 
-The compiler's cache notices an edit only in the file of the kernel that is called, not in files of kernels that this one
-calls, nor a change of options. So the cache lies in a folder of its own, named after the sources of all kernels: an edit
+The compiler's cache notices an edit only in the file of the kernel that is called, not in files of kernels that
+this one
+calls, nor a change of options. So the cache lies in a folder of its own, named after the sources of all kernels:
+an edit
 anywhere starts an empty one, and kernels may call each other across files.
 """
 

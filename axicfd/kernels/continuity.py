@@ -4,7 +4,8 @@
 
 cz (nz + 1, nr) couples the cells beside an axial face (cz[nz]: outlet, p' = 0 there; cz[0] = 0), cr (nz, nr + 1) those
 beside a radial face. The system is symmetric and positive; conjugate gradients solve it, with one symmetric multigrid
-cycle as preconditioner. Smoother: implicit radial lines; coarse meshes join cells in pairs (an odd one stays single); the
+cycle as preconditioner. Smoother: implicit radial lines; coarse meshes join cells in pairs (an odd one stays
+single); the
 sum over each station, solved exactly along z, carries pressure levels over the whole length at once.
 """
 
@@ -12,7 +13,8 @@ import numpy as np
 
 from axicfd.kernels._jit import kernel
 
-# Corrections constant over joined cells come out too small, by up to two per joined direction (Braess 1995, Computing 55, 379).
+# Corrections constant over joined cells come out too small, by up to two per joined direction (Braess 1995,
+# Computing 55, 379).
 JOINED_GAIN = 1.6
 
 
@@ -90,7 +92,9 @@ def dot(a, b):
 
 @kernel
 def factors(cz, cr, f):
-    """Inverse pivots of all radial lines, f (nz, nr): sweeps then need no divisions. Zero in cells without couplings."""
+    """Inverse pivots of all radial lines, f (nz, nr): sweeps then need no divisions. Zero in cells without
+    couplings.
+    """
     nz, nr = f.shape
     for i in range(nz):
         for j in range(nr):

@@ -14,7 +14,8 @@ from axicfd.kernels._jit import kernel
 def upwind_links(gz, gr, wz, wr, loss, open_, w, e, s, n, d):
     """Five-point coefficients with upwind convection; d (nz, nr) is the diagonal, 1 in cells without an equation.
 
-    gz, gr : conductances; wz, wr : m cp at faces, as in `energy.stencil`; open_ : 0 in cells without an equation, else 1
+    gz, gr : conductances; wz, wr : m cp at faces, as in `energy.stencil`; open_ : 0 in cells without an equation,
+    else 1
     """
     nz, nr = loss.shape
     for i in range(nz):

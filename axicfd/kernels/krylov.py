@@ -1,4 +1,6 @@
-"""The Arnoldi step of GMRES on plain vectors. Threaded library routines would wait for busy cores longer than this takes."""
+"""The Arnoldi step of GMRES on plain vectors. Threaded library routines would wait for busy cores longer than this
+takes.
+"""
 
 import numpy as np
 
@@ -7,7 +9,8 @@ from axicfd.kernels._jit import kernel
 
 @kernel
 def orthogonalise(basis, k, w, h):
-    """Take the directions 0 .. k of `basis` (m + 1, n) out of w (n,), and store what is left, normed, as direction k + 1.
+    """Take the directions 0 .. k of `basis` (m + 1, n) out of w (n,), and store what is left, normed, as direction
+    k + 1.
 
     h (m + 1,) receives the projections and the norm of what was left (modified Gram-Schmidt).
     """

@@ -23,7 +23,9 @@ P, N, S, W, E, R = 0, 1, 2, 3, 4, 5
 
 
 class FlowMesh(NamedTuple):
-    """Geometry of one stream's segment of the grid. `open_*` are 1 where the unknown is solved, 0 where it is blocked."""
+    """Geometry of one stream's segment of the grid. `open_*` are 1 where the unknown is solved, 0 where it is
+    blocked.
+    """
 
     nz: int
     nr: int
@@ -181,12 +183,7 @@ def u_line(m, mu, u, p, mz, mr, su, i, k):
             u_n = u[i, j + 1]
         push = (p[i - 1, j] - here * p[east, j]) * m.area[j]
         k[j, R] = open_ * (
-            east_term
-            + a_w * (u[i - 1, j] - u[i, j])
-            + a_n * (u_n - u[i, j])
-            + a_s * (u_s - u[i, j])
-            + push
-            + su[i, j]
+            east_term + a_w * (u[i - 1, j] - u[i, j]) + a_n * (u_n - u[i, j]) + a_s * (u_s - u[i, j]) + push + su[i, j]
         )
         k[j, P] = open_ * (a_w + a_e + a_n + a_s) + (1.0 - open_)
         k[j, N] = open_ * a_n if j < nr - 1 else 0.0

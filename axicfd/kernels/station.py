@@ -1,6 +1,7 @@
 """Momentum and continuity of one station solved together: the coupled smoother of the flow's multigrid.
 
-At station i the unknowns of every ring j are the changes of u on both faces of the station (east i + 1 and west i), of v
+At station i the unknowns of every ring j are the changes of u on both faces of the station (east i + 1 and west
+i), of v
 on the ring's outer face and of p: a block-tridiagonal system in r with blocks of four, eliminated by hand. Stations are
 visited downstream. After each one all pressures further downstream are shifted by one value that makes the section's
 mass flow exact, which takes pressure levels over any length in one sweep.
@@ -12,7 +13,7 @@ march would be unstable.
 import numpy as np
 
 from axicfd.kernels._jit import kernel
-from axicfd.kernels.momentum import N, E, P, R, S, W, explicit_terms, mass_fluxes, u_line, v_line
+from axicfd.kernels.momentum import E, N, P, R, S, W, explicit_terms, mass_fluxes, u_line, v_line
 
 WEST_HOLD = 0.3  # share of the upstream coefficient added to the diagonal: 13 cycles become 8
 
@@ -27,7 +28,8 @@ def sweep(m, mu, rho, u, v, p, mz, mr, su, sv, fc):
     ka = np.zeros((nr + 1, 6))
     kb = np.zeros((nr + 1, 6))
     kc = np.zeros((nr + 1, 6))
-    # what is kept of each ring for the way back: responses to U, W, and (V, P) of the next ring, to the residual, to the shift
+    # what is kept of each ring for the way back: responses to U, W, and (V, P) of the next ring, to the residual,
+    # to the shift
     x = np.empty((nr, 20))
     inflow = 0.0
     for j in range(nr):
@@ -49,7 +51,7 @@ def sweep(m, mu, rho, u, v, p, mz, mr, su, sv, fc):
         au = aw = av = ap = 0.0
         bu = bw = bv = bp = 0.0
         cu = cw = cv = cp = 0.0
-        du = dw = dv = dp = 0.0
+        du = dw = dv = 0.0
         yu = yw = yv = yp = 0.0
         zu = zw = zv = zp = 0.0
         for j in range(nr):
@@ -130,7 +132,7 @@ def sweep(m, mu, rho, u, v, p, mz, mr, su, sv, fc):
             x[j, 12], x[j, 13], x[j, 14], x[j, 15] = yu, yw, yv, yp
             x[j, 16], x[j, 17], x[j, 18], x[j, 19] = zu, zw, zv, zp
             to_v, to_p = -kc[j + 1, N], ring_n * open_n
-            du, dw, dv, dp = cu * to_p, cw * to_p, cv * to_p, cp * to_p
+            du, dw, dv = cu * to_p, cw * to_p, cv * to_p
             cu, cw, cv, cp = cu * to_v, cw * to_v, cv * to_v, cp * to_v
         for j in range(nr - 2, -1, -1):
             to_v, to_p = -kc[j + 1, N], m.ring[j + 1] * m.dz[i] * m.open_v[i, j + 1]

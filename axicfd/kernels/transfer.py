@@ -80,7 +80,8 @@ def restrict_residuals(ru, rv, rc, pair_z, pair_r, cru, crv, crc):
 
 @kernel
 def prolong_add(coarse, zi, zw, ri, rw, open_, fine):
-    """Add to `fine` the bilinear interpolation of `coarse`; zi, ri the lower coarse neighbour of each fine point, zw, rw
+    """Add to `fine` the bilinear interpolation of `coarse`; zi, ri the lower coarse neighbour of each fine point,
+    zw, rw
     the weight of the upper one."""
     n, m = fine.shape
     for i in range(n):
@@ -96,7 +97,9 @@ def prolong_add(coarse, zi, zw, ri, rw, open_, fine):
 
 @kernel
 def sums(values, rows, columns, total):
-    """Sums over joined cells: values (nz, nr); rows, columns: first fine station and ring of each coarse cell of `total`."""
+    """Sums over joined cells: values (nz, nr); rows, columns: first fine station and ring of each coarse cell of
+    `total`.
+    """
     nz, nr = values.shape
     for a in range(len(rows)):
         i1 = rows[a + 1] if a + 1 < len(rows) else nz

@@ -27,12 +27,8 @@ Array = NDArray[np.float64]
 
 UNLIMITED = (-math.inf, math.inf)
 LARGEST_EXPONENT = 300.0  # exp() is cut here: far outside any property, far inside floating point
-SMALLEST_SHARE = (
-    0.01  # a straight continuation stops falling at this share of the end value: a property stays positive
-)
-GAUSS_POINTS = (
-    16  # per piece of a logarithmic table; exact to rounding for any change below some e^10 per piece
-)
+SMALLEST_SHARE = 0.01  # a straight continuation stops falling at this share of the end value: a property stays positive
+GAUSS_POINTS = 16  # per piece of a logarithmic table; exact to rounding for any change below some e^10 per piece
 
 
 @dataclass(frozen=True)
@@ -264,9 +260,7 @@ def _joined(T: Array, y: Array, goes_on: bool, share_floor: bool) -> _Pieces:
     d = _slopes(T, y)
     h = np.diff(T)
     rise = np.diff(y) / h
-    inner = np.column_stack(
-        [y[:-1], d[:-1], (3 * rise - 2 * d[:-1] - d[1:]) / h, (d[:-1] + d[1:] - 2 * rise) / h**2]
-    )
+    inner = np.column_stack([y[:-1], d[:-1], (3 * rise - 2 * d[:-1] - d[1:]) / h, (d[:-1] + d[1:] - 2 * rise) / h**2])
     breaks, origin, c = (
         list(T),
         [T[0], *T[:-1], T[-1]],

@@ -101,9 +101,7 @@ def _water() -> FluidData:
     # less, the curve through the points adds 1e-5 (2e-5 at the cold end).
     dense = (T[0], *(ZERO_CELSIUS + 2.5 * i for i in range(1, 40)), T[-1])
     t = [x / 300.0 for x in dense]
-    viscosity = [
-        1e-6 * (280.68 * x**-1.9 + 511.45 * x**-7.7 + 61.131 * x**-19.6 + 0.45903 * x**-40) for x in t
-    ]
+    viscosity = [1e-6 * (280.68 * x**-1.9 + 511.45 * x**-7.7 + 61.131 * x**-19.6 + 0.45903 * x**-40) for x in t]
     conductivity = [1.6630 * x**-1.15 - 1.7781 * x**-3.4 + 1.1567 * x**-6.0 - 0.432115 * x**-7.6 for x in t]
     return FluidData(
         name="water",
@@ -278,9 +276,6 @@ _SOLID_LIST = [
 ]  # fmt: skip
 
 FLUIDS: Mapping[str, FluidData] = MappingProxyType(
-    {
-        fluid.name: fluid
-        for fluid in (_water(), _air(), *(_ethylene_glycol(p, rows) for p, rows in _GLYCOL.items()))
-    }
+    {fluid.name: fluid for fluid in (_water(), _air(), *(_ethylene_glycol(p, rows) for p, rows in _GLYCOL.items()))}
 )
 SOLIDS: Mapping[str, SolidData] = MappingProxyType({solid.name: solid for solid in _SOLID_LIST})

@@ -26,7 +26,8 @@ ACROSS_STREAM = 48  # cells from the axis to the bore's wall in CELLS cells
 ACROSS_SOLID = 8  # cells across a layer up to half as thick as the bore's radius
 STRETCH_TO_WALLS = 4.0  # largest over smallest cell across a layer
 END_CELL = 0.02  # first axial cell at a graded end, in bore radii
-# Where a prescribed temperature begins beside another condition the flux grows like 1 / sqrt(distance). The conductances
+# Where a prescribed temperature begins beside another condition the flux grows like 1 / sqrt(distance). The
+# conductances
 # know that (solver.edges); the finer cells along z let the curves follow it.
 END_CELL_SINGULAR = 0.002
 SAME_RADIUS = 1e-9  # radii closer than this share of the outer radius are one interface
@@ -152,7 +153,9 @@ def family(case: Case, layout: Layout) -> Family:
     total = across * sum(s.cells for s in axial)
     if choice.at_most is not None and total > choice.at_most:
         counts = f"{across} x {sum(s.cells for s in axial)} cells"
-        allowed = f"is less than the {counts} that {'`radial` and `axial` ask' if choice.axial else 'this case needs'} for"
+        allowed = (
+            f"is less than the {counts} that {'`radial` and `axial` ask' if choice.axial else 'this case needs'} for"
+        )
         raise bad_input("mesh.at_most", choice.at_most, allowed, f"Write at_most = {total} or more, or leave it out.")
     return Family(layout, radial, tuple(axial), places)
 
@@ -226,7 +229,8 @@ def _alike(a: PlacedSection, b: PlacedSection) -> bool:
 
 
 def coarser(grid: Grid) -> Grid | None:
-    """The grid with every second face of a grid, where a section or a layer has an even number of cells; None if none has.
+    """The grid with every second face of a grid, where a section or a layer has an even number of cells; None if
+    none has.
 
     Works on any grid of a family, also below its coarsest level; layers and sections keep at least one cell.
     """

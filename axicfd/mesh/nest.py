@@ -6,7 +6,9 @@ from axicfd.mesh.grid import Array
 
 
 def carry(values: Array, z_from: Array, r_from: Array, z_to: Array, r_to: Array) -> Array:
-    """Bilinear interpolation of values (len(z_from), len(r_from)) to the points z_to x r_to; constant beyond the ends."""
+    """Bilinear interpolation of values (len(z_from), len(r_from)) to the points z_to x r_to; constant beyond the
+    ends.
+    """
     along = _interpolate(values, z_from, z_to)
     return np.ascontiguousarray(_interpolate(along.T, r_from, r_to).T)
 

@@ -50,7 +50,9 @@ def stretch_for_end_cell(cells: int, length: float, end_cell: float, at_start: b
         return 1.0
 
     def excess(log_stretch: float) -> float:
-        x = graded_map(float(np.exp(log_stretch)), at_start, at_end)(np.array([0.0, 1.0 / cells, 1.0 - 1.0 / cells, 1.0]))
+        x = graded_map(float(np.exp(log_stretch)), at_start, at_end)(
+            np.array([0.0, 1.0 / cells, 1.0 - 1.0 / cells, 1.0])
+        )
         return float(np.log(length * min(x[1] - x[0], x[3] - x[2]) / end_cell))
 
     high = float(np.log(LARGEST_STRETCH))

@@ -18,9 +18,7 @@ def html(result: Any) -> str:
     cells = []
     for line in headline(summary, shown_units(result.case)):
         words = (line.owner, line.row.label, " ".join(filter(None, (line.text, line.bar))), line.place)
-        cells.append(
-            "<tr>" + "".join(f'<td style="text-align:left">{escape(word)}</td>' for word in words) + "</tr>"
-        )
+        cells.append("<tr>" + "".join(f'<td style="text-align:left">{escape(word)}</td>' for word in words) + "</tr>")
     parts.append(f"<table>{''.join(cells)}</table>")
     cautions = summary.get("cautions") or []
     if cautions:

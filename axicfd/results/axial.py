@@ -192,7 +192,9 @@ def stream_views(case: Case, solution: Solution) -> dict[str, StreamView]:
 
 
 def _bulk(fluid: UsedFluid, t_in: float, enthalpy: Array, flow: Array) -> Array:
-    """(n,) temperature from the inlet temperature whose enthalpy is the convected one over the mass flow; nan at rest."""
+    """(n,) temperature from the inlet temperature whose enthalpy is the convected one over the mass flow; nan at
+    rest.
+    """
     if not np.all(flow > 0.0):
         return np.full(len(flow), np.nan)
     wanted = enthalpy / flow

@@ -38,9 +38,7 @@ OWN_LIMIT = "this tool's own target"
 
 REYNOLDS_CAUTION = 2000.0
 REYNOLDS_REFUSED = 4000.0
-REYNOLDS_SOURCE = (
-    "common practice, after Reynolds 1883 (from memory): tubes may turn turbulent from 2000 to 2300 on"
-)
+REYNOLDS_SOURCE = "common practice, after Reynolds 1883 (from memory): tubes may turn turbulent from 2000 to 2300 on"
 RANGE_TOLERANCE = 1e-4  # share of the temperature span by which a law may be left
 GAS_DENSITY_CAUTION = 0.01
 WARM_END = 0.01  # share of the temperature span
@@ -50,9 +48,7 @@ OUTLET_CHANGE = 0.01  # change of the peak velocity over the last diameter
 SMALLEST_PECLET = 1.0
 MASS_TARGET = 1e-10
 ENERGY_TARGET = 1e-8
-SMALLEST_RAYLEIGH = (
-    1.0  # buoyant motion then spreads less heat across the bore than conduction (order of magnitude)
-)
+SMALLEST_RAYLEIGH = 1.0  # buoyant motion then spreads less heat across the bore than conduction (order of magnitude)
 MATTERS = 1e-3  # K; smaller differences raise no caution, as in the scale of the heat balance
 NOTICED = 1.0  # K between wall and inlet from which boiling, freezing or condensing is mentioned
 FADED = 4.0  # reaches after which the warmth of a wall is down to 2 %
@@ -249,9 +245,7 @@ class Ahead:
     def reach_downstream(self, section: PlacedSection) -> float:
         """Length [m] over which a wall comes to the bulk temperature behind a heated part: its fin length."""
         k = float(self.fluid.conductivity(self.t_in))
-        return groups.spreading_length(
-            1.0, _along(self.case, section, self.t_in), duct_heat.NU_H * k * math.pi, 1.0
-        )
+        return groups.spreading_length(1.0, _along(self.case, section, self.t_in), duct_heat.NU_H * k * math.pi, 1.0)
 
 
 @dataclass(frozen=True)
@@ -333,9 +327,7 @@ def _acts(section: PlacedSection, t_in: float) -> bool:
     """Whether a section warms or cools a tube that is at its inlet temperature."""
     if _heat(section):
         return True
-    value = (
-        section.outside.temperature if section.outside.temperature is not None else section.outside.ambient
-    )
+    value = section.outside.temperature if section.outside.temperature is not None else section.outside.ambient
     if not _holds(section) or value is None:
         return False
     return any(abs(T - t_in) > 1e-9 for T in (value.value if isinstance(value, ZTable) else (value,)))
@@ -459,7 +451,8 @@ def _mesh_error(found: Found) -> Iterator[Caution]:
     off = half / allowed if half is not None and allowed else math.inf
     yield Caution(
         "mesh-error",
-        "Mesh errors are larger than the accuracy asked for" + (f", by most in {asked['worst']}" if worst else "")
+        "Mesh errors are larger than the accuracy asked for"
+        + (f", by most in {asked['worst']}" if worst else "")
         + ": what stopped the refinement stands beside the answer. The values hold within the mesh errors printed.",
         place=str(asked["worst"] or "whole tube"),
         found=half,
@@ -650,11 +643,7 @@ def _lead_in(ahead: Ahead) -> Iterator[Caution]:
         if acts:
             break
         lead_in += section.length
-    if (
-        not acts
-        or not ahead.flows
-        or (_solids(sections[0]) and not _insulated_solids(ahead.case, sections[0], end))
-    ):
+    if not acts or not ahead.flows or (_solids(sections[0]) and not _insulated_solids(ahead.case, sections[0], end)):
         return
     reach = ahead.reach_upstream(sections[0])
     needed = FADED * reach
@@ -701,9 +690,7 @@ def _warm_inlet(found: Found) -> Iterator[Caution]:
             yield _warm_end(found, section, end, what, warm, carried)
 
 
-def _warm_end(
-    found: Found, section: PlacedSection, end: str, what: str, warm: float, carried: float
-) -> Caution:
+def _warm_end(found: Found, section: PlacedSection, end: str, what: str, warm: float, carried: float) -> Caution:
     """The caution for an end that is `warm` [K] off the inlet temperature; carried: its k A [W m/K]."""
     share = abs(warm) / found.span
     reach = found.reach_upstream(section)
@@ -831,8 +818,7 @@ class LeftRange:
 
     def sentence(self, case: Case) -> str:
         ends = [
-            "any temperature" if math.isinf(bound) else _temperature(case, bound)
-            for bound in (self.low, self.high)
+            "any temperature" if math.isinf(bound) else _temperature(case, bound) for bound in (self.low, self.high)
         ]
         side = "colder" if self.bound == self.low else "hotter"
         known = f"from {ends[0]} to {ends[1]}" if not any(map(math.isinf, (self.low, self.high))) else (
@@ -888,9 +874,7 @@ def _left_ranges(found: Found) -> list[LeftRange]:
                 names = tuple(dict.fromkeys((*(old.laws if old else ()), name)))
                 if old is None or abs(T - bound) >= abs(old.T - bound):
                     z = float(grid.zc[piece.i0 + i])
-                    old = LeftRange(
-                        used.name, names, T, bound, low, high, piece.layer.name, z, used.outside_range
-                    )
+                    old = LeftRange(used.name, names, T, bound, low, high, piece.layer.name, z, used.outside_range)
                 worst[key] = LeftRange(**(asdict(old) | {"laws": names}))
     return sorted(worst.values(), key=lambda left: -abs(left.T - left.bound))
 
@@ -929,11 +913,7 @@ def _property_range_ahead(ahead: Ahead) -> Iterator[Caution]:
     ):
         if not beyond:
             continue
-        then = (
-            "A solve that finds it so is refused."
-            if fluid.outside_range == "refuse"
-            else "The answer may err then."
-        )
+        then = "A solve that finds it so is refused." if fluid.outside_range == "refuse" else "The answer may err then."
         yield Caution(
             "property-range",
             f"The stream could come to {_temperature(ahead.case, T)}, and the properties of {fluid.name} are "
@@ -951,12 +931,7 @@ def _property_range_ahead(ahead: Ahead) -> Iterator[Caution]:
 
 def _copper(ahead: Ahead) -> Iterator[Caution]:
     """The kind of copper: names that mean two metals."""
-    layers = {
-        layer.name
-        for section in ahead.layout.sections
-        for layer in section.layers
-        if layer.material == "copper"
-    }
+    layers = {layer.name for section in ahead.layout.sections for layer in section.layers if layer.material == "copper"}
     if not layers or "copper" in ahead.case.solid:
         return
     pure, tube = (float(SOLIDS[name].conductivity(300.0)) for name in ("copper", "deoxidised copper"))

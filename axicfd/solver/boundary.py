@@ -179,7 +179,9 @@ def mass_flow(case: Case, layout: Layout, stream: str) -> float:
     return (given.reynolds or 0.0) * viscosity * area / layout.bore_diameter
 
 
-def inlet_velocity(case: Case, stream: str, mass_flow_: float, density: float, rc: Array, area: Array, developed: Array) -> Array:
+def inlet_velocity(
+    case: Case, stream: str, mass_flow_: float, density: float, rc: Array, area: Array, developed: Array
+) -> Array:
     """(nr,) [m/s] velocity in the inlet plane, scaled to the mass flow exactly.
 
     rc, area  : node radii and axial face areas of the stream's cells
@@ -199,4 +201,3 @@ def inlet_temperature(case: Case, stream: str, rc: Array) -> Array:
     if isinstance(given.inlet_profile, FileProfile):
         return np.interp(rc, given.inlet_profile.r_m, given.inlet_profile.temperature_K) - given.inlet_temperature
     return np.zeros(len(rc))
-

@@ -50,7 +50,8 @@ def nusselt_uniform_flux(mesh: FlowMesh, u: Array) -> float:
 
 
 def nusselt_third_kind(mesh: FlowMesh, u: Array, biot: float, peclet: float) -> float:
-    """Developed Nusselt number with an outer resistance: Biot = U D / k of wall and film (infinite: uniform wall temperature).
+    """Developed Nusselt number with an outer resistance: Biot = U D / k of wall and film (infinite: uniform wall
+    temperature).
 
     The slowest decaying solution T ~ phi(r) exp(-g z) of convection, radial and axial conduction; the axial part is
     iterated (it matters below Pe of about 10). Round tube: 3.6568 at infinite Biot, 4 at Biot 4, both at large Pe.

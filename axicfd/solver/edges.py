@@ -73,9 +73,7 @@ def _conduction_reach(case: Case, grid: Grid, layer: PlacedLayer, t_in: float) -
     density = float(fluid.density(t_in))
     diffusivity = float(fluid.conductivity(t_in)) / (density * float(fluid.specific_heat(t_in)))
     area = np.pi * (layer.r_outer**2 - layer.r_inner**2)
-    shear_rate = (
-        4.0 * boundary.mass_flow(case, grid.layout, layer.material) / (density * area * layer.r_outer)
-    )
+    shear_rate = 4.0 * boundary.mass_flow(case, grid.layout, layer.material) / (density * area * layer.r_outer)
     return float(np.sqrt(diffusivity / shear_rate)) if shear_rate > 0.0 else np.inf
 
 

@@ -76,8 +76,10 @@ class Energy:
         """Weights of the first face behind an inlet plane, for conductances gz.
 
         There is no second cell upstream. A central difference alone lets a hot cell beyond draw the first one below the
-        inlet temperature once convection is more than twice the conduction through the face, so only that share of it is
-        kept; the rest is linear upwind from the plane, half a cell upstream. There the fluid is warmer than what enters by
+        inlet temperature once convection is more than twice the conduction through the face, so only that share of
+        it is
+        kept; the rest is linear upwind from the plane, half a cell upstream. There the fluid is warmer than what
+        enters by
         what is conducted upstream: m cp (T_plane - T_in) = k A dT/dz.
         """
         if self.grid.nz == 1:
@@ -139,23 +141,33 @@ class Energy:
         return float(np.abs(self.residual()).sum()) / self.scale()
 
     def step(self, drop: float = DROP) -> float:
-        """One correction of all temperatures, to a share `drop` of the residual; returns the normalised residual after it.
+        """One correction of all temperatures, to a share `drop` of the residual; returns the normalised residual
+        after it.
 
         The linear system is kept while it still serves: properties and flow change little from step to step.
         """
         before = self.error()
-        if self._stale:
-            self._linearise()
-        change = self.cycle.solve(self._r, drop) if self.cycle is not None else None
-        if change is None:
-            # the sparse LU is slower, and sure
-            self.cycle = None
-            self._lu = self._lu or _factorised(self._matrix)
-            change = self._lu.solve(self._r.ravel()).reshape(self.grid.shape)
+        if not np.isfinite(before):
+            return before
+        try:
+            change = self._correction(drop)
+        except RuntimeError:  # a singular system: what led here has diverged
+            return float("nan")
         self.t = self.t + change
         after = self.error()
         self._stale = not (after <= SLOW * before or after <= 1e-12)  # also where it is not a number
         return after
+
+    def _correction(self, drop: float) -> Array:
+        """The solution of the linear system; by the sparse LU, slower and sure, where the cycle does not get there."""
+        if self._stale:
+            self._linearise()
+        change = self.cycle.solve(self._r, drop) if self.cycle is not None else None
+        if change is None:
+            self.cycle = None
+            self._lu = self._lu or _factorised(self._matrix)
+            change = self._lu.solve(self._r.ravel()).reshape(self.grid.shape)
+        return change
 
     def _linearise(self) -> None:
         """The derivative of the residual, exact but for what properties change."""
@@ -167,7 +179,10 @@ class Energy:
         self._matrix = coo_matrix((vals[:n], (rows[:n], cols[:n])), shape=(grid.cells, grid.cells)).tocsr()
         self._lu, self._stale = None, False
         if self.cycle is not None:
-            self.cycle.refresh(self.t, c, self._loss, wz, wr, self._matrix)
+            try:
+                self.cycle.refresh(self.t, c, self._loss, wz, wr, self._matrix)
+            except RuntimeError:  # its coarsest mesh is singular
+                self.cycle = None
 
 
 def _factorised(matrix: csr_matrix) -> SuperLU:

@@ -249,7 +249,8 @@ class Flow:
     def smooth(self, times: int = 1) -> None:
         """Sweeps of coupled stations downstream, for a multigrid cycle.
 
-        The damping takes modes that are smooth along r and oscillate along z, which the sweep alone leaves near the inlet.
+        The damping takes modes that are smooth along r and oscillate along z, which the sweep alone leaves near
+        the inlet.
         """
         station.smooth(
             self.mesh, self.viscosity, self.density, self.u, self.v, self.p, self.mz, self.mr,
@@ -285,7 +286,8 @@ class Flow:
         self.refresh_mass()
 
     def close_continuity(self, to: float = CLOSED) -> None:
-        """Correct the velocities until no more than a share `to` of the mass flow is missing, by the gradient of a potential.
+        """Correct the velocities until no more than a share `to` of the mass flow is missing, by the gradient of a
+        potential.
 
         The pressure is left as it is; what is missing is of the size of the residual.
         """
@@ -313,7 +315,9 @@ class Flow:
         return self._ru, self._rv, self._rc
 
     def residual(self) -> float:
-        """Largest of the three normalised residuals: momenta over inlet momentum flux + wall friction, mass over flow."""
+        """Largest of the three normalised residuals: momenta over inlet momentum flux + wall friction, mass over
+        flow.
+        """
         ru, rv, rc = self.residuals()
         scale = self.momentum_scale()
         parts = np.abs(ru).sum() / scale, np.abs(rv).sum() / scale, np.abs(rc).sum() / self.mass_flow

@@ -2,7 +2,8 @@
 
 Every coarse mesh keeps layers and sections apart (`mesh.build.coarser`) and discretises conduction anew with the same
 resistances, so walls a thousand times more conductive than the fluid, contact resistances and thin layers look the same
-on every level; corrections are interpolated within layers, never across an interface. Lines along r and z are relaxed in
+on every level; corrections are interpolated within layers, never across an interface. Lines along r and z are
+relaxed in
 turn; the coarsest mesh, a few hundred cells, is solved directly. The cycle's operator has upwind convection; it
 preconditions GMRES (Saad & Schultz 1986, SIAM J. Sci. Stat. Comput. 7, 856) for the true one. Alone it takes 5 to 9
 cycles for eight digits over conductivity ratios 0.1 to 1e4, walls of 0.02 to 2 radii and Peclet numbers 0.1 to 1e6; the
@@ -87,7 +88,11 @@ class HeatCycle:
                 wr = np.add.reduceat(wr, fine.rows, axis=0)[:, np.append(fine.columns, wr.shape[1] - 1)]
                 assert level.conductors is not None and level.surroundings is not None
                 coarse = level.conductors.conduction(t, level.surroundings.outside)
-                gz, gr, loss = coarse.gz, coarse.gr, level.surroundings.losses(coarse.half_out, coarse.half_first, coarse.half_last)
+                gz, gr, loss = (
+                    coarse.gz,
+                    coarse.gr,
+                    level.surroundings.losses(coarse.half_out, coarse.half_first, coarse.half_last),
+                )
             shape = level.grid.shape
             level.links = tuple(np.zeros(shape) for _ in range(5))
             level.left = np.zeros(shape)

@@ -159,7 +159,8 @@ def _radial_shapes(grid: Grid) -> tuple[Array, Array]:
 
 
 def _rise_shapes(grid: Grid) -> tuple[Array, Array]:
-    """What a uniform source of 1 W/m3 and conductivity 1 adds to the node temperature as seen from each face [m2], (nz, nr).
+    """What a uniform source of 1 W/m3 and conductivity 1 adds to the node temperature as seen from each face [m2],
+    (nz, nr).
 
     T(r) = -s r^2 / (4 k) + C ln r + D: from the node at r_p to a face at r_f the flux at the face alone would give
     Q ln()/(2 pi k dz); the source in between adds s ( (r_p^2 - r_f^2)/4 - r_f^2 ln(r_p / r_f)/2 ) / k.
@@ -174,7 +175,9 @@ def _rise_shapes(grid: Grid) -> tuple[Array, Array]:
     return np.where(solid, rise_in, 0.0), np.where(solid, rise_out, 0.0)
 
 
-def viscosity(law: Law, t: Array, t_wall: Array | None, t_inner_wall: Array | None, gz: Array, gr: Array, t_in: float) -> Viscosity:
+def viscosity(
+    law: Law, t: Array, t_wall: Array | None, t_inner_wall: Array | None, gz: Array, gr: Array, t_in: float
+) -> Viscosity:
     """Viscosity of a stream where its stresses live.
 
     t            : (nz, nr) temperatures of its cells, in its own direction, from the inlet temperature t_in [K]

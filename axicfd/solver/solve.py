@@ -27,7 +27,11 @@ OnCheck = Callable[[int, float], None]
 
 
 def solve_on(
-    case: Case, grid: Grid, start: Solution | None = None, stop_below: float | None = None, on_check: OnCheck | None = None
+    case: Case,
+    grid: Grid,
+    start: Solution | None = None,
+    stop_below: float | None = None,
+    on_check: OnCheck | None = None,
 ) -> Solution:
     """Solve a case on one grid.
 
@@ -207,7 +211,9 @@ class _Run:
             self.cycle.refresh_viscosity()
 
     def _hand_over_flow(self, closed: float = CLOSED) -> None:
-        """Mass fluxes and volume heat from the flow to the energy equation; `closed`: share of the flow that may be missing."""
+        """Mass fluxes and volume heat from the flow to the energy equation; `closed`: share of the flow that may
+        be missing.
+        """
         if self.flow is None:
             self.energy.set_flow(self.energy.mz, self.energy.mr)
             return
@@ -258,7 +264,9 @@ class _Run:
 
 
 def _pressure_power(flow: Flow) -> Array:
-    """(nz, nr) [W] velocity times pressure gradient, integrated over cells: each face's work goes half to either side."""
+    """(nz, nr) [W] velocity times pressure gradient, integrated over cells: each face's work goes half to either
+    side.
+    """
     m, u, v, p = flow.mesh, flow.u, flow.v, flow.p
     power = np.zeros_like(p)
     face = u[1:-1] * m.area * (p[1:] - p[:-1])

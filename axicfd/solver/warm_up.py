@@ -1,5 +1,7 @@
 """Compiling the kernels before the clock of a solve runs: once per machine and version, half a minute or so."""
 
+from typing import Any
+
 from axicfd.case.layout import layout
 from axicfd.case.model import Case
 from axicfd.kernels import _jit
@@ -7,7 +9,7 @@ from axicfd.mesh.build import family
 from axicfd.solver.solve import solve_on
 
 # The smallest case that goes through every kernel of an ordinary solve. Its numbers are read by nobody.
-TABLES = {
+TABLES: dict[str, Any] = {
     "stream": {"water": {"fluid": "water", "inlet_temperature": 300.0, "reynolds": 50.0}},
     "layer": [
         {"stream": "water", "diameter": 0.01},

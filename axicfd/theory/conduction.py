@@ -200,9 +200,7 @@ def fin_temperature(x: ArrayLike, length: float, spreading_length: float) -> Any
     return (near + far) / (1.0 + math.exp(-2.0 * length / spreading_length))
 
 
-def fin_heat(
-    conductivity: float, area: float, length: float, spreading_length: float, excess: float
-) -> float:
+def fin_heat(conductivity: float, area: float, length: float, spreading_length: float, excess: float) -> float:
     """Heat [W] into the base of the same fin, its base `excess` [K] above the ambient."""
     return conductivity * area * excess * math.tanh(length / spreading_length) / spreading_length
 

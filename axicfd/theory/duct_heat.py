@@ -48,9 +48,7 @@ ENTRY_LENGTH_RULE = 0.05
 
 TERMS = 120  # of every series
 POLYNOMIALS = 320  # of the Galerkin method; 120 eigenvalues come out to 1e-12
-SHORTEST = (
-    1e-4  # x* below which the expansion is used; the last term kept is exp(-2 lambda2 x*) < 1e-20 there
-)
+SHORTEST = 1e-4  # x* below which the expansion is used; the last term kept is exp(-2 lambda2 x*) < 1e-20 there
 
 LEVEQUE_T = (8.0 / 9.0) ** (1.0 / 3.0) / math.gamma(4.0 / 3.0)  # 1.07673; Leveque 1928, closed form
 LEVEQUE_H = (8.0 / 9.0) ** (1.0 / 3.0) * math.gamma(2.0 / 3.0)  # 1.30198; closed form

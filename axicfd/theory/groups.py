@@ -53,9 +53,7 @@ def nusselt(wall_flux: float, diameter: float, conductivity: float, wall_minus_b
     return wall_flux * diameter / (conductivity * wall_minus_bulk)
 
 
-def brinkman_of_difference(
-    viscosity: float, velocity: float, conductivity: float, difference: float
-) -> float:
+def brinkman_of_difference(viscosity: float, velocity: float, conductivity: float, difference: float) -> float:
     """Br = mu U2 / (k dT): viscous heating over conduction across a temperature difference dT."""
     return viscosity * velocity**2 / (conductivity * difference)
 
@@ -80,9 +78,7 @@ def overall_biot(resistance_per_length: float, conductivity: float) -> float:
     return 1.0 / (math.pi * conductivity * resistance_per_length)
 
 
-def axial_conduction_number(
-    wall_conductivity: float, wall_area: float, length: float, capacity_flow: float
-) -> float:
+def axial_conduction_number(wall_conductivity: float, wall_area: float, length: float, capacity_flow: float) -> float:
     """M = (k_w A_w / L) / (m cp): heat conducted along the wall over heat carried by the stream.
 
     wall_area [m2] is the wall's cross-section, capacity_flow m cp in W/K. The effect on the wall flux is a
@@ -96,9 +92,7 @@ AXIAL_CONDUCTION_LIMIT = 0.01
 """M below which wall conduction is usually neglected. Source: Maranzana et al. 2004, from memory."""
 
 
-def spreading_length(
-    wall_conductivity: float, wall_area: float, coefficient: float, perimeter: float
-) -> float:
+def spreading_length(wall_conductivity: float, wall_area: float, coefficient: float, perimeter: float) -> float:
     """Length [m] over which heat spreads along a wall that loses it: sqrt(k_w A_w / (h P)), the fin length.
 
     coefficient [W/(m2 K)] acts on a perimeter [m].

@@ -128,9 +128,7 @@ def hand_estimate(stream: HandStream, stretches: Sequence[Stretch]) -> HandEstim
     )
 
 
-def _pass_through(
-    stream: HandStream, stretch: Stretch, peclet: float, z: float, bulk: float
-) -> StretchEstimate:
+def _pass_through(stream: HandStream, stretch: Stretch, peclet: float, z: float, bulk: float) -> StretchEstimate:
     """One stretch, entered at z with a bulk temperature; the wall is hottest at one of its two ends."""
     x = groups.x_star(stretch.length, stream.bore, peclet)
     start = min(x, duct_heat.SHORTEST)

@@ -384,9 +384,7 @@ def test_what_is_allowed(old, new):
 
 def test_a_film_around_a_wall_settles_a_still_tube():
     text = AIR.replace("reynolds = 500", "reynolds = 0")
-    text = text.replace(
-        "insulated = true", 'heat = "1 W", film_coefficient = "10 W/m^2/K", ambient = "20 degC"'
-    )
+    text = text.replace("insulated = true", 'heat = "1 W", film_coefficient = "10 W/m^2/K", ambient = "20 degC"')
     load(text.replace("[[section]]", '[[layer]]\nsolid = "copper"\nthickness = "1 mm"\n[[section]]'))
 
 

@@ -157,8 +157,7 @@ def test_every_key_answers_bad_values_with_its_name_and_line(header, path, name,
         about = [
             mistake
             for mistake in caught.value.mistakes
-            if mistake.key.split(".")[-len(full.split(".")) :] == full.split(".")
-            or mistake.key.startswith(full)
+            if mistake.key.split(".")[-len(full.split(".")) :] == full.split(".") or mistake.key.startswith(full)
         ]
         assert about, (value, str(caught.value))
         line = text.splitlines()[about[0].line - 1]

@@ -15,9 +15,7 @@ def test_radii_and_places():
     assert [section.z1 for section in tube.sections] == pytest.approx([0.2, 0.7, 1.0, 1.3], rel=1e-15)
     assert all(a.z1 == b.z0 for a, b in zip(tube.sections, tube.sections[1:], strict=False))
     assert tube.length == tube.sections[-1].z1 and tube.sections[0].z0 == 0.0
-    assert [layer.r_outer for layer in tube.sections[0].layers] == pytest.approx(
-        [0.003, 0.004, 0.006], rel=1e-15
-    )
+    assert [layer.r_outer for layer in tube.sections[0].layers] == pytest.approx([0.003, 0.004, 0.006], rel=1e-15)
     assert [layer.kind for layer in tube.sections[0].layers] == ["stream", "solid", "solid"]
     assert [layer.material for layer in tube.sections[0].layers] == ["oil", "copper", "liner"]
     assert tube.bore_diameter == 0.006 and tube.outer_diameter == pytest.approx(0.012, rel=1e-15)
@@ -51,9 +49,7 @@ def test_a_joint_becomes_a_ramp_centred_on_it():
 def test_without_a_joint_the_outside_stays_as_given():
     text = changed(('joint_length = "10 mm"\n', "\n"))
     case = load(text)
-    assert [section.outside for section in layout(case).sections] == [
-        section.outside for section in case.section
-    ]
+    assert [section.outside for section in layout(case).sections] == [section.outside for section in case.section]
 
 
 def test_two_ramps_in_one_section_meet_its_middle():
@@ -68,15 +64,9 @@ def test_two_ramps_in_one_section_meet_its_middle():
     )
     first, middle, last = layout(load(text)).sections
     z = [0.0, 0.025, 0.05, 0.075, 0.1]
-    assert [first.outside.temperature.at(x) for x in z] == pytest.approx(
-        [293.15, 293.15, 293.15, 295.65, 298.15]
-    )
-    assert [middle.outside.temperature.at(x) for x in z] == pytest.approx(
-        [298.15, 300.65, 303.15, 305.65, 308.15]
-    )
-    assert [last.outside.temperature.at(x) for x in z] == pytest.approx(
-        [308.15, 310.65, 313.15, 313.15, 313.15]
-    )
+    assert [first.outside.temperature.at(x) for x in z] == pytest.approx([293.15, 293.15, 293.15, 295.65, 298.15])
+    assert [middle.outside.temperature.at(x) for x in z] == pytest.approx([298.15, 300.65, 303.15, 305.65, 308.15])
+    assert [last.outside.temperature.at(x) for x in z] == pytest.approx([308.15, 310.65, 313.15, 313.15, 313.15])
 
 
 def test_stacks_of_their_own():

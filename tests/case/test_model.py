@@ -23,9 +23,7 @@ def python_case(**more) -> Case:
 
 def test_a_case_from_python_takes_si_numbers_and_text():
     case = python_case()
-    assert (
-        case.layer[0].diameter == 0.004 and case.layer[1].thickness == 0.001 and case.section[0].length == 1.0
-    )
+    assert case.layer[0].diameter == 0.004 and case.layer[1].thickness == 0.001 and case.section[0].length == 1.0
     assert case.section[0].name == "section 1"
     again = python_case(solve={"stop_below": 1e-6}, section=list(case.section))
     assert again.section == case.section and again.solve.stop_below == 1e-6

@@ -82,10 +82,7 @@ def test_none_takes_a_key_out():
 def test_tables_that_do_not_stand_in_the_file_are_made():
     text = BASE[: BASE.index("[mesh]")]
     assert load(text, set={"mesh.axial": 300}).mesh.axial == 300
-    assert (
-        load(text, set={"ends.first": {"temperature": "20 degC"}}).ends.of("first", "tube").temperature
-        == 293.15
-    )
+    assert load(text, set={"ends.first": {"temperature": "20 degC"}}).ends.of("first", "tube").temperature == 293.15
 
 
 @pytest.mark.parametrize(

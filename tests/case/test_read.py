@@ -18,9 +18,7 @@ def test_the_sample_becomes_si():
     assert case.stream["oil"].mass_flow == 0.004
     assert case.stream["oil"].outlet_pressure == 101325.0
     assert case.fluid["oil"].density == Constant(880.0)
-    assert case.fluid["oil"].viscosity == Table(
-        (273.15, 323.15, 423.15), (0.4, 0.04, 0.004), logarithmic=True
-    )
+    assert case.fluid["oil"].viscosity == Table((273.15, 323.15, 423.15), (0.4, 0.04, 0.004), logarithmic=True)
     assert case.solid["liner"].conductivity == AlongAcross(Constant(0.25), Constant(1.0))
     assert [layer.name for layer in case.layer] == ["oil", "tube", "liner"]
     assert case.section[1].outside.heat_flux == 2000.0
@@ -57,9 +55,7 @@ def test_defaults():
 
 def test_an_exponential_law_and_a_constant_table():
     law = '{ at = "20 degC", value = "2 Pa s", exponent = "0.05 1/K" }'
-    text = "\n".join(
-        f"viscosity = {law}" if line.startswith("viscosity") else line for line in BASE.splitlines()
-    )
+    text = "\n".join(f"viscosity = {law}" if line.startswith("viscosity") else line for line in BASE.splitlines())
     assert load(text).fluid["oil"].viscosity == Exponential(293.15, 2.0, 0.05)
 
 
@@ -108,9 +104,7 @@ def test_unreadable_files(tmp_path, prepare, words):
 def test_text_that_is_no_toml(old, new, line, words):
     text = changed((old, new))
     (mistake,) = mistakes_in(text)
-    assert mistake.line in (line, line + 1, line + 3, line + 4) and all(
-        word in mistake.text for word in words
-    )
+    assert mistake.line in (line, line + 1, line + 3, line + 4) and all(word in mistake.text for word in words)
 
 
 def test_all_mistakes_come_at_once_with_their_lines():
@@ -128,10 +122,7 @@ def test_all_mistakes_come_at_once_with_their_lines():
     lines = {key: text.splitlines()[mistake.line - 1] for key, mistake in found.items()}
     assert "-4 g/s" in lines["stream.oil.mass_flow"]
     assert "diameter = 6" in lines["layer.oil.diameter"]
-    assert (
-        "cell_across" in lines["layer.tube.cell_across"]
-        and "`cells_across`" in found["layer.tube.cell_across"].text
-    )
+    assert "cell_across" in lines["layer.tube.cell_across"] and "`cells_across`" in found["layer.tube.cell_across"].text
     assert "coper" in lines["layer.tube.solid"] and '"copper"' in found["layer.tube.solid"].text
     assert "not available yet" in found["section.heater.outside.emissivity"].text
     assert "stands inside [sensor.case]" in found["sensor.case.z_axis"].text
@@ -216,9 +207,7 @@ def test_a_key_in_the_wrong_table_is_led_home():
 
 def test_settings_from_outside_the_file():
     case = load(BASE, set={"stream.oil.volume_flow": "1 L/h", "section.heater.outside.ambient": "25 degC"})
-    assert case.stream["oil"].mass_flow is None and case.stream["oil"].volume_flow == pytest.approx(
-        1e-3 / 3600
-    )
+    assert case.stream["oil"].mass_flow is None and case.stream["oil"].volume_flow == pytest.approx(1e-3 / 3600)
     assert case.section[1].outside.ambient == 298.15 and case.section[1].outside.heat_flux == 2000.0
     with pytest.raises(InputError) as caught:
         load(BASE, set={"stream.oil.mass_flow": 4})
@@ -261,9 +250,7 @@ def test_inlet_files_that_cannot_be_used(tmp_path, content, words):
     assert all(word in mistake.text for word in words)
 
 
-@pytest.mark.parametrize(
-    "start", ["length", "inlet_temperature", 'density       = "880', "outside ", "at ", "fluid  "]
-)
+@pytest.mark.parametrize("start", ["length", "inlet_temperature", 'density       = "880', "outside ", "at ", "fluid  "])
 def test_a_missing_key_is_named_with_the_table_it_is_missing_from(start):
     found = mistakes_in(without(start))
     assert any("missing" in mistake.text and mistake.line for mistake in found)

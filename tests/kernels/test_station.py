@@ -1,4 +1,6 @@
-"""The coupled sweep: a solved flow is its fixed point, it keeps every section's flow, and few cycles of it solve any tube."""
+"""The coupled sweep: a solved flow is its fixed point, it keeps every section's flow, and few cycles of it solve
+any tube.
+"""
 
 import numpy as np
 import pytest

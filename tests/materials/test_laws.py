@@ -39,15 +39,11 @@ def test_derivative_is_the_slope(law):
     np.testing.assert_allclose(law.derivative(T), slope, rtol=1e-6, atol=1e-8)
 
 
-@pytest.mark.parametrize(
-    ("a", "b"), [(281.0, 283.0), (250.0, 450.0), (390.0, 290.0), (410.0, 700.0), (100.0, 270.0)]
-)
+@pytest.mark.parametrize(("a", "b"), [(281.0, 283.0), (250.0, 450.0), (390.0, 290.0), (410.0, 700.0), (100.0, 270.0)])
 def test_integral_is_the_area(law, a, b):
     inside = sorted(t for t in (*T_POINTS, *_breaks(law)) if min(a, b) < t < max(a, b))
     edges = [min(a, b), *inside, max(a, b)]
-    area = math.fsum(
-        quad(law, lo, hi, epsabs=0, epsrel=1e-12)[0] for lo, hi in zip(edges, edges[1:], strict=False)
-    )
+    area = math.fsum(quad(law, lo, hi, epsabs=0, epsrel=1e-12)[0] for lo, hi in zip(edges, edges[1:], strict=False))
     assert law.integral(a, b) == pytest.approx(math.copysign(1, b - a) * area, rel=1e-11)
 
 
@@ -84,9 +80,7 @@ def test_constant_or_not():
         and Table((1.0, 2.0), (3.0, 3.0)).is_constant
         and Exponential(1.0, 2.0, 0.0).is_constant
     )
-    assert (
-        not LAWS["table"].is_constant and not LAWS["exponential"].is_constant and not LAWS["gas"].is_constant
-    )
+    assert not LAWS["table"].is_constant and not LAWS["exponential"].is_constant and not LAWS["gas"].is_constant
 
 
 @pytest.mark.parametrize(

@@ -49,9 +49,7 @@ def test_air_meets_its_source():
         T = float(T)
         if T > air.span[1]:
             continue
-        assert air.density(T) == pytest.approx(
-            float(density), rel=1e-3
-        )  # ideal gas against Lemmon et al. 2000
+        assert air.density(T) == pytest.approx(float(density), rel=1e-3)  # ideal gas against Lemmon et al. 2000
         assert air.specific_heat(T) == pytest.approx(float(specific_heat), rel=1e-9)
         assert air.viscosity(T) == pytest.approx(float(viscosity), rel=1e-9)
         assert air.conductivity(T) == pytest.approx(float(conductivity), rel=1e-9)

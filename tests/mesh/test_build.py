@@ -71,9 +71,7 @@ def test_volumes_are_those_of_the_cylinders(make, level):
         expected = np.pi * (piece.layer.r_outer**2 - piece.layer.r_inner**2) * (placed.z1 - placed.z0)
         assert grid.volume[piece.cells].sum() == pytest.approx(expected, rel=1e-12)
     assert (grid.volume > 0.0).all()
-    assert grid.volume.sum() == pytest.approx(
-        np.pi * f.layout.outer_diameter**2 / 4 * f.layout.length, rel=1e-12
-    )
+    assert grid.volume.sum() == pytest.approx(np.pi * f.layout.outer_diameter**2 / 4 * f.layout.length, rel=1e-12)
 
 
 def test_areas_are_those_of_rings():

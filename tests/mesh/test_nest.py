@@ -17,8 +17,6 @@ def test_a_bilinear_field_is_carried_exactly():
 
 
 def test_values_hold_beyond_the_ends():
-    found = carry(
-        np.array([[1.0], [2.0]]), np.array([0.0, 1.0]), np.array([1.0]), np.array([-1.0, 5.0]), np.zeros(3)
-    )
+    found = carry(np.array([[1.0], [2.0]]), np.array([0.0, 1.0]), np.array([1.0]), np.array([-1.0, 5.0]), np.zeros(3))
     assert found == pytest.approx(np.array([[1.0] * 3, [2.0] * 3]))
     assert found.flags.c_contiguous

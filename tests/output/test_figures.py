@@ -7,16 +7,13 @@ from tests.output.made_up import TEXT, made_up
 
 TWO_WALLS = TEXT.replace(
     '[[section]]\nname = "lead-in"',
-    '[[layer]]\nname = "jacket tube"\nsolid = "copper"\nthickness = "0.5 mm"\n\n'
-    '[[section]]\nname = "lead-in"',
+    '[[layer]]\nname = "jacket tube"\nsolid = "copper"\nthickness = "0.5 mm"\n\n[[section]]\nname = "lead-in"',
 )
 
 
 def texts(figure):
     """Every word in a picture."""
-    return {text.get_text() for axes in figure.axes for text in axes.texts} | {
-        text.get_text() for text in figure.texts
-    }
+    return {text.get_text() for axes in figure.axes for text in axes.texts} | {text.get_text() for text in figure.texts}
 
 
 @pytest.fixture(scope="module")

@@ -103,15 +103,11 @@ class PlainFlow:
         last = i == self.nz
         here = self.u[i, j]
         west = (self.mass_z(i - 1, j) + self.mass_z(i, j)) / 2
-        u_west = self.fromm(
-            west, self.zc[i - 1], [(self.z[n], self.u[n, j]) for n in range(self.nz + 1)], i - 1, i
-        )
+        u_west = self.fromm(west, self.zc[i - 1], [(self.z[n], self.u[n, j]) for n in range(self.nz + 1)], i - 1, i)
         lost = -west * (u_west - here)
         if not last:
             east = (self.mass_z(i, j) + self.mass_z(i + 1, j)) / 2
-            u_east = self.fromm(
-                east, self.zc[i], [(self.z[n], self.u[n, j]) for n in range(self.nz + 1)], i, i + 1
-            )
+            u_east = self.fromm(east, self.zc[i], [(self.z[n], self.u[n, j]) for n in range(self.nz + 1)], i, i + 1)
             lost += east * (u_east - here)
         for f, sign in ((j, -1), (j + 1, 1)):
             if f in (0, self.nr):

@@ -166,9 +166,7 @@ def test_balance(mass, energy, count):
 
 def test_a_balance_that_is_no_number_was_not_checked():
     case, tube, tree, curves, solution = solved()
-    found = cautions.after(
-        case, tube, tree | {"balance": {"mass": math.nan, "energy": 0.0}}, curves, solution
-    )
+    found = cautions.after(case, tube, tree | {"balance": {"mass": math.nan, "energy": 0.0}}, curves, solution)
     assert not only(found, "balance")["checked"]
 
 
@@ -271,9 +269,7 @@ def test_no_refusal_of_a_field_that_did_not_converge():
 
 def test_a_solid_leaves_its_range_on_the_cold_side():
     table = '{ temperature = ["0 degC", "500 degC"], value = ["20 W/m/K", "21 W/m/K"] }'
-    text = changed(
-        ('conductivity = "20 W/m/K"', f"conductivity = {table}"), ('heat = "10 W"', 'heat = "-40 W"')
-    )
+    text = changed(('conductivity = "20 W/m/K"', f"conductivity = {table}"), ('heat = "10 W"', 'heat = "-40 W"'))
     case, tube, _, _, solution = solved(text)
     sentence = cautions.refusal(case, tube, solution)
     assert sentence is not None and "tube is colder" in sentence
@@ -328,9 +324,7 @@ def test_gas_density_is_foreseen():
     # m cp = 100 * pi * 0.004 * 1.8e-5 / 4 * 1000 = 5.65e-3 W/K: 5 mW give 0.88 K, 40 mW 7.07 K
     assert not coded(cautions.before(load(GAS)), "gas-density")
     text = changed(('heat = "5 mW"', 'heat = "40 mW"'), text=GAS)
-    assert only(cautions.before(load(text)), "gas-density")["found"] == pytest.approx(
-        0.0035 * 7.07 / 1.249, rel=0.02
-    )
+    assert only(cautions.before(load(text)), "gas-density")["found"] == pytest.approx(0.0035 * 7.07 / 1.249, rel=0.02)
 
 
 # ----- ends
@@ -412,9 +406,7 @@ def test_a_wall_heated_right_up_to_the_outlet():
     found = only(ended, "warm-end")
     # heat per length times the fin length: sqrt(400 pi/4 9e-6 / (48/11 pi 0.4)) = 22.7 mm of 60 mm
     assert found["place"] == "last end" and found["found"] == pytest.approx(22.7 / 60, rel=0.05)
-    whole = changed(
-        copper, ('length = "40 mm"', 'length = "160 mm"'), (LEAD_OUT, LEAD_OUT.replace("60 mm", "160 mm"))
-    )
+    whole = changed(copper, ('length = "40 mm"', 'length = "160 mm"'), (LEAD_OUT, LEAD_OUT.replace("60 mm", "160 mm")))
     assert not coded(after(whole), "warm-end")
 
 
@@ -454,9 +446,7 @@ def test_reverse_flow_at_the_outlet():
     mz = fields.mz.copy()
     mz[-1, -1] = -0.02 * mz[-1].sum()
     turned = replace(solution, streams={"liquid": replace(fields, mz=mz)})
-    assert only(cautions.after(case, tube, tree, curves, turned), "reverse-flow")["found"] == pytest.approx(
-        0.02
-    )
+    assert only(cautions.after(case, tube, tree, curves, turned), "reverse-flow")["found"] == pytest.approx(0.02)
 
 
 # ----- small Péclet, free convection, phase change, copper
@@ -493,15 +483,11 @@ def test_free_convection_is_named_as_not_checked():
     caution = only(after(changed(EXPANDING)), "free-convection")
     assert not caution["checked"] and caution["found"] > 1e4
     idle = changed(('outside = { heat = "10 W" }', "outside = { insulated = true }"))
-    assert not coded(after(idle), "free-convection") and not coded(
-        cautions.before(load(idle)), "free-convection"
-    )
+    assert not coded(after(idle), "free-convection") and not coded(cautions.before(load(idle)), "free-convection")
 
 
 def test_free_convection_in_a_bore_too_small_for_it():
-    text = changed(
-        EXPANDING, ('diameter = "4 mm"', 'diameter = "0.1 mm"'), ('heat = "10 W"', 'heat = "0.1 W"')
-    )
+    text = changed(EXPANDING, ('diameter = "4 mm"', 'diameter = "0.1 mm"'), ('heat = "10 W"', 'heat = "0.1 W"'))
     assert not coded(cautions.before(load(text)), "free-convection")
 
 

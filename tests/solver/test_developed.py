@@ -77,9 +77,7 @@ def test_films_against_the_series(biot):
 def test_axial_conduction_against_the_series(peclet):
     mesh = mesh_of(96)
     expected, _ = duct_heat.developed_nusselt_T_with_axial_conduction(peclet)
-    assert developed.nusselt_third_kind(mesh, profile(mesh), np.inf, peclet) == pytest.approx(
-        expected, rel=2e-4
-    )
+    assert developed.nusselt_third_kind(mesh, profile(mesh), np.inf, peclet) == pytest.approx(expected, rel=2e-4)
 
 
 def test_a_weak_film_acts_like_uniform_flux():

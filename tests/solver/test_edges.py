@@ -88,9 +88,7 @@ def test_nothing_changes_where_the_field_is_not_singular():
     assert factors(joint(', contact_resistance = "1e-4 m^2 K/W"')) is None
     slow = '[solid.slow]\nconductivity = { r = "1 W/m/K", z = "0 W/m/K" }'
     assert factors(joint(layers=WALL.replace("stainless steel 316", "slow"), tail=slow)) is None
-    both = JOINT.replace("insulated = true", 'heat = "1 W"').replace(
-        'temperature = "50 degC"%s', 'heat = "2 W"'
-    )
+    both = JOINT.replace("insulated = true", 'heat = "1 W"').replace('temperature = "50 degC"%s', 'heat = "2 W"')
     assert factors(tube(sections=both)) is None
 
 

@@ -87,9 +87,7 @@ def test_a_wall_of_layers_is_exact_on_any_mesh(outside, side, level):
         assert np.abs(found - expected).max() < 1e-10 * span
     # both sides of a contact, and the outer surface
     contact = grid.pieces[2].j0
-    assert solution.heat.minus[:, contact] + T_IN == pytest.approx(
-        exact.outer_temperature(1), abs=1e-9 * span
-    )
+    assert solution.heat.minus[:, contact] + T_IN == pytest.approx(exact.outer_temperature(1), abs=1e-9 * span)
     assert solution.heat.plus[:, contact] + T_IN == pytest.approx(exact.inner_temperature[2], abs=1e-9 * span)
     assert solution.heat.minus[:, -1] + T_IN == pytest.approx(exact.outer_temperature(3), abs=1e-9 * span)
     # all heat leaves through the outside
@@ -331,9 +329,7 @@ def test_the_stream_takes_up_what_is_brought_in():
     solution = solved(case, stop_below=1e-11)
     m = mass_flow(case, solution.grid.layout, "oil")
     assert solution.heat.hz[-1].sum() == pytest.approx(50.0, rel=1e-9)
-    bulk = (
-        solution.streams["oil"].mz[-1] * solution.heat.tz[-1, : solution.grid.streams["oil"][1]]
-    ).sum() / m
+    bulk = (solution.streams["oil"].mz[-1] * solution.heat.tz[-1, : solution.grid.streams["oil"][1]]).sum() / m
     assert bulk == pytest.approx(50.0 / (m * 2000.0), rel=1e-9)
 
 
@@ -382,9 +378,7 @@ def test_viscous_heat_raises_the_bulk_by_the_pressure_drop():
 
 def test_a_gas_pays_for_its_expansion():
     """beta T = 1 of an ideal gas: pressure work takes back what friction gives, the bulk stays as warm."""
-    table = (
-        '{ temperature = ["200 K", "250 K", "280 K", "293.15 K", "310 K", "400 K", "600 K"], value = [%s] }'
-    )
+    table = '{ temperature = ["200 K", "250 K", "280 K", "293.15 K", "310 K", "400 K", "600 K"], value = [%s] }'
     density = table % ", ".join(f'"{351.78 / t} kg/m^3"' for t in (200, 250, 280, 293.15, 310, 400, 600))
     case = tube(
         flow='mean_velocity = "1 m/s"',

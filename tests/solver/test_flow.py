@@ -23,9 +23,7 @@ def uniform(mesh, mu):
     )
 
 
-def pipe(
-    cells=8, stations=32, diameters=5.0, reynolds=50.0, stretch=4.0, shape="flat", consistent=True, mu=None
-):
+def pipe(cells=8, stations=32, diameters=5.0, reynolds=50.0, stretch=4.0, shape="flat", consistent=True, mu=None):
     r = R * graded_map(stretch, False, True)(np.arange(cells + 1) / cells)
     z = 2.0 * R * diameters * graded_map(stretch**2, True, False)(np.arange(stations + 1) / stations)
     mesh = flow_mesh(z, r, np.ones((stations, cells)))

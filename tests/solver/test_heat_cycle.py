@@ -7,7 +7,10 @@ from axicfd.solver import energy as energy_module
 from axicfd.solver.solve import _Run, solve_on
 from tests.solver.tubes import grid_of, tube
 
-STEPS = '[[section]]\nname="a"\nlength="{a}"\noutside={{insulated=true}}\n[[section]]\nname="b"\nlength="{b}"\noutside={{{outside}}}'
+STEPS = (
+    '[[section]]\nname="a"\nlength="{a}"\noutside={{insulated=true}}\n'
+    '[[section]]\nname="b"\nlength="{b}"\noutside={{{outside}}}'
+)
 WALL = '[solid.metal]\nconductivity = "{k} W/m/K"\n'
 
 
@@ -18,7 +21,11 @@ def wall(thickness, extra=""):
 def heated(k, thickness, a="30 mm", b="30 mm", flow="reynolds = 50", outside='heat_flux = "1 kW/m^2"', **more):
     more = {"radial": 16, "axial": 64} | more
     return tube(
-        flow=flow, layers=wall(thickness), sections=STEPS.format(a=a, b=b, outside=outside), tail=WALL.format(k=k), **more
+        flow=flow,
+        layers=wall(thickness),
+        sections=STEPS.format(a=a, b=b, outside=outside),
+        tail=WALL.format(k=k),
+        **more,
     )
 
 
@@ -47,7 +54,9 @@ CASES = {
     "Peclet 1e6": heated(15.0, "1 mm", flow="reynolds = 1000", specific_heat='"20 kJ/kg/K"'),
     "film": heated(200.0, "1 mm", outside='film_coefficient = "500 W/m^2/K", ambient = "80 degC"'),
     "along -z": heated(15.0, "1 mm", direction="-z"),
-    "at rest": heated(15.0, "1 mm", flow="reynolds = 0", outside='film_coefficient = "50 W/m^2/K", ambient = "80 degC"'),
+    "at rest": heated(
+        15.0, "1 mm", flow="reynolds = 0", outside='film_coefficient = "50 W/m^2/K", ambient = "80 degC"'
+    ),
 }
 
 
@@ -86,7 +95,9 @@ def test_a_cycle_that_fails_hands_over_to_the_sparse_lu(monkeypatch):
 
 
 def test_a_void_inside_the_wall_stays_out_of_it():
-    stack = '[[layer]]\nvoid = true\nthickness = "1 mm"\n[[layer]]\nname = "jacket"\nsolid = "metal"\nthickness = "1 mm"\n'
+    stack = (
+        '[[layer]]\nvoid = true\nthickness = "1 mm"\n[[layer]]\nname = "jacket"\nsolid = "metal"\nthickness = "1 mm"\n'
+    )
     case = tube(
         layers=wall("1 mm") + stack,
         sections=STEPS.format(a="30 mm", b="30 mm", outside='film_coefficient = "50 W/m^2/K", ambient = "80 degC"'),

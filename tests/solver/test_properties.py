@@ -140,9 +140,7 @@ def test_viscosity_is_taken_where_stresses_live():
 
 def test_a_constant_viscosity_is_the_same_everywhere():
     mesh = stream_mesh(grid_of(tube(), 2), "oil", False)
-    found = properties.viscosity(
-        Constant(0.01), np.zeros((mesh.nz, mesh.nr)), None, None, mesh.gz, mesh.gr, T_IN
-    )
+    found = properties.viscosity(Constant(0.01), np.zeros((mesh.nz, mesh.nr)), None, None, mesh.gz, mesh.gr, T_IN)
     for array in found:
         assert (np.asarray(array) == 0.01).all()
     assert found.corner.shape == (mesh.nz + 1, mesh.nr + 1)

@@ -55,9 +55,7 @@ def test_rod_with_generation():
 
 def test_flux_counts_positive_into_the_body():
     outer = solve_shells([Shell(1.0, 2.0, 3.0)], Side(temperature=10.0), Side(flux=5.0))
-    assert (
-        outer.heat_outer(0) == pytest.approx(-5.0 * 2 * math.pi * 2.0) and outer.outer_temperature(0) > 10.0
-    )
+    assert outer.heat_outer(0) == pytest.approx(-5.0 * 2 * math.pi * 2.0) and outer.outer_temperature(0) > 10.0
     inner = solve_shells([Shell(1.0, 2.0, 3.0)], Side(flux=5.0), Side(temperature=10.0))
     assert inner.heat_inner[0] == pytest.approx(5.0 * 2 * math.pi) and inner.inner_temperature[0] > 10.0
 
@@ -68,9 +66,7 @@ def test_profile_obeys_the_equation():
     r, h = np.linspace(1.1, 1.9, 5), 1e-4
 
     def heat(radius):
-        return (
-            -3.0 * radius * (solved.temperature(0, radius + h) - solved.temperature(0, radius - h)) / (2 * h)
-        )
+        return -3.0 * radius * (solved.temperature(0, radius + h) - solved.temperature(0, radius - h)) / (2 * h)
 
     divergence = (heat(r + h) - heat(r - h)) / (2 * h) / r
     np.testing.assert_allclose(divergence, 7.0, rtol=1e-5)
@@ -111,9 +107,7 @@ def test_fin():
     assert conduction.fin_temperature(1.0, 1e3, 1.0) == pytest.approx(math.exp(-1.0))  # no overflow
     h = 1e-7
     slope = (conduction.fin_temperature(h, 0.3, 0.2) - 1.0) / h
-    assert conduction.fin_heat(16.0, 1e-5, 0.3, 0.2, 30.0) == pytest.approx(
-        -16.0 * 1e-5 * 30.0 * slope, rel=1e-5
-    )
+    assert conduction.fin_heat(16.0, 1e-5, 0.3, 0.2, 30.0) == pytest.approx(-16.0 * 1e-5 * 30.0 * slope, rel=1e-5)
 
 
 def test_wall_flux_share():

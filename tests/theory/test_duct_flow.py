@@ -58,9 +58,7 @@ def test_entry_length():
     # independent computation, not published: Navier-Stokes, finite elements; deviations as documented
     for row in table("hydro_entrance_navier_stokes.csv"):
         reynolds, length = row[:2]
-        assert duct_flow.entry_length(reynolds) == pytest.approx(
-            length, rel=0.05 if 4 < reynolds < 21 else 0.017
-        )
+        assert duct_flow.entry_length(reynolds) == pytest.approx(length, rel=0.05 if 4 < reynolds < 21 else 0.017)
         if reynolds > 49:
             assert duct_flow.entry_length_chen(reynolds) == pytest.approx(length, rel=0.013)
     assert duct_flow.entry_length(0.0) == pytest.approx(0.619)

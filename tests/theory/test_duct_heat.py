@@ -109,12 +109,8 @@ def test_entry_lengths():
         found = brentq(lambda x, f=function, n=limit: f(x) - 1.05 * n, 0.01, 0.2)
         assert found == pytest.approx(length, rel=2e-6)
     # 0.05 D Re Pr, common practice: 1.5 % and 3.4 % above the developed values
-    assert duct_heat.nusselt_T(duct_heat.ENTRY_LENGTH_RULE) / duct_heat.NU_T == pytest.approx(
-        1.0145, abs=1e-4
-    )
-    assert duct_heat.nusselt_H(duct_heat.ENTRY_LENGTH_RULE) / duct_heat.NU_H == pytest.approx(
-        1.0344, abs=1e-4
-    )
+    assert duct_heat.nusselt_T(duct_heat.ENTRY_LENGTH_RULE) / duct_heat.NU_T == pytest.approx(1.0145, abs=1e-4)
+    assert duct_heat.nusselt_H(duct_heat.ENTRY_LENGTH_RULE) / duct_heat.NU_H == pytest.approx(1.0344, abs=1e-4)
 
 
 def test_third_kind():

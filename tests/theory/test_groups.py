@@ -34,11 +34,7 @@ def test_axial_conduction_number_of_a_tube():
     area = math.pi * R**2 * (ratio**2 - 1)
     capacity = pe * kf / (2 * R) * math.pi * R**2  # rho cp U A
     expected = 2 * 100 * (ratio**2 - 1) / (L / R * pe)
-    assert (
-        groups.axial_conduction_number(kw, area, L, capacity)
-        == pytest.approx(expected)
-        == pytest.approx(0.044)
-    )
+    assert groups.axial_conduction_number(kw, area, L, capacity) == pytest.approx(expected) == pytest.approx(0.044)
 
 
 def test_brinkman_and_nusselt():

@@ -8,17 +8,13 @@ from pathlib import Path
 from axicfd.cli import exits
 from axicfd.cli.commands._sets import add_set, chosen
 
-SUMMARY = (
-    "read a case and show its layout, dimensionless numbers, cautions and a hand estimate; solves nothing"
-)
+SUMMARY = "read a case and show its layout, dimensionless numbers, cautions and a hand estimate; solves nothing"
 
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("case", metavar="CASE", help="a case file in TOML")
     add_set(parser)
-    parser.add_argument(
-        "--verbose", action="store_true", help="print all cautions with their limits and sources"
-    )
+    parser.add_argument("--verbose", action="store_true", help="print all cautions with their limits and sources")
 
 
 def run(arguments: argparse.Namespace) -> int:
@@ -37,9 +33,7 @@ def run(arguments: argparse.Namespace) -> int:
     for line in drawing.to_scale(case, tube, shown):
         out.print(line, soft_wrap=True)
     out.print()
-    render.rows(
-        out, ["section", "from", "to", "layers from the axis", "outside"], drawing.sections(case, tube, shown)
-    )
+    render.rows(out, ["section", "from", "to", "layers from the axis", "outside"], drawing.sections(case, tube, shown))
     out.print()
     groups = estimate.group_rows(case, shown)
     if groups:

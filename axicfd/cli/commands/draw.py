@@ -12,9 +12,7 @@ SUMMARY = "draw the temperature and the curves along the tube of a results folde
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("folder", metavar="DIR", help="a results folder; the pictures are written into it")
-    parser.add_argument(
-        "--format", choices=("png", "svg", "pdf"), default="png", help="kind of picture (png)"
-    )
+    parser.add_argument("--format", choices=("png", "svg", "pdf"), default="png", help="kind of picture (png)")
 
 
 def run(arguments: argparse.Namespace) -> int:

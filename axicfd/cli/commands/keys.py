@@ -40,10 +40,7 @@ def run(arguments: argparse.Namespace) -> int:
     render.rows(
         out,
         ["key", "meaning", "default"],
-        [
-            (key.path, f"not available yet: {key.meaning}" if key.later else key.meaning, key.default)
-            for key in listed
-        ],
+        [(key.path, f"not available yet: {key.meaning}" if key.later else key.meaning, key.default) for key in listed],
     )
     if wanted is not None:
         out.print()
@@ -51,9 +48,7 @@ def run(arguments: argparse.Namespace) -> int:
             if key.allowed:
                 out.print(f"{key.path} {key.allowed}")
     out.print()
-    out.print(
-        "NAME stands for a name of yours; tables of names are written [stream.NAME], lists [[section]]."
-    )
+    out.print("NAME stands for a name of yours; tables of names are written [stream.NAME], lists [[section]].")
     return exits.SOLVED
 
 

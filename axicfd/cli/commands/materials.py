@@ -36,9 +36,7 @@ def run(arguments: argparse.Namespace) -> int:
     laws = _laws(material)
     out.print(f"{arguments.name}: {_span(laws)}")
     header = ["temperature, degC", *(f"{name.replace('_', ' ')}, {UNITS[name]}" for name in laws)]
-    body = [
-        [f"{T - 273.15:.1f}", *(number(float(law(T))) for law in laws.values())] for T in _temperatures(laws)
-    ]
+    body = [[f"{T - 273.15:.1f}", *(number(float(law(T))) for law in laws.values())] for T in _temperatures(laws)]
     render.rows(out, header, body, right=range(len(header)))
     out.print(f"source: {material.source}")
     if material.note:

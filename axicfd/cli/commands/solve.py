@@ -19,18 +19,14 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--out", metavar="DIR", help="results folder (default: ./NAME-results)")
     parser.add_argument("--replace", action="store_true", help="replace the results folder if it exists")
     add_set(parser)
-    parser.add_argument(
-        "--strict", action="store_true", help="fail when a caution stands (not available yet)"
-    )
+    parser.add_argument("--strict", action="store_true", help="fail when a caution stands (not available yet)")
     parser.add_argument("--json", action="store_true", help="print summary.json alone on standard output")
     parser.add_argument("--verbose", action="store_true", help="print all quantities and all cautions")
 
 
 def run(arguments: argparse.Namespace) -> int:
     if arguments.strict:
-        raise AxicfdError(
-            "`--strict` is not available yet. Leave it out; cautions are printed and in summary.json."
-        )
+        raise AxicfdError("`--strict` is not available yet. Leave it out; cautions are printed and in summary.json.")
     # Folder first: nobody should wait for a solve to learn that its place is taken.
     from axicfd.output import folder
 
