@@ -27,8 +27,9 @@ KEEP_DAYS = 60  # caches of other versions that nobody used for so long are remo
 
 
 def _fingerprint() -> str:
-    """Of every kernel source and the options."""
-    digest = hashlib.sha256(repr((sorted(OPTIONS.items()), numba.__version__)).encode())
+    """Of every kernel source, its place (the compiler keeps a copy per place) and the options."""
+    place = str(Path(__file__).resolve().parent)
+    digest = hashlib.sha256(repr((sorted(OPTIONS.items()), numba.__version__, place)).encode())
     for path in sorted(Path(__file__).parent.glob("*.py")):
         digest.update(path.read_bytes())
     return digest.hexdigest()[:16]
