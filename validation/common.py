@@ -1,10 +1,8 @@
 """What every validation problem shares: a row of the table, cases from text, and how deviations are judged.
 
 Each problem is a folder `validation/GROUP/PROBLEM/` with README.md (source, formula, what is compared) and
-check.py, which
-has `check() -> list[Row]` and may have `picture(folder)`. Cases carry no [mesh] and no stop_below: the mesh that
-the tool
-chooses by itself is what is checked.
+check.py, which has `check() -> list[Row]` and may have `picture(folder)`. Cases carry no [mesh] and no stop_below:
+the mesh that the tool chooses by itself is what is checked.
 """
 
 import csv

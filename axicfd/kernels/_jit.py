@@ -8,8 +8,7 @@ serial               : on shared cores threads that wait cost more than they bri
 The compiler's cache notices an edit only in the file of the kernel that is called, not in files of kernels that
 this one
 calls, nor a change of options. So the cache lies in a folder of its own, named after the sources of all kernels:
-an edit
-anywhere starts an empty one, and kernels may call each other across files.
+an edit anywhere starts an empty one, and kernels may call each other across files.
 """
 
 import hashlib

@@ -5,8 +5,7 @@
 cz (nz + 1, nr) couples the cells beside an axial face (cz[nz]: outlet, p' = 0 there; cz[0] = 0), cr (nz, nr + 1) those
 beside a radial face. The system is symmetric and positive; conjugate gradients solve it, with one symmetric multigrid
 cycle as preconditioner. Smoother: implicit radial lines; coarse meshes join cells in pairs (an odd one stays
-single); the
-sum over each station, solved exactly along z, carries pressure levels over the whole length at once.
+single); the sum over each station, solved exactly along z, carries pressure levels over the whole length at once.
 """
 
 import numpy as np

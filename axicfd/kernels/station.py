@@ -1,10 +1,9 @@
 """Momentum and continuity of one station solved together: the coupled smoother of the flow's multigrid.
 
 At station i the unknowns of every ring j are the changes of u on both faces of the station (east i + 1 and west
-i), of v
-on the ring's outer face and of p: a block-tridiagonal system in r with blocks of four, eliminated by hand. Stations are
-visited downstream. After each one all pressures further downstream are shifted by one value that makes the section's
-mass flow exact, which takes pressure levels over any length in one sweep.
+i), of v on the ring's outer face and of p: a block-tridiagonal system in r with blocks of four, eliminated by hand.
+Stations are visited downstream. After each one all pressures further downstream are shifted by one value that makes
+the section's mass flow exact, which takes pressure levels over any length in one sweep.
 
 Second-order convection along z and the cross stresses stay frozen during a sweep (`momentum.explicit_terms`): live, the
 march would be unstable.

@@ -28,8 +28,8 @@ def _without_overshoot(faces: Array, stations: Array) -> Array:
     """Face values kept as close to the range of the two stations beside them as the curvature there allows.
 
     A smooth extreme lies beyond both neighbours by up to an eighth of the second difference; at a kink, as at the
-    end of a
-    ramp, the second difference of one side vanishes and the cubic may not swing past. The end faces stay as they are.
+    end of a ramp, the second difference of one side vanishes and the cubic may not swing past. The end faces stay as
+    they are.
     """
     if len(stations) < 4:
         return faces

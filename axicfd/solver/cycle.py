@@ -3,8 +3,8 @@
 Coarse meshes join cells in pairs and discretise again with the same kernels; they carry the full fields, and a source
 that makes the restricted fine solution their own where the fine equations are met. The smoother solves momentum and
 pressure correction of one station together (`kernels.station`). While cells are thinner along z than along r only
-z is coarsened: radial lines are implicit, so what
-is strongly coupled along r is solved, and the rest has to get coarse first.
+z is coarsened: radial lines are implicit, so what is strongly coupled along r is solved, and the rest has to get
+coarse first.
 """
 
 import numpy as np

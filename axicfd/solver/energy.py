@@ -77,10 +77,8 @@ class Energy:
 
         There is no second cell upstream. A central difference alone lets a hot cell beyond draw the first one below the
         inlet temperature once convection is more than twice the conduction through the face, so only that share of
-        it is
-        kept; the rest is linear upwind from the plane, half a cell upstream. There the fluid is warmer than what
-        enters by
-        what is conducted upstream: m cp (T_plane - T_in) = k A dT/dz.
+        it is kept; the rest is linear upwind from the plane, half a cell upstream. There the fluid is warmer than
+        what enters by what is conducted upstream: m cp (T_plane - T_in) = k A dT/dz.
         """
         if self.grid.nz == 1:
             return

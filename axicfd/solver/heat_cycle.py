@@ -3,11 +3,10 @@
 Every coarse mesh keeps layers and sections apart (`mesh.build.coarser`) and discretises conduction anew with the same
 resistances, so walls a thousand times more conductive than the fluid, contact resistances and thin layers look the same
 on every level; corrections are interpolated within layers, never across an interface. Lines along r and z are
-relaxed in
-turn; the coarsest mesh, a few hundred cells, is solved directly. The cycle's operator has upwind convection; it
-preconditions GMRES (Saad & Schultz 1986, SIAM J. Sci. Stat. Comput. 7, 856) for the true one. Alone it takes 5 to 9
-cycles for eight digits over conductivity ratios 0.1 to 1e4, walls of 0.02 to 2 radii and Peclet numbers 0.1 to 1e6; the
-difference between upwind and Fromm's convection makes that up to 20 steps.
+relaxed in turn; the coarsest mesh, a few hundred cells, is solved directly. The cycle's operator has upwind
+convection; it preconditions GMRES (Saad & Schultz 1986, SIAM J. Sci. Stat. Comput. 7, 856) for the true one. Alone it
+takes 5 to 9 cycles for eight digits over conductivity ratios 0.1 to 1e4, walls of 0.02 to 2 radii and Peclet numbers
+0.1 to 1e6; the difference between upwind and Fromm's convection makes that up to 20 steps.
 """
 
 from dataclasses import dataclass, field

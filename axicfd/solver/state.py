@@ -28,9 +28,8 @@ class HeatFields:
     """Temperatures [K], from the inlet temperature, and heat flows [W] of the grid.
 
     t (nz, nr); tz (nz + 1, nr), tr (nz, nr + 1) convected face temperatures; minus, plus (nz, nr + 1) temperatures
-    on the
-    inner and outer side of each radial face; hz, hr convected enthalpy and qz, qr conducted heat through faces;
-    outside (nz,), first (nr,), last (nr,) heat into the tube; generated, viscous, pressure_work (nz, nr).
+    on the inner and outer side of each radial face; hz, hr convected enthalpy and qz, qr conducted heat through
+    faces; outside (nz,), first (nr,), last (nr,) heat into the tube; generated, viscous, pressure_work (nz, nr).
     resolvable [W]: smallest heat scale against which round-off lets the balance be judged.
     """
 
