@@ -3,16 +3,17 @@
 Each mesh halves the cells of the one before in both directions, so three values in a row tell how far the last one is
 from the limit. Values are extrapolated with the fixed weights of second order (Richardson 1911, Phil. Trans. R. Soc.
 A 210, 307) where the sequence behaves like second order; else the finest value stands, with Roache's grid convergence
-index (Roache 1994, J. Fluids Eng. 116, 405; factors 1.25 and 3 as in Roache 1998). A quantity of a singular place
-converges at first order and gets a half-width that says so.
+index (Roache 1994, J. Fluids Eng. 116, 405; factors 1.25 and 3 as in Roache 1998). What a singular place
+does to the orders is seen in the values: no quantity is told that it belongs to one.
 """
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from math import isfinite, log2
+from math import isfinite
 from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 
 from axicfd.mesh.grid import Array
 
@@ -24,7 +25,7 @@ SETTLED = 3.4, 4.8  # the ratio on coarser meshes that, with it on the finest, m
 LEAST_OF_SETTLED = 0.05  # share of the correction where they do
 ROUND_OFF = 1e-11  # changes below this share of the value are round-off
 
-EXTRAPOLATED, FINEST, SINGULAR, OSCILLATES, EXACT = "extrapolated", "finest", "singular", "oscillates", "exact"
+EXTRAPOLATED, FINEST, OSCILLATES, EXACT = "extrapolated", "finest", "oscillates", "exact"
 SPACING = "spacing"  # a place: known to a cell of the finest mesh
 OPPOSED = "r and z opposed"  # added to a rule where the errors of the two directions cancel and widen the half-width
 # Coarsening the medium mesh in one direction changes a value by three of its errors there, twelve of the finest mesh's
@@ -47,55 +48,81 @@ class Estimate:
     rule: str
 
 
-def estimate(values: list[float], singular: bool = False) -> Estimate:
-    """The estimate from values on nested meshes, coarsest first; three of them, or more.
+@dataclass(frozen=True)
+class Estimates:
+    """The estimates of n values, as arrays (n,); half-width and order are nan where `Estimate` has None."""
 
-    singular : the quantity belongs to a place where the exact field is not smooth
-    """
+    value: Array
+    half_width: Array
+    order: Array
+    rule: NDArray[np.str_]
+
+
+def estimate(values: list[float]) -> Estimate:
+    """The estimate from the values of one quantity on nested meshes, coarsest first; three of them, or more."""
+    found = estimates(np.array(values)[:, None])
+    half_width, order = (float(x[0]) if np.isfinite(x[0]) else None for x in (found.half_width, found.order))
+    return Estimate(float(found.value[0]), half_width, order, str(found.rule[0]))
+
+
+def estimates(values: Array) -> Estimates:
+    """The estimates from the values (meshes, n) of n quantities, or places of a curve, on nested meshes."""
     coarse, medium, fine = values[-3:]
-    if not all(isfinite(v) for v in values[-3:]):
-        return Estimate(fine, None, None, FINEST)
-    older, last = medium - coarse, fine - medium
-    size = max(abs(v) for v in values[-3:])
-    if max(abs(older), abs(last)) <= ROUND_OFF * size:
-        # what changes at all is known to no less than round-off: a small pressure drop lies on top of an atmosphere
-        return Estimate(fine, ROUND_OFF * size if older or last else 0.0, None, EXACT)
-    order = log2(older / last) if older * last > 0.0 else None
-    mixed = SAFE * abs(-5.0 * fine + 6.0 * medium - coarse) / 3.0  # from the limit of value + a h + b h^2
-    if singular:
-        return Estimate(fine, max(SAFE * abs(last), mixed), order, SINGULAR)
-    if order is None:
-        return Estimate(fine, max(CAREFUL * max(abs(last), abs(older) / 4.0), mixed), None, OSCILLATES)
-    if _is_within(SECOND_ORDER, older, last):
-        value = (4.0 * fine - medium) / 3.0
-        before = (4.0 * medium - coarse) / 3.0
-        moved = abs(value - before)
-        half = SAFE * max(moved, LEAST_OF_CORRECTION * abs(value - fine))
-        if len(values) > 3:
-            if _is_within(SETTLED, coarse - values[-4], older):
-                left = _left(before - (4.0 * coarse - values[-4]) / 3.0, moved)
-                half = SAFE * max(left, LEAST_OF_SETTLED * abs(value - fine))
-            else:
-                coarser = estimate(values[:-1], singular).half_width
-                half = max(half, LEAST_OF_COARSER * (coarser or 0.0))
-        return Estimate(value, half, order, EXTRAPOLATED)
-    # here the observed order is not plausible; first order of a place nobody knows of may hide behind it
-    clipped = min(max(order, 1.0), 2.0)
-    return Estimate(fine, max(CAREFUL * abs(last) / (2.0**clipped - 1.0), mixed), order, FINEST)
+    known = np.isfinite(values[-3:]).all(axis=0)
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        older, last = medium - coarse, fine - medium
+        size = np.abs(values[-3:]).max(axis=0)
+        still = np.maximum(np.abs(older), np.abs(last)) <= ROUND_OFF * size
+        monotone = older * last > 0.0
+        order = np.where(monotone & known & ~still, np.log2(older / last), np.nan)
+        mixed = SAFE * np.abs(-5.0 * fine + 6.0 * medium - coarse) / 3.0  # from the limit of value + a h + b h^2
+        turning = CAREFUL * np.maximum(np.abs(last), np.abs(older) / 4.0)
+        # where the order is not plausible first order of a place nobody knows of may hide behind it
+        index = CAREFUL * np.abs(last) / (2.0 ** np.clip(order, 1.0, 2.0) - 1.0)
+        extrapolated, close = _of_second_order(values, older, last)
+    cases = [~known, still, ~monotone, _is_within(SECOND_ORDER, older, last)]
+    # what changes at all is known to no less than round-off: a small pressure drop lies on top of an atmosphere
+    round_off = np.where((older != 0.0) | (last != 0.0), ROUND_OFF * size, 0.0)
+    widths = [np.full_like(fine, np.nan), round_off, np.maximum(turning, mixed), close]
+    return Estimates(
+        np.where(np.select(cases, [False, False, False, True], False), extrapolated, fine),
+        np.select(cases, widths, np.maximum(index, mixed)),
+        order,
+        np.select(cases, [FINEST, EXACT, OSCILLATES, EXTRAPOLATED], FINEST),
+    )
 
 
-def _is_within(ratios: tuple[float, float], older: float, last: float) -> bool:
-    """Whether two successive changes have a ratio in a range; written without a division, `last` may be zero."""
-    return older * last > 0.0 and ratios[0] * abs(last) <= abs(older) <= ratios[1] * abs(last)
+def _of_second_order(values: Array, older: Array, last: Array) -> tuple[Array, Array]:
+    """Extrapolated values and their half-widths, right where the last two changes are of second order."""
+    coarse, medium, fine = values[-3:]
+    value, before = (4.0 * fine - medium) / 3.0, (4.0 * medium - coarse) / 3.0
+    moved, correction = np.abs(value - before), np.abs(value - fine)
+    half = SAFE * np.maximum(moved, LEAST_OF_CORRECTION * correction)
+    if len(values) == 3:
+        return value, half
+    coarsest = values[-4]
+    coarser = np.nan_to_num(estimates(values[:-1]).half_width, nan=0.0)
+    left = _left(before - (4.0 * coarse - coarsest) / 3.0, moved)
+    settled = SAFE * np.maximum(left, LEAST_OF_SETTLED * correction)
+    agree = _is_within(SETTLED, coarse - coarsest, older)
+    return value, np.where(agree, settled, np.maximum(half, LEAST_OF_COARSER * coarser))
 
 
-def _left(moved_before: float, moved: float) -> float:
+def _is_within(ratios: tuple[float, float], older: Array, last: Array) -> NDArray[np.bool_]:
+    """Where two successive changes have a ratio in a range; written without a division, `last` may be zero."""
+    older_size, size = np.abs(older), np.abs(last)
+    return (older * last > 0.0) & (ratios[0] * size <= older_size) & (older_size <= ratios[1] * size)
+
+
+def _left(moved_before: Array, moved: Array) -> Array:
     """What an extrapolated value has still to go, from how far its last two halvings moved it.
 
     As a geometric series of their ratio, which is not trusted to be more than 4 although 8 or 16 is what smooth fields
     give; and no more than the last move, where the ratio is 2 or less.
     """
-    return moved / max(1.0, min(abs(moved_before) / moved, 4.0) - 1.0) if moved else 0.0
+    going = moved > 0.0
+    ratio = np.abs(moved_before) / np.where(going, moved, 1.0)
+    return np.where(going, moved / np.maximum(1.0, np.minimum(ratio, 4.0) - 1.0), 0.0)
 
 
 def grid_convergence_index(values: tuple[float, float, float], ratios: tuple[float, float]) -> dict[str, float]:
@@ -193,12 +220,9 @@ def curve_half_widths(z: list[Array], columns: list[Array]) -> Array:
         column[np.searchsorted(faces, shared - 1e-12 * shared[-1])]
         for faces, column in zip(z[-3:], columns[-3:], strict=True)
     ]
-    widths = np.full(len(shared), np.nan)
-    for k, triple in enumerate(zip(*picks, strict=True)):
-        found = estimate([float(v) for v in triple])
-        # the curves themselves stay those of the finest mesh
-        if found.half_width is not None:
-            widths[k] = found.half_width + abs(found.value - triple[-1])
+    found = estimates(np.array(picks))
+    # the curves themselves stay those of the finest mesh
+    widths = found.half_width + np.abs(found.value - picks[-1])
     good = np.isfinite(widths)
     if not good.any():
         return np.full(len(z[-1]), np.nan)

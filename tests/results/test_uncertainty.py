@@ -9,7 +9,14 @@ import numpy as np
 import pytest
 
 from axicfd.results import uncertainty
-from axicfd.results.uncertainty import curve_half_widths, estimate, estimate_tree, grid_convergence_index, split
+from axicfd.results.uncertainty import (
+    curve_half_widths,
+    estimate,
+    estimate_tree,
+    estimates,
+    grid_convergence_index,
+    split,
+)
 
 EXAMPLES = Path(__file__).parents[2] / "validation" / "reference" / "gci_worked_examples.csv"
 
@@ -52,30 +59,26 @@ def opposite(h, u, _):
     return h**2 * (along_r - along_z)
 
 
-# name -> (error at cell sizes h, whether the place is known to be singular)
-SEQUENCES: dict[str, tuple[Errors, bool]] = {
-    "h2 + h4": (lambda h, u, _: h**2 * (1.0 + u(-1, 1) * h**2), False),
-    "h2 + h3 + h4": (lambda h, u, _: h**2 * (1.0 + u(-1, 1) * h + u(-1, 1) * h**2), False),
-    "h2 + a little h": (lambda h, u, _: h**2 + u(-0.1, 0.1) * h, False),
-    "corner": (lambda h, u, _: u(0.2, 1.0) * h + u(-1, 1) * h**2, True),
-    "corner nobody told of": (lambda h, u, _: u(0.2, 1.0) * h + u(-1, 1) * h**2, False),
-    "r and z of opposite sign": (opposite, False),
-    "2 % noise": (
-        lambda h, u, random: h**2 * (1.0 + u(-1, 1) * h**2) * (1.0 + 0.02 * random.standard_normal(len(h))),
-        False,
-    ),
+# name -> error at cell sizes h
+SEQUENCES: dict[str, Errors] = {
+    "h2 + h4": lambda h, u, _: h**2 * (1.0 + u(-1, 1) * h**2),
+    "h2 + h3 + h4": lambda h, u, _: h**2 * (1.0 + u(-1, 1) * h + u(-1, 1) * h**2),
+    "h2 + a little h": lambda h, u, _: h**2 + u(-0.1, 0.1) * h,
+    "corner": lambda h, u, _: u(0.2, 1.0) * h + u(-1, 1) * h**2,
+    "r and z of opposite sign": opposite,
+    "2 % noise": lambda h, u, random: h**2 * (1.0 + u(-1, 1) * h**2) * (1.0 + 0.02 * random.standard_normal(len(h))),
 }
 
 
 def sampled(name: str, meshes: int) -> np.ndarray:
     """(SAMPLES, 3) half-width, error of the reported value, error of the finest mesh; coarse meshes included."""
-    errors, singular = SEQUENCES[name]
+    errors = SEQUENCES[name]
     random = np.random.default_rng(20)
     rows = []
     for _ in range(SAMPLES):
         h = random.uniform(0.5, 1.0) * 0.5 ** np.arange(meshes)
         values = LIMIT + errors(h, random.uniform, random)
-        found = estimate([float(v) for v in values], singular)
+        found = estimate([float(v) for v in values])
         rows.append((found.half_width, abs(found.value - LIMIT), abs(values[-1] - LIMIT)))
     return np.array(rows)
 
@@ -160,12 +163,6 @@ def test_other_orders_get_the_index_of_the_finest_value(order, factor):
     assert found.half_width == pytest.approx(max(factor * abs(fine - medium), mixed))
 
 
-def test_first_order_of_a_singular_place():
-    found = estimate([1.4, 1.2, 1.1], singular=True)
-    assert (found.rule, found.value) == (uncertainty.SINGULAR, 1.1)
-    assert found.half_width == pytest.approx(1.25 * 0.1)
-
-
 def test_oscillation_is_said():
     found = estimate([1.0, 1.2, 1.1])
     assert (found.rule, found.value, found.order) == (uncertainty.OSCILLATES, 1.1, None)
@@ -194,6 +191,22 @@ def test_without_three_values_there_is_no_bar(place):
     found = estimate(values)
     assert found.half_width is None and found.order is None
     assert found.value == 1.1 or place == 2
+
+
+def test_many_quantities_at_once_are_those_one_by_one():
+    random = np.random.default_rng(4)
+    h = 0.5 ** np.arange(4)[:, None]
+    values = LIMIT + random.normal(size=200) * h**2 + 0.1 * random.normal(size=200) * h
+    values[:, 0], values[2, 1], values[0, 2] = 1.0, math.nan, math.nan
+    values[:, 3] = 1.0, 1.2, 1.1, 1.15
+    many = estimates(values)
+    assert set(many.rule) == {"exact", "finest", "oscillates", "extrapolated"}
+    for k in range(200):
+        one = estimate([float(v) for v in values[:, k]])
+        for name in ("value", "half_width", "order"):
+            expected = getattr(one, name)
+            assert getattr(many, name)[k] == pytest.approx(math.nan if expected is None else expected, nan_ok=True)
+        assert many.rule[k] == one.rule
 
 
 def test_a_missing_coarsest_value_of_four_costs_only_the_memory():
