@@ -8,7 +8,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
 
-from axicfd.case.layout import Layout, layout
+from axicfd.case.layout import layout
 from axicfd.case.model import Case
 from axicfd.mesh.build import LEVELS, Family, family
 from axicfd.results import accuracy, cautions
@@ -50,27 +50,32 @@ class Progress:
 OnProgress = Callable[[Progress], Any]
 
 
-def solve(case: Case, on_progress: OnProgress | None = None, *, halvings: int = 0) -> Result:
+def solve(
+    case: Case, on_progress: OnProgress | None = None, *, halvings: int = 0, like: Family | None = None
+) -> Result:
     """Solve a case on the meshes it chooses (or its `[mesh]` asks for), or as fine as its `accuracy` needs.
 
     on_progress : called with a `Progress` now and then
     halvings    : solve on a mesh refined this many times more, beyond the case's own finest
+    like        : meshes of another case, whose counts and maps are taken over as far as sections and layers
+                  correspond, so that answers of variants do not jump with their meshes; `accuracy` is then not sought
     Raises `RefusedModel` where the laminar model is known not to hold before anything is solved. A solve that does not
     converge is a Result with `converged` False; an accuracy that is not reached is said in `summary["accuracy"]`.
     """
     cautions.before(case)  # raises where the model is refused
     warm_up()
-    place = layout(case)
-    climb = _Climb(case, place, on_progress, halvings)
-    meshes = family(case, place)
+    climb = _Climb(case, on_progress, halvings)
+    meshes = family(case, layout(case))
+    if like is not None:
+        return climb.on(meshes.like(like))
     return climb.on(meshes) if case.solve.accuracy is None else _accurate(case, meshes, climb)
 
 
 class _Climb:
     """From the coarsest mesh of a family to the finest, as often as asked; progress and seconds run on."""
 
-    def __init__(self, case: Case, place: Layout, on_progress: OnProgress | None, halvings: int):
-        self.case, self.place, self.on_progress, self.halvings = case, place, on_progress, halvings
+    def __init__(self, case: Case, on_progress: OnProgress | None, halvings: int):
+        self.case, self.on_progress, self.halvings = case, on_progress, halvings
         self.begun = time.perf_counter()
         self._shown: tuple[float | None, float | None] = (None, None)
 
@@ -103,7 +108,7 @@ class _Climb:
             start = None if solution.stop_reason == "diverged" else solution
         halves = self._halves(meshes, solutions)
         seconds = time.perf_counter() - self.begun
-        return make_result(case, self.place, solutions, history, seconds, VERSION, halves)
+        return make_result(case, meshes, solutions, history, seconds, VERSION, halves)
 
     def _halves(self, meshes: Family, solutions: list[Solution]) -> tuple[Solution, Solution] | None:
         """Solutions on the second finest mesh, coarsened along r only and along z only; a quarter of the finest's cost.

@@ -44,6 +44,8 @@ KINDS = {
     "film_coefficient": Kind("a film coefficient", "W/m^2/K", "900 W/m^2/K", ("W/m^2/K", "kW/m^2/K")),
     "contact_resistance": Kind("a contact resistance", "m^2 K/W", "1e-4 m^2 K/W", ("m^2 K/W", "cm^2 K/W")),
     "heat_per_volume": Kind("a heat rate per volume", "W/m^3", "2 MW/m^3", ("W/m^3", "kW/m^3", "MW/m^3", "W/cm^3")),
+    "thermal_resistance": Kind("a thermal resistance", "K/W", "0.5 K/W", ("K/W", "mK/W")),
+    "time": Kind("a time", "s", "2 s", ("s", "ms", "min", "h")),
     "per_kelvin": Kind("an exponent per kelvin", "1/K", "0.05 1/K", ("1/K",)),
 }
 

@@ -108,6 +108,18 @@ class Family:
         good = [finer for finer in tried if WORTHWHILE * self.cells <= finer.cells <= at_most]
         return max(good, key=lambda finer: finer.cells, default=None)
 
+    def like(self, other: "Family") -> "Family":
+        """This family with the counts and maps of another one, segment by segment from the axis and from z = 0.
+
+        Radial segments correspond in their order, axial ones where both tubes have as many sections; a void, of one
+        cell, only to a void. Segments without a counterpart stay as they are.
+        """
+        radial = [_as_there(own, there) for own, there in zip(self.radial, other.radial, strict=False)]
+        axial = self.axial
+        if len(axial) == len(other.axial):
+            axial = tuple(_as_there(own, there) for own, there in zip(axial, other.axial, strict=True))
+        return replace(self, radial=(*radial, *self.radial[len(radial) :]), axial=axial)
+
     def grid(self, level: int = 0, radial_level: int | None = None) -> Grid:
         """The grid of a level: 0 the finest, 1, 2 ... coarser, -1, -2 ... two or four times finer per direction.
 
@@ -247,6 +259,10 @@ def _more(segments: tuple[Segment, ...], factor: float, rounded: Callable[[float
         replace(s, cells=NEST * max(s.cells // NEST, rounded(s.cells * factor / NEST))) if s.cells >= NEST else s
         for s in segments
     )
+
+
+def _as_there(own: Segment, there: Segment) -> Segment:
+    return replace(own, cells=there.cells, map=there.map) if (own.cells < NEST) == (there.cells < NEST) else own
 
 
 def _every_second(faces: Array, ends: list[int]) -> Array:

@@ -7,12 +7,25 @@ import numpy as np
 
 from axicfd.case.layout import Layout
 from axicfd.case.model import Case
+from axicfd.mesh.build import Family
 from axicfd.mesh.grid import NOTHING, frozen
 from axicfd.results import accuracy, axial, cautions, summary, uncertainty
 from axicfd.solver.state import Solution
 
 BARS_APART = 3.0  # half-widths by which wall and bulk temperature must differ for a Nusselt number to mean anything
 WITH_BARS = "stream", "layer", "section", "sensor"  # parts of the tree whose quantities get a mesh error
+
+
+@dataclass(frozen=True, eq=False)
+class Nested:
+    """What was found on one of the nested meshes, never extrapolated.
+
+    tree   : headline quantities, the parts `WITH_BARS` of summary.json
+    curves : stream name -> columns of axial-STREAM.csv on the faces of this mesh
+    """
+
+    tree: dict[str, Any]
+    curves: dict[str, dict[str, np.ndarray]]
 
 
 @dataclass(frozen=True, eq=False)
@@ -25,6 +38,9 @@ class Result:
     axial_half_width : half-widths of the mesh errors of the curves, same shape as `axial`; empty without nested meshes
     history : (mesh level, cells, iterations, residual) of every mesh climbed, coarsest first
     solution: everything the solver left on the finest mesh
+    nested  : headline quantities and curves on each mesh that mesh errors come from, coarsest first; differences of
+              two results are formed on each mesh before they are extrapolated
+    meshes  : the family of these meshes; variants of the case are solved on the same counts and maps
     """
 
     case: Case
@@ -38,6 +54,8 @@ class Result:
     fields: dict[str, Any]
     history: list[tuple[int, int, int, float]]
     solution: Solution
+    nested: tuple[Nested, ...]
+    meshes: Family
 
     @property
     def converged(self) -> bool:
@@ -57,7 +75,7 @@ class Result:
 
 def make_result(
     case: Case,
-    layout: Layout,
+    meshes: Family,
     solutions: list[Solution],
     history: list[tuple[int, int, int, float]],
     seconds: float,
@@ -72,7 +90,7 @@ def make_result(
     halves : solutions on the mesh before the finest, coarsened once more along r only and along z only; they tell
              the errors of the two directions apart
     """
-    solution = solutions[-1]
+    solution, layout = solutions[-1], meshes.layout
     views = [axial.stream_views(case, s) for s in solutions]
     trees = [summary.summary(case, layout, s, v) for s, v in zip(solutions, views, strict=True)]
     curves = [{name: view.curves for name, view in v.items()} for v in views]
@@ -89,9 +107,10 @@ def make_result(
         "version": version,
     }
     tree, half_widths = trees[-1], {}
-    nested: dict[str, Any] = {}
+    extrapolated: dict[str, Any] = {}
+    parts = [{key: t[key] for key in WITH_BARS} for t in trees]
+    nested = tuple(Nested(part, curve) for part, curve in zip(parts, curves, strict=True))
     if len(solutions) >= 3 and all(s.converged for s in solutions):
-        parts = [{key: t[key] for key in WITH_BARS} for t in trees]
         z, dz = solution.grid.z, solution.grid.dz
 
         def cell(place: float) -> float:
@@ -99,7 +118,7 @@ def make_result(
 
         values, widths, hows = uncertainty.estimate_tree(parts, cell)
         along = _told_apart(case, layout, trees[-2], halves, widths, hows) if halves is not None else {}
-        nested = {
+        extrapolated = {
             "finest_mesh": parts[-1],
             "numerical_uncertainty": {
                 **widths,
@@ -114,14 +133,16 @@ def make_result(
             _blank_where_unknown(columns, half_widths[name])
     found = cautions.after(case, layout, {**head, **tree}, curves[-1], solution)
     refused = cautions.refusal(case, layout, solution)
-    full = head | ({"refused": refused} if refused else {}) | {"cautions": found} | tree | nested
+    full = head | ({"refused": refused} if refused else {}) | {"cautions": found} | tree | extrapolated
     outside = axial.outside_curves(case, solution)
     for columns in (outside, *curves[-1].values(), *half_widths.values()):
         for column in columns.values():
             frozen(column)
     fields = _fields(case, solution)
     radial = axial.radial_profiles(case, solution)
-    return Result(case, layout, version, full, curves[-1], half_widths, outside, radial, fields, history, solution)
+    return Result(
+        case, layout, version, full, curves[-1], half_widths, outside, radial, fields, history, solution, nested, meshes
+    )
 
 
 def with_accuracy(result: Result, found: dict[str, Any], seconds: float) -> Result:

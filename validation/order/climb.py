@@ -51,14 +51,13 @@ class Sequence:
 
 def climb(case: Case, coarsest: int, finest: int) -> list[Result]:
     """Results on the family's levels from coarsest down to finest (0 is the mesh of the case, negative is finer)."""
-    place = layout(case)
-    meshes = family(case, place)
+    meshes = family(case, layout(case))
     solution, results = None, []
     for level in range(coarsest, finest - 1, -1):
         solution = solve_on(case, meshes.grid(level), solution, STOP_BELOW)
         if not solution.residual < 1e-8:
             raise RuntimeError(f"level {level} of {case.title}: {solution.stop_reason} at {solution.residual:.1e}")
-        results.append(make_result(case, place, [solution], [], solution.seconds, "order"))
+        results.append(make_result(case, meshes, [solution], [], solution.seconds, "order"))
     return results
 
 

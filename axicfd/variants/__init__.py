@@ -1,0 +1,1 @@
+"""Many solves of one tube: what changes, by how much, and how surely."""
