@@ -209,6 +209,9 @@ def _scale(unit: str, kind: str) -> tuple[float, float] | None:
         }
         known |= dict.fromkeys(("degC", "°C", "celsius", "degree_Celsius"), (1.0, 273.15)) | {"mK": (1e-3, 0.0)}
         return known.get(spelling)
+    if kind == "temperature_difference":  # the unit library would add the zero point of a bare degC
+        absolute = _scale(unit, "temperature")
+        return (absolute[0], 0.0) if absolute else None
     if re.search(r"(?<![A-Za-z])(g_0|delta_|dB)", spelling):
         return None
     try:

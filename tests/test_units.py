@@ -162,3 +162,13 @@ def test_back_to_the_users_unit():
     assert units.from_si(293.15, "degC", "temperature") == 20.0
     assert units.from_si(0.012, "mm", "length") == 12.0
     assert units.convert(293.15, "degC", "temperature") == pytest.approx(20.0)
+
+
+@pytest.mark.parametrize("text, kelvin", [("2 K", 2.0), ("2 degC", 2.0), ("9 degF", 5.0), ("2 C", None), ("2 m", None)])
+def test_a_temperature_difference_has_no_zero_point(text, kelvin):
+    """ "2 degC" as a difference used to be 275.15 K."""
+    if kelvin is None:
+        with pytest.raises(units.UnitError):
+            units.parse(text, "temperature_difference")
+    else:
+        assert units.parse(text, "temperature_difference") == pytest.approx(kelvin)

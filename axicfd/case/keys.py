@@ -133,7 +133,67 @@ class Quantity(_Bounded):
     later_words: tuple[str, ...] = field(default=(), kw_only=True)  # words that are known but not open yet
 
     def read(self, value: Any, in_file: bool) -> float:
-        if value in self.later_words if isinstance(value, str) else _is_spread(value):
+        """The value; that of a value with tolerance too, after its tolerance was read."""
+        return self.read_tolerance(value, in_file).value if has_tolerance(value) else self._read_alone(value, in_file)
+
+    def read_tolerance(self, value: Mapping[str, Any], in_file: bool) -> InputTolerance:
+        """A value with its tolerance. Raises `BadValue`."""
+        for name in value:
+            if name not in ("value", *TOLERANCES):
+                law = name in ("z", "temperature", "at", "exponent")
+                allowed = "has a tolerance beside a table or law" if law else "is not a known key"
+                instead = f"Only one value takes a tolerance: write {self._tolerance_example}."
+                raise self.refuse(value if law else value[name], allowed, instead, () if law else (name,))
+        given = [name for name in TOLERANCES if name in value]
+        if len(given) > 1:
+            raise self.refuse(value, "has both `plus_minus` (limits) and `std` (standard deviation)", "Keep one.")
+        if "value" not in value:
+            raise self.refuse(value, "needs `value`", f"Write {self._tolerance_example}.")
+        found = None
+        problems: list[Problem] = []
+        try:
+            found = self._read_alone(value["value"], in_file)
+        except BadValue as bad:
+            problems += [Problem(p.value, p.allowed, p.instead, ("value",), p.looks_like) for p in bad.problems]
+        amount = value[given[0]]
+        try:
+            half = self._read_amount(amount, found, in_file)
+        except BadValue as bad:
+            problems += [Problem(p.value, p.allowed, p.instead, (given[0],), p.looks_like) for p in bad.problems]
+        if problems or found is None:
+            raise BadValue(*problems)
+        tolerance = InputTolerance(found, half, given[0])
+        for end in tolerance.reach:
+            if self._outside(end) or (self.kind == "temperature" and end <= 0):
+                unit = units.split(value["value"])[1] if isinstance(value["value"], str) else units.KINDS[self.kind].si
+                reached = f"{units.from_si(end, unit, self.kind):.4g} {unit}"
+                least = self._limits(lambda limit: units.written(limit, self.kind)) or "above absolute zero"
+                far = f" (so far lie {NORMAL_REACH:g} standard deviations)" if given[0] == "std" else ""
+                allowed = f"reaches {reached}{far}; the value must be {least}"
+                raise self.refuse(amount, allowed, "Give a smaller tolerance.", (given[0],))
+        return tolerance
+
+    def _read_amount(self, amount: Any, value: float | None, in_file: bool) -> float:
+        """A half-width or standard deviation, SI; per cent are of the value."""
+        kind = "temperature_difference" if self.kind == "temperature" else self.kind
+        if isinstance(amount, str) and amount.strip().endswith("%"):
+            if kind != self.kind:
+                raise self.refuse(amount, "is per cent of a temperature, which depends on its zero", 'Write "2 K".')
+            if value == 0.0:
+                raise self.refuse(amount, "is per cent of a value of zero", "Write an amount with a unit.")
+            try:
+                per_cent = float(amount.strip()[:-1])
+            except ValueError:
+                raise BadValue(Problem(amount, 'must be an amount with a unit, or per cent such as "5 %"')) from None
+            half = abs(value or math.inf) * per_cent / 100.0
+        else:
+            half = Quantity("", kind)._read_alone(amount, in_file)
+        if not half > 0.0 or math.isnan(half):
+            raise self.refuse(amount, "must be greater than 0", "Without a tolerance write the value alone.")
+        return half
+
+    def _read_alone(self, value: Any, in_file: bool) -> float:
+        if isinstance(value, str) and value in self.later_words:
             raise self.refuse(value, "is not available yet", f"Write {self.example}.")
         if isinstance(value, str):
             try:
@@ -163,7 +223,21 @@ class Quantity(_Bounded):
         return number
 
     def write(self, value: float, raw: Any = None) -> str:
+        if has_tolerance(raw):
+            return self._write_tolerance(self.read_tolerance(raw, False), raw)
         return toml_text(raw if isinstance(raw, str) else units.written(value, self.kind))
+
+    def _write_tolerance(self, tolerance: InputTolerance, raw: Mapping[str, Any]) -> str:
+        kind = "temperature_difference" if self.kind == "temperature" else self.kind
+        amount = raw[tolerance.given]
+        amount = amount if isinstance(amount, str) else units.written(tolerance.half_width, kind)
+        value = Quantity("", self.kind).write(tolerance.value, raw["value"])
+        return f"{{ value = {value}, {tolerance.given} = {toml_text(amount)} }}"
+
+    @property
+    def _tolerance_example(self) -> str:
+        amount = "2 K" if self.kind == "temperature" else "5 %"
+        return f"{{ value = {Quantity('', self.kind).example}, plus_minus = {toml_text(amount)} }}"
 
     @property
     def _words(self) -> str:
@@ -180,9 +254,46 @@ class Quantity(_Bounded):
         return toml_text(units.KINDS[self.kind].example)
 
 
-def _is_spread(value: Any) -> bool:
+TOLERANCES = "plus_minus", "std"
+# A normal tolerance is taken as reaching so many standard deviations: 1 of 16 000 lies further away.
+NORMAL_REACH = 4.0
+
+
+@dataclass(frozen=True)
+class InputTolerance:
+    """How well an input is known, SI.
+
+    half_width : with `plus_minus` the value lies within it, each place equally likely; with `std` the standard
+                 deviation of a normal distribution
+    given      : "plus_minus" or "std"
+    """
+
+    value: float
+    half_width: float
+    given: str
+
+    @property
+    def std(self) -> float:
+        """Standard deviation; that of a uniform distribution is its half-width over the root of 3."""
+        return self.half_width if self.given == "std" else self.half_width / math.sqrt(3.0)
+
+    @property
+    def reach(self) -> tuple[float, float]:
+        """The lowest and the highest value it is taken to have."""
+        far = self.half_width * (NORMAL_REACH if self.given == "std" else 1.0)
+        return self.value - far, self.value + far
+
+
+def has_tolerance(value: Any) -> bool:
     """Whether a value is given with its tolerance, { value = ..., plus_minus = ... } or std."""
-    return isinstance(value, dict) and bool({"plus_minus", "std"} & set(value))
+    return isinstance(value, Mapping) and any(name in value for name in TOLERANCES)
+
+
+def _read_entry(entry: Key, value: Any, in_file: bool) -> Any:
+    """One entry of a list or law; only values that stand alone take a tolerance."""
+    if has_tolerance(value):
+        raise entry.refuse(value, "has a tolerance inside a list or law", "Only one value alone takes a tolerance.")
+    return entry.read(value, in_file)
 
 
 @dataclass(frozen=True)
@@ -339,7 +450,7 @@ def read_columns(key: Key, value: dict, columns: Mapping[str, Key], in_file: boo
         entries = []
         for i, item in enumerate(column):
             try:
-                entries.append(entry.read(item, in_file))
+                entries.append(_read_entry(entry, item, in_file))
             except BadValue as bad:
                 problems += [
                     Problem(p.value, p.allowed, p.instead, (name, i, *p.inner), p.looks_like) for p in bad.problems
@@ -377,7 +488,7 @@ class Along(Quantity):
     def read(self, value: Any, in_file: bool) -> Any:
         if isinstance(value, ZTable):
             return value
-        if not isinstance(value, dict) or _is_spread(value):
+        if not isinstance(value, dict) or has_tolerance(value):
             return super().read(value, in_file)
         one = Quantity(self.meaning, self.kind, above=self.above, at_least=self.at_least, at_most=self.at_most)
         z = Quantity("distance from the section's start", "length", at_least=0)
@@ -412,7 +523,7 @@ class Property(Quantity):
     def read(self, value: Any, in_file: bool) -> Any:
         if isinstance(value, laws.Constant | laws.Table | laws.Exponential):
             return value
-        if not isinstance(value, dict) or _is_spread(value):
+        if not isinstance(value, dict) or has_tolerance(value):
             return laws.Constant(super().read(value, in_file))
         one = Quantity(self.meaning, self.kind, above=self.above, at_least=self.at_least)
         temperature = Quantity("temperature", "temperature")
@@ -447,7 +558,7 @@ class Property(Quantity):
                 problems.append(Problem(value, f"needs `{name}`", f"Write {name} = {entry.example}."))
                 continue
             try:
-                read[name] = entry.read(value[name], in_file)
+                read[name] = _read_entry(entry, value[name], in_file)
             except BadValue as bad:
                 problems += [
                     Problem(p.value, p.allowed, p.instead, (name, *p.inner), p.looks_like) for p in bad.problems
@@ -486,7 +597,7 @@ class ListOf(Key):
         entries = []
         for i, item in enumerate(value):
             try:
-                entries.append(self.entry.read(item, in_file))
+                entries.append(_read_entry(self.entry, item, in_file))
             except BadValue as bad:
                 problems += [Problem(p.value, p.allowed, p.instead, (i, *p.inner), p.looks_like) for p in bad.problems]
         if problems:

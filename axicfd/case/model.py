@@ -18,6 +18,7 @@ from axicfd.case import keys
 from axicfd.case.keys import (
     Along,
     Choice,
+    InputTolerance,
     Key,
     ListOf,
     Material,
@@ -581,7 +582,9 @@ def is_one_condition(value: Any) -> bool:
     """Whether an end is given as one condition, not as a table of layers."""
     if isinstance(value, EndFace):
         return True
-    return isinstance(value, dict) and not any(isinstance(entry, dict | EndFace) for entry in value.values())
+    return isinstance(value, dict) and not any(
+        isinstance(entry, dict | EndFace) and not keys.has_tolerance(entry) for entry in value.values()
+    )
 
 
 # ------------------------------------------------------------------------------------------------ the rest
@@ -709,6 +712,7 @@ class Case(Part):
     }
 
     _tree: dict = PrivateAttr(default_factory=dict)
+    _tolerances: dict[str, InputTolerance] = PrivateAttr(default_factory=dict)
 
     @model_validator(mode="wrap")
     @classmethod
@@ -727,6 +731,7 @@ class Case(Part):
         except ValidationError as found:
             raise read.as_input_error(found, tree, source, mistakes) from None
         case._tree = tree
+        case._tolerances = read.tolerances_in(case)
         if not structure:
             mistakes += checks.contradictions(case, source)
         if mistakes:
@@ -734,9 +739,11 @@ class Case(Part):
         return case
 
     def __eq__(self, other: object) -> bool:
-        """Equal when every value is: how the values were written does not count."""
-        return isinstance(other, Case) and all(
-            getattr(self, name) == getattr(other, name) for name in type(self).model_fields
+        """Equal when every value and tolerance is: how they were written does not count."""
+        return (
+            isinstance(other, Case)
+            and all(getattr(self, name) == getattr(other, name) for name in type(self).model_fields)
+            and self._tolerances == other._tolerances
         )
 
     __hash__ = None  # type: ignore[assignment]
@@ -756,6 +763,11 @@ class Case(Part):
 
         tree = paths.replaced(self._tree, changes)
         return read.build(tree, in_file=False)
+
+    @property
+    def tolerances(self) -> dict[str, InputTolerance]:
+        """Path -> tolerance of every value that was given with one, in the order of the case."""
+        return dict(self._tolerances)
 
     def unit_of(self, path: str) -> str | None:
         """The unit in which the user wrote the value at a path, or None where there was none."""

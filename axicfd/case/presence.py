@@ -10,7 +10,7 @@ from collections.abc import Iterator, Mapping
 from typing import TYPE_CHECKING, Any
 
 from axicfd.case import keys
-from axicfd.case.model import Outside, Stream, layer_name
+from axicfd.case.model import Outside, Stream, is_one_condition, layer_name
 from axicfd.errors import Mistake
 from axicfd.materials.library import FLUIDS, SOLIDS
 
@@ -65,7 +65,7 @@ def in_conditions(tree: dict, source: Source) -> list[Mistake]:
         stack = section.get("layer", tree.get("layer"))
         _generation(found, ("section", i, "generated"), section.get("generated"), stack)
     for end, faces in _tables(tree.get("ends")):
-        per_layer = any(isinstance(value, dict) for value in faces.values())
+        per_layer = not is_one_condition(faces)
         for face, condition in faces.items() if per_layer else [("", faces)]:
             place: Place = ("ends", end, face) if face else ("ends", end)
             _condition(found, place, condition)
@@ -370,18 +370,12 @@ def _end_names(found: Findings, place: Place, faces: dict, stack: Any) -> None:
     solids = [name for name, layer in layers.items() if layer.get("solid")]
     listed = f"Solid layers there: {', '.join(solids)}." if solids else "There is no solid layer there."
     for name, face in faces.items():
-        if not layers or name == "all" or not isinstance(face, dict):
+        if not layers or name == "all" or not isinstance(face, dict) or is_one_condition(faces):
             continue
         if name in layers and name not in solids:
             found.add((*place, name), None, "has no end face with a condition: only solids have", listed)
         elif name not in solids:
             near = keys.nearest(name, solids)
             found.add((*place, name), None, "names no layer of this end", f"Write `{near}`." if near else listed)
-    if (
-        layers
-        and not solids
-        and faces
-        and not any(isinstance(face, dict) for face in faces.values())
-        and "insulated" not in faces
-    ):
+    if layers and not solids and faces and is_one_condition(faces) and "insulated" not in faces:
         found.add(place, faces, "acts on the end faces of solids, and there are none", "Take it out.")

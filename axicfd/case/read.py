@@ -15,7 +15,7 @@ from pydantic import BaseModel, ValidationError
 
 from axicfd.case import keys, paths
 from axicfd.case.lines import lines_of
-from axicfd.case.model import Case, Outside, Part, Stream, is_one_condition, layer_name
+from axicfd.case.model import Case, EndFace, Outside, Part, Stream, is_one_condition, layer_name
 from axicfd.errors import InputError, Mistake
 
 Place = tuple[str | int, ...]  # the way to a value in the tree of a case: names of tables, indices of lists
@@ -233,6 +233,29 @@ def declared(part: type[Part], name: str) -> keys.Key | None:
     return next((entry for entry in info.metadata if isinstance(entry, keys.Key)), None) if info else None
 
 
+def key_at(place: Place) -> keys.Key | None:
+    """The declaration of the value at a place: also of one layer's heat, and of a conductivity across or along."""
+    if place[:1] == ("ends",):
+        return declared(EndFace, str(place[-1]))
+    part = part_at(place[:-1])
+    if part is not None:
+        return declared(part, str(place[-1]))
+    of_all = declared(part, str(place[-2])) if (part := part_at(place[:-2])) else None
+    return of_all.entry if isinstance(of_all, keys.PerName) else of_all
+
+
+def tolerances_in(case: Case) -> dict[str, keys.InputTolerance]:
+    """Path -> tolerance of every value that a case gives with one; the case was read without complaint."""
+    found: dict[str, keys.InputTolerance] = {}
+    for path in paths.values_in(case):
+        value, place = paths.find(case._tree, path), paths.place_of(case._tree, path)
+        if keys.has_tolerance(value) and place is not None:
+            key = key_at(place)
+            assert isinstance(key, keys.Quantity)
+            found[path] = key.read_tolerance(value, in_file=False)
+    return found
+
+
 def _right_key(part: type[Part] | None, name: str, problem: keys.Problem) -> str:
     """For a value whose unit is that of another key of the same table: that key."""
     if part is None or not problem.looks_like:
@@ -339,9 +362,11 @@ __all__ = [
     "as_input_error",
     "build",
     "declared",
+    "key_at",
     "layer_name",
     "load",
     "part_at",
     "plain",
+    "tolerances_in",
     "with_names",
 ]

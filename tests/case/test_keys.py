@@ -89,6 +89,8 @@ def bad_values(key: keys.Key) -> list[str]:
             f'"1e999 {unit}"',
         ]
         bad += ["{}", "{ a = 1 }"]
+        bad += ['{ plus_minus = "5 %" }', f'{{ value = "3 {unit}", std = "0 {unit}" }}', '{ value = 3, std = "1 %" }']
+        bad += [f'{{ value = "3 {unit}", std = "1 {unit}", plus_minus = "1 {unit}" }}']
         if key.kind == "temperature":
             bad += ['"0 K"', '"-300 degC"', '"20 C"']
         if key.at_least is not None:

@@ -181,11 +181,6 @@ def test_tables_that_are_not_open_are_refused_by_name(addition, key):
             '{ emissivity = 0.9, surroundings = "20 degC" }\n\n[[',
             ("not available yet",),
         ),
-        (
-            'thickness          = "1 mm"',
-            'thickness = { value = "1 mm", plus_minus = "0.1 mm" }',
-            ("not available yet",),
-        ),
         ('solid          = "liner"', 'gas_gap = "air"', ("not available yet",)),
     ],
 )

@@ -49,6 +49,9 @@ def run(arguments: argparse.Namespace) -> int:
                 out.print(f"{key.path} {key.allowed}")
     out.print()
     out.print("NAME stands for a name of yours; tables of names are written [stream.NAME], lists [[section]].")
+    out.print(
+        'A quantity may have a tolerance: { value = "2 mm", plus_minus = "0.05 mm" }, or std; see `axicfd spread`.'
+    )
     return exits.SOLVED
 
 
