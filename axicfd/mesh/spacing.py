@@ -7,17 +7,36 @@ The maps are hyperbolic tangents (Vinokur 1983, J. Comput. Phys. 50, 215-234, th
 ratio dX/dxi(largest) / dX/dxi(smallest) = cosh^2(delta); 1 is a uniform line.
 """
 
-from collections.abc import Callable
+from dataclasses import dataclass
 from math import acosh, asinh, sqrt
 
 import numpy as np
 from numpy.typing import NDArray
 from scipy.optimize import brentq
 
-Map = Callable[[NDArray[np.float64]], NDArray[np.float64]]
-
 # Beyond this ratio round-off of the map would show in the smallest cells.
 LARGEST_STRETCH = 1e8
+
+
+@dataclass(frozen=True)
+class Map:
+    """What `graded_map` makes: a function that compares by its values and can travel between processes."""
+
+    stretch: float
+    at_start: bool
+    at_end: bool
+
+    def __call__(self, x: NDArray[np.float64]) -> NDArray[np.float64]:
+        x = np.asarray(x, dtype=float)
+        if self.stretch <= 1.0 or not (self.at_start or self.at_end):
+            return x
+        delta = acosh(sqrt(self.stretch))
+        t = np.tanh(delta)
+        if self.at_start and self.at_end:
+            return 0.5 * (1.0 + np.tanh(delta * (2.0 * x - 1.0)) / t)
+        if self.at_start:
+            return 1.0 + np.tanh(delta * (x - 1.0)) / t
+        return np.tanh(delta * x) / t
 
 
 def graded_map(stretch: float, at_start: bool, at_end: bool) -> Map:
@@ -27,15 +46,7 @@ def graded_map(stretch: float, at_start: bool, at_end: bool) -> Map:
     at_start : small cells at 0
     at_end   : small cells at 1
     """
-    if stretch <= 1.0 or not (at_start or at_end):
-        return lambda x: np.asarray(x, dtype=float)
-    delta = acosh(sqrt(stretch))
-    t = np.tanh(delta)
-    if at_start and at_end:
-        return lambda x: 0.5 * (1.0 + np.tanh(delta * (2.0 * x - 1.0)) / t)
-    if at_start:
-        return lambda x: 1.0 + np.tanh(delta * (x - 1.0)) / t
-    return lambda x: np.tanh(delta * np.asarray(x)) / t
+    return Map(stretch, at_start, at_end)
 
 
 def stretch_for_end_cell(cells: int, length: float, end_cell: float, at_start: bool, at_end: bool) -> float:
