@@ -10,12 +10,14 @@ from typing import Any
 
 from axicfd.case.layout import layout
 from axicfd.case.model import Case
+from axicfd.given_drop import GivenDrop
 from axicfd.mesh.build import LEVELS, Family, family
+from axicfd.mesh.grid import Grid
 from axicfd.results import accuracy, cautions
 from axicfd.results.accuracy import Verdict
 from axicfd.results.axial import stream_view
 from axicfd.results.result import Result, make_result, with_accuracy
-from axicfd.solver.solve import solve_on
+from axicfd.solver.solve import OnCheck, solve_on
 from axicfd.solver.state import Solution
 from axicfd.solver.warm_up import warm_up
 from axicfd.version import VERSION
@@ -48,6 +50,7 @@ class Progress:
 
 
 OnProgress = Callable[[Progress], Any]
+SolveOne = Callable[[Grid, Solution | None, float, OnCheck | None], Solution]
 
 
 def solve(
@@ -82,6 +85,7 @@ class _Climb:
     def on(self, meshes: Family, refinements: int = 0) -> Result:
         """Solve on the meshes of a family, each starting from the one before, and interpret them."""
         case, levels = self.case, LEVELS + self.halvings
+        solve_one = _solver(case, meshes)
         start: Solution | None = None  # nothing is taken from a mesh too coarse to converge on
         solutions: list[Solution] = []
         history = []
@@ -100,26 +104,28 @@ class _Climb:
 
             counts = number > levels - NESTED
             below = case.solve.stop_below if counts else max(START_BELOW, case.solve.stop_below)
-            solution = solve_on(case, grid, start, below, looked)
+            solution = solve_one(grid, start, below, looked)
             history.append((number, grid.cells, solution.iterations, solution.residual))
             self._shown = _headline(case, solution)
             tell(solution.residual, True)
             solutions = [*solutions, solution][-NESTED:] if solution.converged else [solution]
             start = None if solution.stop_reason == "diverged" else solution
-        halves = self._halves(meshes, solutions)
+        halves = self._halves(solve_one, meshes, solutions)
         seconds = time.perf_counter() - self.begun
         return make_result(case, meshes, solutions, history, seconds, VERSION, halves)
 
-    def _halves(self, meshes: Family, solutions: list[Solution]) -> tuple[Solution, Solution] | None:
+    def _halves(
+        self, solve_one: SolveOne, meshes: Family, solutions: list[Solution]
+    ) -> tuple[Solution, Solution] | None:
         """Solutions on the second finest mesh, coarsened along r only and along z only; a quarter of the finest's cost.
 
         None where the mesh errors have no sound base.
         """
         if len(solutions) < 3 or not all(s.converged for s in solutions):
             return None
-        medium = 1 - self.halvings
-        coarse_r = solve_on(self.case, meshes.grid(medium, medium + 1), solutions[-2])
-        coarse_z = solve_on(self.case, meshes.grid(medium + 1, medium), solutions[-2])
+        medium, below = 1 - self.halvings, self.case.solve.stop_below
+        coarse_r = solve_one(meshes.grid(medium, medium + 1), solutions[-2], below, None)
+        coarse_z = solve_one(meshes.grid(medium + 1, medium), solutions[-2], below, None)
         return (coarse_r, coarse_z) if coarse_r.converged and coarse_z.converged else None
 
     def ended(self, found: tuple[Result, Verdict], stopped_by: str | None, why: str, solves: int) -> Result:
@@ -165,6 +171,13 @@ def _accurate(case: Case, meshes: Family, climb: _Climb) -> Result:
     assert best is not None
     why = f"a finer mesh would have more than {limit} cells. Give a larger at_most in [mesh], or ask for less."
     return climb.ended(best, "cells", why, solves)
+
+
+def _solver(case: Case, meshes: Family) -> SolveOne:
+    """What solves a case on one mesh after the other."""
+    if any(stream.pressure_drop is not None for stream in case.stream.values()):
+        return GivenDrop(case, meshes).solve
+    return lambda grid, start, below, looked: solve_on(case, grid, start, below, looked)
 
 
 def _headline(case: Case, solution: Solution) -> tuple[float | None, float | None]:

@@ -34,6 +34,7 @@ KINDS = {
     "volume_flow": Kind("a volume flow", "m^3/s", "100 mL/min", ("mL/min", "L/min", "L/h", "m^3/h", "uL/min")),
     "velocity": Kind("a velocity", "m/s", "0.1 m/s", ("m/s", "mm/s", "ft/s")),
     "pressure": Kind("an absolute pressure", "Pa", "1 atm", ("Pa", "kPa", "bar", "atm", "psi")),
+    "pressure_difference": Kind("a pressure difference", "Pa", "50 Pa", ("Pa", "mbar", "kPa", "bar", "psi")),
     "density": Kind("a density", "kg/m^3", "998 kg/m^3", ("kg/m^3", "g/cm^3", "kg/L")),
     "specific_heat": Kind("a specific heat", "J/kg/K", "4180 J/kg/K", ("J/kg/K", "kJ/kg/K")),
     "conductivity": Kind("a thermal conductivity", "W/m/K", "0.6 W/m/K", ("W/m/K", "W/cm/K")),

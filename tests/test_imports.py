@@ -15,6 +15,7 @@ ORDER = (
     ("output",),
     ("variants",),
     ("pipeline",),
+    ("given_drop",),
     ("results",),
     ("solver",),
     ("mesh",),

@@ -183,6 +183,16 @@ class Stream(Part):
     reynolds: Annotated[
         float | None, Number("flow as Reynolds number of the bore at inlet state", at_least=0, sample=500)
     ] = None
+    pressure_drop: Annotated[
+        float | None,
+        Quantity(
+            "flow as the pressure drop that drives it: of the pressure in motion, from the axis in the inlet plane to "
+            "the outlet plane",
+            "pressure_difference",
+            above=0,
+            instead='Nothing flows without one: write mass_flow = "0 g/s". ' + _AGAINST_Z,
+        ),
+    ] = None
     inlet_profile: Annotated[
         str | FileProfile,
         Profile(
@@ -195,9 +205,8 @@ class Stream(Part):
         Quantity("absolute pressure at the outlet, at which fluid properties are taken", "pressure", above=0),
     ] = 101325.0
 
-    FLOWS: ClassVar[tuple[str, ...]] = ("mass_flow", "volume_flow", "mean_velocity", "reynolds")
+    FLOWS: ClassVar[tuple[str, ...]] = ("mass_flow", "volume_flow", "mean_velocity", "reynolds", "pressure_drop")
     not_yet = {
-        "pressure_drop": "the flow from a given pressure drop",
         "standard_volume_flow": "a flow at a standard state",
         "standard_state": "the standard state of such a flow",
         "tubes": "several equal tubes in parallel",

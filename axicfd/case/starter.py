@@ -19,7 +19,8 @@ z_axis = "horizontal"               # or "up", "down"
 [stream.water]
 fluid             = "water"         # built in (`axicfd materials` lists them), or the NAME of a [fluid.NAME] below
 inlet_temperature = "20 degC"
-mass_flow         = "1.5 g/s"       # or one of: volume_flow = "90 mL/min", mean_velocity = "0.12 m/s", reynolds = 500
+mass_flow         = "1.5 g/s"       # or one of: volume_flow = "90 mL/min", mean_velocity = "0.12 m/s", reynolds = 500,
+                                    # pressure_drop = "50 Pa"
 inlet_profile     = "flat"          # or "developed", or { file = "inlet.csv" } with columns r_m, velocity, temperature_K
 direction         = "+z"            # or "-z"
 outlet_pressure   = "1 atm"         # absolute

@@ -9,7 +9,7 @@ from axicfd.case.layout import Layout, PlacedSection, layout
 from axicfd.case.model import Case
 from axicfd.output.headline import amount, number
 from axicfd.output.shown import Shown
-from axicfd.solver.boundary import mass_flow
+from axicfd.solver.boundary import estimated_mass_flow
 from axicfd.theory import conduction, groups
 from axicfd.theory.hand import HandEstimate, HandStream, Stretch, hand_estimate
 
@@ -24,6 +24,7 @@ def by_hand(case: Case) -> dict[str, float] | None:
         return None
     stream = next(iter(case.stream))
     estimate = {
+        f"stream.{stream}.mass_flow": inlet_state(case, layout(case)).mass_flow,
         f"stream.{stream}.outlet_temperature": found.outlet_temperature,
         f"stream.{stream}.pressure_drop": found.pressure_drop,
         f"stream.{stream}.heat_gain": found.heat_gain,
@@ -40,8 +41,11 @@ def two_lines(case: Case, shown: Shown) -> list[str]:
     found = _estimate(case, layout(case))
     if found is None:
         return ["By hand: nothing flows, so this is conduction alone; no estimate."]
+    flow = ""
+    if next(iter(case.stream.values())).pressure_drop is not None:
+        flow = f"flow {amount(shown, 'mass_flow', inlet_state(case, layout(case)).mass_flow)}, "
     return [
-        f"By hand: outlet {amount(shown, 'temperature', found.outlet_temperature)}, "
+        f"By hand: {flow}outlet {amount(shown, 'temperature', found.outlet_temperature)}, "
         f"pressure drop {amount(shown, 'pressure', found.pressure_drop)}, "
         f"heat {amount(shown, 'heat', found.heat_gain)}, "
         f"hottest wetted wall {amount(shown, 'temperature', found.hottest_wetted_wall)}",
@@ -92,7 +96,7 @@ def inlet_state(case: Case, tube: Layout) -> HandStream:
     inlet = stream.inlet_temperature
     density, viscosity = float(fluid.density(inlet)), float(fluid.viscosity(inlet))
     return HandStream(
-        mass_flow=mass_flow(case, tube, name),
+        mass_flow=estimated_mass_flow(case, tube, name),
         inlet_temperature=inlet,
         bore=tube.bore_diameter,
         density=density,

@@ -21,6 +21,7 @@ from axicfd.mesh.spacing import Map, graded_map, length_weight, stretch_for_end_
 NEST = 8  # finest counts are multiples of this: three clean halvings
 LEVELS = 5  # meshes climbed, the finest included
 CELLS = 40_000  # default number of cells of the finest mesh
+ROUGH_ACROSS = 8  # least cells from the axis to the bore's wall for a rough answer
 WORTHWHILE = 1.2  # least growth of the cells for which a finer family is solved
 ACROSS_STREAM = 48  # cells from the axis to the bore's wall in CELLS cells
 ACROSS_SOLID = 8  # cells across a layer up to half as thick as the bore's radius
@@ -91,6 +92,13 @@ class Family:
     def cells(self) -> int:
         """Cells of the finest mesh."""
         return sum(s.cells for s in self.radial) * sum(s.cells for s in self.axial)
+
+    @property
+    def rough_level(self) -> int:
+        """Level of the coarse mesh that still tells the story to a few per cent, where many cases are looked through:
+        a sixteenth of the finest one's cells as long as that leaves ROUGH_ACROSS of them across the bore.
+        """
+        return max((m for m in (1, 2) if self.counts["radial"] >= ROUGH_ACROSS * 2**m), default=0)
 
     def refined(self, radial: float, axial: float, at_most: int) -> "Family | None":
         """The family whose finest mesh has so many times the cells in each direction, as far as `at_most` allows.

@@ -35,6 +35,7 @@ MORE_STREAM_ROWS = (  # when everything is asked for
     "graetz",
     "heated_length_m",
 )
+FLOW = "mass_flow_kg_s"  # shown in the short table where it is found, from a pressure drop, and so has a mesh error
 MOST_DIGITS = 6  # of a value with a mesh error
 FINEST_TEMPERATURE = -4  # decade of the last digit of a temperature with a mesh error
 
@@ -81,7 +82,8 @@ def headline(summary: dict[str, Any], shown: Shown, everything: bool = False) ->
     ):
         for name, entries in (summary.get(kind) or {}).items():
             owner = f"{kind} {name}" if kind in ("section", "sensor") else name
-            for key in keys:
+            is_found = bool(_entry(summary.get("numerical_uncertainty"), (kind, name, FLOW)))
+            for key in (FLOW, *keys) if is_found and not everything else keys:
                 if key in entries and (everything or _has_value(entries[key])):
                     yield _line(summary, shown, owner, (kind, name, key), entries[key])
 

@@ -14,11 +14,11 @@ DEFAULTS = {
     "heat": "W",
     "length": "m",
     "diameter": "mm",
-    "mass_flow": "kg/s",
+    "mass_flow": "g/s",
     "velocity": "m/s",
     "heat_flux": "W/m^2",
 }
-# The outlet pressure is the only pressure a case names; in atmospheres a pressure drop would read badly.
+# An outlet pressure may be the only pressure a case names; in atmospheres a pressure drop would read badly.
 _UNFIT = {"pressure": {"atm"}}
 
 
@@ -62,7 +62,7 @@ def _places(case: Any, kind: str) -> Iterator[str]:
     if kind == "temperature":
         yield from (f"{stream}.inlet_temperature" for stream in streams)
     elif kind == "pressure":
-        yield from (f"{stream}.outlet_pressure" for stream in streams)
+        yield from (f"{stream}.{key}" for key in ("pressure_drop", "outlet_pressure") for stream in streams)
     elif kind == "heat":
         yield from (f"{outside}.heat" for outside in outsides)
     elif kind == "heat_flux":

@@ -161,7 +161,7 @@ class Ahead:
 
     @cached_property
     def mass_flow(self) -> float:
-        return boundary.mass_flow(self.case, self.layout, self.name)
+        return boundary.estimated_mass_flow(self.case, self.layout, self.name)
 
     @property
     def flows(self) -> bool:
@@ -255,6 +255,10 @@ class Found(Ahead):
     solution: Solution
     summary: dict[str, Any] = field(default_factory=dict)
     axial: dict[str, dict[str, Array]] = field(default_factory=dict)
+
+    @cached_property
+    def mass_flow(self) -> float:
+        return self.view.mass_flow
 
     @cached_property
     def view(self) -> StreamView:
@@ -481,6 +485,8 @@ def _reynolds_caution(what: str, largest: float, place: str) -> Caution:
 
 def _reynolds_ahead(ahead: Ahead) -> Iterator[Caution]:
     at_inlet = float(ahead.reynolds(ahead.t_in))
+    if ahead.case.stream[ahead.name].pressure_drop is not None:
+        return  # the flow is a rough guess until it is solved
     if at_inlet > REYNOLDS_REFUSED:
         raise RefusedModel(
             f"The Reynolds number of {ahead.name} is {_g(at_inlet)} at the inlet, above "

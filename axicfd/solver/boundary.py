@@ -11,6 +11,7 @@ from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout
 from axicfd.case.model import Case, FileProfile, Outside
 from axicfd.mesh.grid import NOTHING, Array, Grid
+from axicfd.theory import duct_flow
 
 NO_EXCHANGE = np.inf
 
@@ -164,7 +165,10 @@ def contact(grid: Grid) -> Array:
 
 
 def mass_flow(case: Case, layout: Layout, stream: str) -> float:
-    """Mass flow [kg/s] of a stream, positive, from whichever flow key it has."""
+    """Mass flow [kg/s] of a stream, positive, from whichever flow key it has but `pressure_drop`.
+
+    A flow that a pressure drop drives is only known from a solve; `estimated_mass_flow` tells about how large it is.
+    """
     given = case.stream[stream]
     fluid = case.fluid_of(stream)
     density = float(fluid.density(given.inlet_temperature))
@@ -175,8 +179,30 @@ def mass_flow(case: Case, layout: Layout, stream: str) -> float:
         return given.volume_flow * density
     if given.mean_velocity is not None:
         return given.mean_velocity * density * area
+    assert given.reynolds is not None, "the flow of a pressure drop is found by a solve"
     viscosity = float(fluid.viscosity(given.inlet_temperature))
-    return (given.reynolds or 0.0) * viscosity * area / layout.bore_diameter
+    return given.reynolds * viscosity * area / layout.bore_diameter
+
+
+def estimated_mass_flow(case: Case, layout: Layout, stream: str) -> float:
+    """Mass flow [kg/s] of a stream; by hand at inlet viscosity where its pressure drop is given."""
+    given, fluid = case.stream[stream], case.fluid_of(stream)
+    if given.pressure_drop is None:
+        return mass_flow(case, layout, stream)
+    return flow_of_drop(case, layout, stream, float(fluid.viscosity(given.inlet_temperature)))
+
+
+def flow_of_drop(case: Case, layout: Layout, stream: str, viscosity: float) -> float:
+    """Mass flow [kg/s] that the pressure drop of a stream would drive at a uniform viscosity [Pa s], by hand."""
+    given, fluid = case.stream[stream], case.fluid_of(stream)
+    density, bore = float(fluid.density(given.inlet_temperature)), layout.bore_diameter
+    assert given.pressure_drop is not None
+    drop, length = given.pressure_drop, layout.length
+    if given.slips_at_inlet:
+        velocity = duct_flow.entrance_mean_velocity(drop, density, viscosity, length, bore)
+    else:
+        velocity = duct_flow.developed_mean_velocity(drop, viscosity, length, bore)
+    return velocity * density * np.pi * bore**2 / 4
 
 
 def inlet_velocity(

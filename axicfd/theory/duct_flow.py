@@ -10,6 +10,7 @@ from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike
+from scipy.optimize import brentq
 
 DARCY_F_RE = 64.0
 """f Re of developed flow in a tube. Source: Hagen-Poiseuille, exact."""
@@ -50,6 +51,27 @@ def entrance_pressure_drop(
     reynolds = density * mean_velocity * diameter / viscosity
     x_plus = length / (diameter * reynolds)
     return float(apparent_f_re(x_plus)) * x_plus * 0.5 * density * mean_velocity**2
+
+
+def developed_mean_velocity(drop: float, viscosity: float, length: float, diameter: float) -> float:
+    """Mean velocity [m/s] of developed flow that a pressure drop [Pa] drives. Source: Hagen-Poiseuille, exact."""
+    return drop * diameter**2 / (32.0 * viscosity * length)
+
+
+def entrance_mean_velocity(drop: float, density: float, viscosity: float, length: float, diameter: float) -> float:
+    """Mean velocity [m/s] from a flat inlet that a pressure drop [Pa] drives: `entrance_pressure_drop` inverted."""
+    highest = developed_mean_velocity(drop, viscosity, length, diameter)  # the entrance costs something on top
+    if entrance_pressure_drop(density, viscosity, highest, length, diameter) <= drop:
+        return highest  # it costs less than round-off
+
+    def excess(log_share: float) -> float:
+        velocity = highest * math.exp(log_share)
+        return math.log(entrance_pressure_drop(density, viscosity, velocity, length, diameter) / drop)
+
+    low = -1.0
+    while excess(low) > 0.0:
+        low *= 2.0
+    return highest * math.exp(brentq(excess, low, 0.0, xtol=1e-10))
 
 
 def entry_length(reynolds: ArrayLike) -> Any:

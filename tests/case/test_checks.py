@@ -37,11 +37,12 @@ CONTRADICTIONS = {
         changed(('"4 g/s"', '"4 g/s"\nreynolds = 500')),
         "`stream.oil.reynolds = 500` stands beside `mass_flow`: the flow is given by exactly one of "
         "mass_flow, "
-        "volume_flow, mean_velocity, reynolds. Keep the one that is known, take the other out.",
+        "volume_flow, mean_velocity, reynolds, pressure_drop. Keep the one that is known, take the other out.",
     ),
     "no flow": (
         without("mass_flow"),
-        "`stream.oil` needs its flow: exactly one of mass_flow, volume_flow, mean_velocity, reynolds. "
+        "`stream.oil` needs its flow: exactly one of mass_flow, volume_flow, mean_velocity, reynolds, "
+        "pressure_drop. "
         'Write mass_flow = "4 g/s"; zero is allowed.',
     ),
     "flow against z": (

@@ -67,15 +67,6 @@ def test_reynolds_of_the_starter_is_about_500():
     assert 400 < reynolds(load(starter.TEXT)) < 600
 
 
-def test_there_are_four_shipped_cases():
-    assert [path.stem for path in CASES] == [
-        "copper-hot-source",
-        "flow-sensor",
-        "heater-band",
-        "syrup-jacket",
-    ]
-
-
 @pytest.mark.parametrize("path", CASES, ids=lambda path: path.stem)
 def test_shipped_cases_ask_a_question_read_and_reproduce_themselves(path):
     text = path.read_text(encoding="utf-8")

@@ -62,3 +62,12 @@ def test_entry_length():
         if reynolds > 49:
             assert duct_flow.entry_length_chen(reynolds) == pytest.approx(length, rel=0.013)
     assert duct_flow.entry_length(0.0) == pytest.approx(0.619)
+
+
+@pytest.mark.parametrize("velocity", [1e-6, 1e-2, 1.0, 5.0])
+def test_velocities_of_a_pressure_drop_give_it_back(velocity):
+    oil = {"viscosity": 1e-3, "length": 0.5, "diameter": 4e-3}
+    drop = duct_flow.entrance_pressure_drop(1000.0, 1e-3, velocity, 0.5, 4e-3)
+    assert duct_flow.entrance_mean_velocity(drop, 1000.0, **oil) == pytest.approx(velocity, rel=1e-6)
+    drop = duct_flow.developed_pressure_drop(1e-3, velocity * math.pi * 4e-6, 0.5, 4e-3)
+    assert duct_flow.developed_mean_velocity(drop, **oil) == pytest.approx(velocity)
