@@ -111,12 +111,8 @@ def make_result(
     parts = [{key: t[key] for key in WITH_BARS} for t in trees]
     nested = tuple(Nested(part, curve) for part, curve in zip(parts, curves, strict=True))
     if len(solutions) >= 3 and all(s.converged for s in solutions):
-        z, dz = solution.grid.z, solution.grid.dz
-
-        def cell(place: float) -> float:
-            return float(dz[np.clip(np.searchsorted(z, place) - 1, 0, len(dz) - 1)])
-
-        values, widths, hows = uncertainty.estimate_tree(parts, cell)
+        known = nested_mesh(case, trees[-1], solution, views[-1])
+        values, widths, hows = uncertainty.estimate_tree(parts, known)
         along = _told_apart(case, layout, trees[-2], halves, widths, hows) if halves is not None else {}
         extrapolated = {
             "finest_mesh": parts[-1],
@@ -128,7 +124,7 @@ def make_result(
             },
         }
         tree = {**tree, **values}
-        half_widths = {name: _curve_half_widths(name, curves) for name in curves[-1]}
+        half_widths = {name: _curve_half_widths(name, curves, known) for name in curves[-1]}
         for name, columns in curves[-1].items():
             _blank_where_unknown(columns, half_widths[name])
     found = cautions.after(case, layout, {**head, **tree}, curves[-1], solution)
@@ -150,6 +146,16 @@ def with_accuracy(result: Result, found: dict[str, Any], seconds: float) -> Resu
     full = {**result.summary, "accuracy": found, "seconds": seconds}
     full["cautions"] = cautions.after(result.case, result.layout, full, result.axial, result.solution)
     return replace(result, summary=full)
+
+
+def nested_mesh(
+    case: Case, tree: dict[str, Any], solution: Solution, views: dict[str, axial.StreamView]
+) -> uncertainty.Nested:
+    """What mesh errors need of the finest mesh besides its tree."""
+    scales = accuracy.scales(tree, solution)
+    of = {"K": scales["temperature_K"], "W": scales["heat_W"], "Pa": max(scales["pressure_Pa"].values(), default=0.0)}
+    undone = uncertainty.UNDONE * case.solve.stop_below
+    return uncertainty.Nested(solution.grid.z, summary.curves_of_places(solution, views), of, undone)
 
 
 def _told_apart(
@@ -191,7 +197,9 @@ def _blank_where_unknown(columns: dict[str, np.ndarray], half_widths: dict[str, 
             table[name] = np.where(unknown, np.nan, table[name])
 
 
-def _curve_half_widths(name: str, curves: list[dict[str, dict[str, np.ndarray]]]) -> dict[str, np.ndarray]:
+def _curve_half_widths(
+    name: str, curves: list[dict[str, dict[str, np.ndarray]]], known: uncertainty.Nested
+) -> dict[str, np.ndarray]:
     z = [c[name]["z_m"] for c in curves]
     widths = {}
     for column, values in curves[-1][name].items():
@@ -200,7 +208,9 @@ def _curve_half_widths(name: str, curves: list[dict[str, dict[str, np.ndarray]]]
         elif column == "reverse":
             widths[column] = np.full(len(values), np.nan)  # a flag has no mesh error
         else:
-            widths[column] = uncertainty.curve_half_widths(z, [c[name][column] for c in curves])
+            largest = float(np.abs(values).max(where=np.isfinite(values), initial=0.0))
+            floor = known.floor((column,), largest)
+            widths[column] = uncertainty.curve_half_widths(z, [c[name][column] for c in curves], floor)
     return widths
 
 

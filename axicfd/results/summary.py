@@ -12,7 +12,7 @@ import numpy as np
 from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout, PlacedSection
 from axicfd.case.model import Case
-from axicfd.mesh.grid import SOLID
+from axicfd.mesh.grid import SOLID, Array, Piece
 from axicfd.results import lines
 from axicfd.results.axial import StreamView
 from axicfd.solver import developed
@@ -39,6 +39,23 @@ def summary(case: Case, layout: Layout, solution: Solution, views: dict[str, Str
         "ledger": ledger,
         "balance": _balance(ledger, views, solution),
     }
+
+
+def curves_of_places(solution: Solution, views: dict[str, StreamView]) -> dict[str, tuple[Array, Array]]:
+    """Dotted name of every place in the tree -> (z, values) [m, K] of the curve whose largest value lies there."""
+    curves: dict[str, tuple[Array, Array]] = {}
+    for name, view in views.items():
+        z, wall = view.wall_z
+        z = view.grid.layout.length - z if view.mirrored else z
+        curves[f"stream.{name}.hottest_wetted_wall_z_m"] = z, wall
+        curves[f"stream.{name}.coldest_wetted_wall_z_m"] = z, -wall
+    for piece in solution.grid.pieces:
+        if piece.layer.kind == "solid":
+            z, body = _along(piece, solution)
+            path, hottest = f"layer.{piece.layer.name}.hottest_z_m", body.max(axis=1)
+            before_z, before = curves.get(path, (z[:0], hottest[:0]))
+            curves[path] = np.concatenate([before_z, z]), np.concatenate([before, hottest])
+    return curves
 
 
 # ------------------------------------------------------------------------------------------------ streams
@@ -242,28 +259,33 @@ def developed_nusselt(case: Case, solution: Solution, view: StreamView, section:
 
 def _layers(case: Case, solution: Solution) -> dict[str, Any]:
     """Hottest and coldest of every solid layer, over cells and both faces, joints from each side."""
-    grid, heat = solution.grid, solution.heat
     t_in = next(iter(case.stream.values())).inlet_temperature
     tree: dict[str, Any] = {}
-    for piece in grid.pieces:
+    for piece in solution.grid.pieces:
         if piece.layer.kind != "solid":
             continue
-        rows = slice(piece.i0, piece.i1)
-        here = np.concatenate(
-            [heat.plus[rows, piece.j0][:, None], heat.t[piece.cells], heat.minus[rows, piece.j1][:, None]], axis=1
-        )
-        z, zc = grid.z[piece.i0 : piece.i1 + 1], grid.zc[rows]
-        faces, _ = lines.to_faces(here, zc, z, ())
-        all_z = np.concatenate([zc, z])
-        order = np.argsort(all_z, kind="stable")
-        both = np.concatenate([here, faces])[order]
-        hottest, place = lines.extreme(all_z[order], both.max(axis=1), 1.0)
-        entry = {"hottest_K": hottest + t_in, "hottest_z_m": place, "coldest_K": float(both.min()) + t_in}
+        z, body = _along(piece, solution)
+        hottest, place = lines.extreme(z, body.max(axis=1), 1.0)
+        entry = {"hottest_K": hottest + t_in, "hottest_z_m": place, "coldest_K": float(body.min()) + t_in}
         old = tree.setdefault(piece.layer.name, entry)
         if entry["hottest_K"] > old["hottest_K"]:
             old |= {"hottest_K": entry["hottest_K"], "hottest_z_m": entry["hottest_z_m"]}
         old["coldest_K"] = min(old["coldest_K"], entry["coldest_K"])
     return tree
+
+
+def _along(piece: Piece, solution: Solution) -> tuple[Array, Array]:
+    """(z, temperatures) of a layer's piece at its stations and faces: (n,), (n, cells across and both surfaces)."""
+    grid, heat = solution.grid, solution.heat
+    rows = slice(piece.i0, piece.i1)
+    here = np.concatenate(
+        [heat.plus[rows, piece.j0][:, None], heat.t[piece.cells], heat.minus[rows, piece.j1][:, None]], axis=1
+    )
+    z, zc = grid.z[piece.i0 : piece.i1 + 1], grid.zc[rows]
+    faces, _ = lines.to_faces(here, zc, z, ())
+    all_z = np.concatenate([zc, z])
+    order = np.argsort(all_z, kind="stable")
+    return all_z[order], np.concatenate([here, faces])[order]
 
 
 def _section(k: int, section: PlacedSection, solution: Solution, views: dict[str, StreamView]) -> dict[str, Any]:

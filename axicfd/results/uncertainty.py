@@ -7,10 +7,9 @@ index (Roache 1994, J. Fluids Eng. 116, 405; factors 1.25 and 3 as in Roache 199
 does to the orders is seen in the values: no quantity is told that it belongs to one.
 """
 
-from collections.abc import Callable
 from dataclasses import dataclass
 from math import isfinite
-from typing import Any
+from typing import Any, TypeGuard
 
 import numpy as np
 from numpy.typing import NDArray
@@ -24,9 +23,12 @@ LEAST_OF_COARSER = 0.05  # and of the half-width that one mesh less would have g
 SETTLED = 3.4, 4.8  # the ratio on coarser meshes that, with it on the finest, makes four meshes agree on second order
 LEAST_OF_SETTLED = 0.05  # share of the correction where they do
 ROUND_OFF = 1e-11  # changes below this share of the value are round-off
+# What the iteration leaves undone: a share of the scale of a quantity, as a multiple of the residual at which solves
+# stop. Going on from 1e-3, 1e-5, 1e-7 or 1e-8 changed no value by more than 3.1 times that (validation/robustness).
+UNDONE = 5.0
 
 EXTRAPOLATED, FINEST, OSCILLATES, EXACT = "extrapolated", "finest", "oscillates", "exact"
-SPACING = "spacing"  # a place: known to a cell of the finest mesh
+SPACING = "spacing"  # a place: known to a cell of the finest mesh, or to the stretch where its curve is flat
 OPPOSED = "r and z opposed"  # added to a rule where the errors of the two directions cancel and widen the half-width
 # Coarsening the medium mesh in one direction changes a value by three of its errors there, twelve of the finest mesh's
 TWELVE = 12.0
@@ -58,15 +60,21 @@ class Estimates:
     rule: NDArray[np.str_]
 
 
-def estimate(values: list[float]) -> Estimate:
-    """The estimate from the values of one quantity on nested meshes, coarsest first; three of them, or more."""
-    found = estimates(np.array(values)[:, None])
+def estimate(values: list[float], floor: float = 0.0) -> Estimate:
+    """The estimate from the values of one quantity on nested meshes, coarsest first; three of them, or more.
+
+    floor : least half-width of what depends on the mesh at all
+    """
+    found = estimates(np.array(values)[:, None], floor)
     half_width, order = (float(x[0]) if np.isfinite(x[0]) else None for x in (found.half_width, found.order))
     return Estimate(float(found.value[0]), half_width, order, str(found.rule[0]))
 
 
-def estimates(values: Array) -> Estimates:
-    """The estimates from the values (meshes, n) of n quantities, or places of a curve, on nested meshes."""
+def estimates(values: Array, floor: float = 0.0) -> Estimates:
+    """The estimates from the values (meshes, n) of n quantities, or places of a curve, on nested meshes.
+
+    floor : least half-width of what depends on the mesh at all
+    """
     coarse, medium, fine = values[-3:]
     known = np.isfinite(values[-3:]).all(axis=0)
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
@@ -83,10 +91,14 @@ def estimates(values: Array) -> Estimates:
     cases = [~known, still, ~monotone, _is_within(SECOND_ORDER, older, last)]
     # what changes at all is known to no less than round-off: a small pressure drop lies on top of an atmosphere
     round_off = np.where((older != 0.0) | (last != 0.0), ROUND_OFF * size, 0.0)
-    widths = [np.full_like(fine, np.nan), round_off, np.maximum(turning, mixed), close]
+    widths = [
+        np.full_like(fine, np.nan),
+        round_off,
+        *(np.maximum(w, floor) for w in (np.maximum(turning, mixed), close)),
+    ]
     return Estimates(
         np.where(np.select(cases, [False, False, False, True], False), extrapolated, fine),
-        np.select(cases, widths, np.maximum(index, mixed)),
+        np.select(cases, widths, np.maximum(np.maximum(index, mixed), floor)),
         order,
         np.select(cases, [FINEST, EXACT, OSCILLATES, EXTRAPOLATED], FINEST),
     )
@@ -156,32 +168,90 @@ def grid_convergence_index(values: tuple[float, float, float], ratios: tuple[flo
     }
 
 
-def estimate_tree(trees: list[Any], cell: Callable[[float], float], path: tuple[str, ...] = ()) -> tuple[Any, Any, Any]:
+def scale(path: tuple[str, ...], value: float, of: dict[str, float]) -> float:
+    """What a share of a quantity is counted of: by its unit "K", "W" or "Pa" in `of`, else its own size.
+
+    path : its names in the tree, or the one of a column
+    """
+    for name in reversed(path):
+        if name.endswith("_K_W"):
+            break
+        if name.endswith("_K"):
+            return of["K"]
+        if name.endswith("_W"):
+            return of["W"]
+        if name.endswith("_Pa") and "shear" not in name:
+            return of["Pa"]
+    return abs(value)
+
+
+PLACE = "_z_m"  # end of the name of a place; "_K" in its stead is the extreme that lies there
+
+
+@dataclass(frozen=True)
+class Nested:
+    """What the mesh errors of a tree need besides the values.
+
+    z      : (nz + 1,) [m] axial faces of the finest mesh
+    curves : names of each place, joined by dots -> (z, values) of the curve whose largest value lies there
+    scales : "K", "W", "Pa" -> what shares of temperatures, heats and pressures are counted of
+    undone : share of the scale by which iterations left undone may change a value
+    """
+
+    z: Array
+    curves: dict[str, tuple[Array, Array]]
+    scales: dict[str, float]
+    undone: float
+
+    def floor(self, path: tuple[str, ...], value: float) -> float:
+        return self.undone * scale(path, value, self.scales)
+
+    def known_to(self, path: tuple[str, ...], places: list[float], extremes: list[float]) -> float:
+        """[m] half-width of a place, from the places and the extremes there on the last meshes.
+
+        At least the cell that it lies in and its last move; and it reaches as far as the curve of the finest mesh comes
+        as near to its extreme as that is known: the true curve may have its extreme anywhere there.
+        """
+        place = places[-1]
+        k = np.clip(np.searchsorted(self.z, place) - 1, 0, len(self.z) - 2)
+        least = max(float(self.z[k + 1] - self.z[k]), abs(place - places[-2]))
+        if ".".join(path) not in self.curves:
+            return least
+        found = estimate(extremes)
+        floor = self.floor((*path[:-1], _extreme(path[-1])), extremes[-1])
+        margin = max(found.half_width or 0.0, floor) + abs(found.value - extremes[-1])
+        z, values = self.curves[".".join(path)]
+        return max(least, float(np.abs(z[values >= values.max() - margin] - place).max()))
+
+
+def _extreme(place: str) -> str:
+    return place.removesuffix(PLACE) + "_K"
+
+
+def estimate_tree(trees: list[Any], nested: Nested, path: tuple[str, ...] = ()) -> tuple[Any, Any, Any]:
     """(values, half-widths, how) of the trees of headline quantities on nested meshes, coarsest first.
 
-    cell : length of the axial cell of the finest mesh at a place z [m]; no place is known more sharply
     Leaves that are not numbers on all of the last three meshes are taken from the finest, without a half-width.
     """
-    finest = trees[-1]
-    if isinstance(finest, dict):
-        values, widths, hows = {}, {}, {}
-        for key, leaf in finest.items():
-            below = [tree.get(key) if isinstance(tree, dict) else None for tree in trees]
-            if key == "why":
-                values[key] = leaf
-                continue
-            value, width, how = estimate_tree(below, cell, (*path, key))
-            values[key] = value
-            if width is not None and width != {}:
-                widths[key], hows[key] = width, how
-        return values, widths, hows
-    usable = [tree for tree in trees if _is_number(tree)]
-    if not all(_is_number(tree) for tree in trees[-3:]) or len(usable) < 3:
-        return finest, None, None
-    if path and path[-1].endswith("_z_m"):
-        return finest, max(cell(finest), abs(trees[-1] - trees[-2])), {"observed_order": None, "rule": SPACING}
-    found = estimate([float(v) for v in usable])
-    return found.value, found.half_width, {"observed_order": found.order, "rule": found.rule}
+    values, widths, hows = {}, {}, {}
+    for key, leaf in trees[-1].items():
+        below, here = [tree.get(key) if isinstance(tree, dict) else None for tree in trees], (*path, key)
+        values[key], width, how = leaf, None, None
+        if isinstance(leaf, dict) and key != "why":
+            values[key], width, how = estimate_tree(below, nested, here)
+        elif all(_is_number(value) for value in below[-3:]):
+            numbers = [float(value) for value in below if _is_number(value)]
+            if key.endswith(PLACE):
+                extremes = [tree.get(_extreme(key)) for tree in trees if isinstance(tree, dict)]
+                width = nested.known_to(here, numbers, [float(value) for value in extremes if _is_number(value)])
+                how = {"observed_order": None, "rule": SPACING}
+            else:
+                found = estimate(numbers, nested.floor(here, numbers[-1]))
+                values[key], width = found.value, found.half_width
+                how = {"observed_order": found.order, "rule": found.rule}
+        if width is not None and width != {}:
+            widths[key], hows[key] = width, how
+    return values, widths, hows
 
 
 @dataclass(frozen=True)
@@ -205,14 +275,15 @@ def split(medium: Any, coarse_r: Any, coarse_z: Any) -> Split | None:
     return Split((coarse_r - medium) / TWELVE, (coarse_z - medium) / TWELVE)
 
 
-def _is_number(leaf: Any) -> bool:
+def _is_number(leaf: Any) -> TypeGuard[float]:
     return isinstance(leaf, int | float) and not isinstance(leaf, bool) and isfinite(leaf)
 
 
-def curve_half_widths(z: list[Array], columns: list[Array]) -> Array:
+def curve_half_widths(z: list[Array], columns: list[Array], floor: float = 0.0) -> Array:
     """Half-widths along a curve on the finest faces, from the curves on nested meshes, coarsest first.
 
     z, columns : faces and values of each mesh; coarse faces are fine faces. nan where a mesh has no value.
+    floor      : least half-width of what depends on the mesh at all
     Between the faces that all of the last three meshes share the half-width is interpolated.
     """
     shared = z[-3]
@@ -220,7 +291,7 @@ def curve_half_widths(z: list[Array], columns: list[Array]) -> Array:
         column[np.searchsorted(faces, shared - 1e-12 * shared[-1])]
         for faces, column in zip(z[-3:], columns[-3:], strict=True)
     ]
-    found = estimates(np.array(picks))
+    found = estimates(np.array(picks), floor)
     # the curves themselves stay those of the finest mesh
     widths = found.half_width + np.abs(found.value - picks[-1])
     good = np.isfinite(widths)

@@ -10,6 +10,7 @@ import pytest
 
 from axicfd.results import uncertainty
 from axicfd.results.uncertainty import (
+    Nested,
     curve_half_widths,
     estimate,
     estimate_tree,
@@ -231,10 +232,17 @@ def leaves(temperature: float, place: float, entry: float | None) -> dict:
     }
 
 
+def nested_at(faces, curves=None, undone=0.0) -> Nested:
+    return Nested(np.array(faces), curves or {}, {"K": 40.0, "W": 5.0, "Pa": 7.0}, undone)
+
+
+FACES = [0.0, 0.3, 0.3225, 0.32575, 1.0]  # the place of `walked` lies in a cell of 3.25 mm
+
+
 @pytest.fixture
 def walked():
     trees = [leaves(300.16, 0.30, None), leaves(300.04, 0.32, 0.5), leaves(300.01, 0.325, None)]
-    return estimate_tree(trees, lambda z: 0.01 * z)
+    return estimate_tree(trees, nested_at(FACES))
 
 
 def test_numbers_of_a_tree_are_extrapolated_in_place(walked):
@@ -264,9 +272,70 @@ def test_places_are_known_to_a_cell_or_to_their_last_move(walked):
     assert values["stream"]["oil"]["hottest_wetted_wall_z_m"] == 0.325
     assert widths["stream"]["oil"]["hottest_wetted_wall_z_m"] == pytest.approx(0.005)
     assert how["stream"]["oil"]["hottest_wetted_wall_z_m"] == {"observed_order": None, "rule": uncertainty.SPACING}
-    still = [leaves(300.0, 0.3, None)] * 3
-    _, widths, _ = estimate_tree(still, lambda z: 0.01 * z)
-    assert widths["stream"]["oil"]["hottest_wetted_wall_z_m"] == pytest.approx(0.003)
+    still = [leaves(300.0, 0.325, None)] * 3
+    _, widths, _ = estimate_tree(still, nested_at(FACES))
+    assert widths["stream"]["oil"]["hottest_wetted_wall_z_m"] == pytest.approx(0.00325)
+
+
+def flat(extreme: float, place: float) -> dict:
+    return {"layer": {"wall": {"hottest_K": extreme, "hottest_z_m": place}}}
+
+
+def known_to(trees: list[dict], curve: np.ndarray, z: np.ndarray, undone: float = 0.0) -> float:
+    _, widths, _ = estimate_tree(trees, nested_at(z, {"layer.wall.hottest_z_m": (z, curve)}, undone))
+    return widths["layer"]["wall"]["hottest_z_m"]
+
+
+def test_a_place_on_a_flat_curve_is_known_to_the_stretch_where_it_is_flat():
+    """A parabola of 1 K/m2 with its top at 0.5 m, found at 0.48 m: where the top is known to m kelvin, the place
+    reaches from 0.5 - sqrt(m) to 0.5 + sqrt(m). Independent computation, not published."""
+    z = np.linspace(0.0, 1.0, 2001)
+    curve = 20.0 - (z - 0.5) ** 2
+    trees = [flat(top + 293.15, 0.48) for top in (19.84, 19.96, 19.99)]
+    margin = 1.25 * 0.1 * 0.01 + 0.01  # the half-width, and what the extrapolated top lies above the finest one
+    assert known_to(trees, curve, z) == pytest.approx(0.02 + math.sqrt(margin), abs=1e-3)
+
+
+def test_a_curve_flat_to_what_the_iteration_leaves_undone():
+    """Held at one temperature over 0.2 to 0.8 m: the noise of the iteration, here 1e-8 K, says where the top is."""
+    z = np.linspace(0.0, 1.0, 101)
+    curve = np.where((z > 0.195) & (z < 0.805), 40.0, 20.0)
+    curve[30] += 1e-8
+    assert known_to([flat(333.15, 0.3)] * 3, curve, z) == pytest.approx(0.01)
+    assert known_to([flat(333.15, 0.3)] * 3, curve, z, undone=5e-8) == pytest.approx(0.5)
+
+
+def test_two_tops_alike_are_both_in_the_bar():
+    z = np.linspace(0.0, 1.0, 101)
+    curve = np.maximum(0.0, 1.0 - 100 * np.abs(z - 0.2)) + np.maximum(0.0, 0.999 - 100 * np.abs(z - 0.9))
+    trees = [flat(top, 0.2) for top in (300.16, 300.04, 300.01)]
+    assert known_to(trees, curve, z) == pytest.approx(0.7)
+
+
+def test_no_bar_is_below_what_the_iteration_leaves_undone():
+    """The floor is a share of the scale by the unit; what does not depend on the mesh keeps its zero."""
+    trees = [{"stream": {"oil": {"heat_gain_W": w, "reynolds": 100.0}}} for w in (2.0 + 1.6e-7, 2.0 + 4e-8, 2.0 + 1e-8)]
+    _, widths, _ = estimate_tree(trees, nested_at([0.0, 1.0], undone=5e-8))
+    assert widths["stream"]["oil"] == {"heat_gain_W": pytest.approx(5e-8 * 5.0), "reynolds": 0.0}
+    z = nested()
+    columns = [1.0 + 1e-9 * 0.25**k + np.zeros_like(x) for k, x in enumerate(z)]
+    assert curve_half_widths(z, columns, 1e-6) == pytest.approx(1e-6, rel=1e-3)
+
+
+@pytest.mark.parametrize(
+    "path, value, expected",
+    [
+        (("sensor", "axis", "temperature_K"), 300.0, 60.0),
+        (("section", "a", "end_bulk_temperature_K", "liquid"), 300.0, 60.0),
+        (("section", "a", "heat_to_stream_W", "liquid"), 1.0, 5.0),
+        (("section", "a", "end_pressure_Pa", "liquid"), 1.0, 7.0),
+        (("stream", "liquid", "largest_wall_shear_stress_Pa"), 0.3, 0.3),
+        (("stream", "liquid", "thermal_resistance_K_W"), -0.2, 0.2),
+        (("wall_heat_flux_W_m2",), 900.0, 900.0),
+    ],
+)
+def test_scales_follow_the_unit(path, value, expected):
+    assert uncertainty.scale(path, value, {"K": 60.0, "W": 5.0, "Pa": 7.0}) == expected
 
 
 # ------------------------------------------------------------------------------------ curves

@@ -28,16 +28,6 @@ def test_limit_of_what_alternates_is_the_finest_value_known_to_its_changes():
     assert study.limit([1.0, 1.2, 1.1, 1.15]) == pytest.approx((1.15, 0.05))
 
 
-def test_scales_follow_the_unit():
-    of = {"K": 60.0, "W": 5.0, "Pa": 7.0}
-    assert study.scale("sensor.axis.temperature_K", 300.0, of) == 60.0
-    assert study.scale("section.a.end_bulk_temperature_K.liquid", 300.0, of) == 60.0
-    assert study.scale("section.a.heat_to_stream_W.liquid", 1.0, of) == 5.0
-    assert study.scale("section.a.end_pressure_Pa.liquid", 1.0, of) == 7.0
-    assert study.scale("stream.liquid.largest_wall_shear_stress_Pa", 0.3, of) == 0.3
-    assert study.scale("stream.liquid.thermal_resistance_K_W", 0.2, of) == 0.2
-
-
 def test_a_blunt_limit_tells_only_against_a_bar():
     values = [1.16, 1.04, 1.01]  # printed: 1.000 with a bar of 0.00125
     assert study.judged([triple(values, 1.0005, known_to=0.001)]) == []

@@ -18,7 +18,7 @@ from axicfd.case.model import Case
 from axicfd.mesh.build import LEVELS, family
 from axicfd.pipeline import NESTED, START_BELOW
 from axicfd.results import axial, summary, uncertainty
-from axicfd.results.result import WITH_BARS
+from axicfd.results.result import WITH_BARS, nested_mesh
 from axicfd.solver.solve import solve_on
 
 MORE = 2  # halvings beyond the mesh that is judged
@@ -32,7 +32,7 @@ class Triple:
 
     group   : class of the case        mesh : `at_most` of the case        cells : of the finest mesh
     values  : on the last four nested meshes, coarsest first
-    spacing : length of the axial cell where a place lies [m], nan for what is no place
+    spacing : half-width of a place [m], by its cell, its last move and the flatness of its curve; nan for what is none
     scale   : what per cent are counted of        limit, known_to : where the values go, and how sharply that is known
     """
 
@@ -51,8 +51,7 @@ class Triple:
     def printed(self) -> uncertainty.Estimate:
         """Value and half-width as the tool prints them."""
         if math.isfinite(self.spacing):
-            half = max(self.spacing, abs(self.values[-1] - self.values[-2]))
-            return uncertainty.Estimate(self.values[-1], half, None, uncertainty.SPACING)
+            return uncertainty.Estimate(self.values[-1], self.spacing, None, uncertainty.SPACING)
         return uncertainty.estimate(list(self.values))
 
 
@@ -63,7 +62,7 @@ class Climb:
     cells: int
     judged: list[dict[str, Any]]
     finer: list[dict[str, Any]]
-    edges: np.ndarray  # axial faces of the case's mesh
+    nested: uncertainty.Nested  # of the case's mesh
     seconds: float
 
 
@@ -94,11 +93,12 @@ def climb(case: Case, more: int = 0) -> Climb:
             continue
         if not solution.converged:
             raise NotConverged(f"level {level}: {solution.stop_reason} at {solution.residual:.1e}")
-        tree = summary.summary(case, place, solution, axial.stream_views(case, solution))
-        trees.append(tree | {"span_K": float(np.abs(solution.heat.t[solution.grid.kind > 0]).max())})
-    own = meshes.grid(0)
+        views = axial.stream_views(case, solution)
+        trees.append(summary.summary(case, place, solution, views))
+        if level == 0:
+            nested = nested_mesh(case, trees[-1], solution, views)
     judged, finer = trees[:NESTED], trees[NESTED:]
-    return Climb(own.cells, judged, finer, own.z, time.perf_counter() - begun)
+    return Climb(meshes.cells, judged, finer, nested, time.perf_counter() - begun)
 
 
 def leaves(tree: dict[str, Any], path: str = "") -> Iterator[tuple[str, float]]:
@@ -110,30 +110,6 @@ def leaves(tree: dict[str, Any], path: str = "") -> Iterator[tuple[str, float]]:
             yield from leaves(value, f"{path}{key}.")
         elif isinstance(value, int | float) and not isinstance(value, bool):
             yield path + key, float(value)
-
-
-def scales(tree: dict[str, Any]) -> dict[str, float]:
-    """What per cent of a temperature, a heat and a pressure are counted of."""
-    ledger = tree["ledger"]
-    brought = sum(abs(q) for part in ("section", "ends", "generated") for q in ledger[part].values())
-    taken = sum(abs(q) for q in ledger["stream"].values())
-    (stream,) = tree["stream"].values()
-    return {"K": tree["span_K"], "W": max(brought, taken), "Pa": abs(stream.get("pressure_drop_Pa", 0.0))}
-
-
-def scale(quantity: str, value: float, of: dict[str, float]) -> float:
-    """The scale of a quantity: by its unit; its own size for all others."""
-    names = quantity.split(".")
-    for name in reversed(names):
-        if name.endswith("_K_W"):
-            break
-        if name.endswith(("_K", "temperature_K")):
-            return of["K"]
-        if name.endswith("_W"):
-            return of["W"]
-        if name.endswith("_Pa") and "shear" not in name:
-            return of["Pa"]
-    return abs(value)
 
 
 def limit(values: list[float]) -> tuple[float, float]:
@@ -159,21 +135,30 @@ def limit(values: list[float]) -> tuple[float, float]:
 
 def triples(group: str, name: str, mesh: int, found: Climb, limits: dict[str, tuple[float, float]]) -> list[Triple]:
     """Every quantity of a climb that has a known limit and a value on all of its meshes."""
-    of, flat = scales(found.judged[-1]), [dict(leaves(tree)) for tree in found.judged]
+    of, flat = found.nested.scales, [dict(leaves(tree)) for tree in found.judged]
+    _, widths, _ = uncertainty.estimate_tree(
+        [{key: tree[key] for key in WITH_BARS} for tree in found.judged], found.nested
+    )
+    bars = dict(leaves(widths))
     rows = []
     for quantity, value in flat[-1].items():
         values = tuple(tree.get(quantity, math.nan) for tree in flat)
         if quantity not in limits or not all(math.isfinite(v) for v in values[-3:]):
             continue
-        spacing = math.nan
-        if quantity.endswith("_z_m"):
-            here = int(np.clip(np.searchsorted(found.edges, value) - 1, 0, len(found.edges) - 2))
-            spacing = float(found.edges[here + 1] - found.edges[here])
+        spacing = bars[quantity] if quantity.endswith(uncertainty.PLACE) else math.nan
         if not math.isfinite(values[0]):
             values = values[1:]
         rows.append(
             Triple(
-                group, name, mesh, found.cells, quantity, values, spacing, scale(quantity, value, of), *limits[quantity]
+                group,
+                name,
+                mesh,
+                found.cells,
+                quantity,
+                values,
+                spacing,
+                uncertainty.scale(tuple(quantity.split(".")), value, of),
+                *limits[quantity],
             )
         )
     return rows
