@@ -225,10 +225,14 @@ class _Run:
         self.energy.set_flow(mz, mr)
         if self.case.physics.viscous_heating:
             phi = np.zeros_like(f.p)
+            counted: Array | float = 1.0
             momentum.dissipation(f.mesh, f.viscosity, f.u, f.v, phi)
-            self.viscous[:, here] = self._turned(phi)
+            if self.stream.slips_at_inlet:
+                z, r = f.mesh.z, f.mesh.r
+                counted = boundary.counted_near_corner(0.5 * (z[1:] + z[:-1]), 0.5 * (r[1:] + r[:-1]), r[-1])
+            self.viscous[:, here] = self._turned(counted * phi)
             if not self.fluid.density.is_constant:
-                self.pressure_work[:, here] = self._expansion(here) * self._turned(_pressure_power(f))
+                self.pressure_work[:, here] = self._expansion(here) * self._turned(counted * _pressure_power(f))
             self.energy.volume_heat = self.viscous + self.pressure_work
 
     def _expansion(self, here: slice) -> Array:

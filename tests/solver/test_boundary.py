@@ -222,3 +222,19 @@ def test_an_inlet_profile_from_a_file(tmp_path):
     assert u / u[0] == pytest.approx((2.0 - rc / 5e-3) / (2.0 - rc[0] / 5e-3), rel=1e-12)
     assert 1000.0 * (u * area).sum() == pytest.approx(0.01, rel=1e-13)
     assert boundary.inlet_temperature(case, "oil", rc) == pytest.approx(300.0 + 10.0 * rc / 5e-3 - T_IN)
+
+
+def test_friction_at_the_inlet_corner_counts_to_a_finite_sum():
+    """Integral of share / s^2 over a quarter disc of radius S: pi/4 (ln(1 + (S/e)^2) + 1/(1 + (S/e)^2) - 1), exact."""
+    n, radius = 1000, 1.0
+    x = (np.arange(n) + 0.5) / n
+    square = x[:, None] ** 2 + (radius - x[None, :]) ** 2
+    inside = boundary.counted_near_corner(x, x, radius) / square
+    found = inside[square < 1.0].sum() / n**2
+    ratio = 1.0 + 1.0 / boundary.CORNER**2
+    assert found == pytest.approx(np.pi / 4 * (np.log(ratio) + 1.0 / ratio - 1.0), rel=2e-3)
+
+
+def test_friction_far_from_the_inlet_corner_counts_in_full():
+    share = boundary.counted_near_corner(np.array([0.01, 100.0]), np.array([0.0, 0.99]), 1.0)
+    assert share[1] == pytest.approx(1.0, abs=1e-5) and share[0, 0] > 0.98 and share[0, 1] < 1e-3
