@@ -61,6 +61,11 @@ class PlacedSection:
         held = self.outside.temperature is not None and not self.outside.contact_resistance
         return held and self.layers[-1].kind != "void"
 
+    @property
+    def is_heated(self) -> bool:
+        """Whether heat comes in or out from outside, or is generated here."""
+        return not self.outside.insulated or any(self.heat_density(layer) for layer in self.layers)
+
     def heat_density(self, layer: PlacedLayer) -> float:
         """Heat generated in a layer of this section [W/m3], of both keys together."""
         return layer.heat_per_volume + layer.generated / (layer.area * self.length)

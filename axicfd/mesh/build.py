@@ -31,6 +31,7 @@ END_CELL = 0.02  # first axial cell at a graded end, in bore radii
 # conductances
 # know that (solver.edges); the finer cells along z let the curves follow it.
 END_CELL_SINGULAR = 0.002
+OUTLET = "outlet"  # a kind of place: cells are graded to it, but the scheme along z stays the same up to there
 SAME_RADIUS = 1e-9  # radii closer than this share of the outer radius are one interface
 
 
@@ -135,7 +136,7 @@ class Family:
         """
         z = _line(self.axial, level)
         r = _line(self.radial, level if radial_level is None else radial_level)
-        return _grid(self.layout, z, r, tuple(p.z for p in self.places))
+        return _grid(self.layout, z, r, tuple(p.z for p in self.places if p.kind != OUTLET))
 
 
 def family(case: Case, layout: Layout) -> Family:
@@ -221,12 +222,18 @@ def _interfaces(layout: Layout) -> list[float]:
 
 
 def _places(case: Case, layout: Layout) -> tuple[Place, ...]:
-    """Inlets, joints and ends that cells are graded to, by name."""
+    """Inlets, joints and ends that cells are graded to, by name; and outlets of tubes heated up to there.
+
+    Nothing is conducted through the outlet plane, so a wall that gets hotter along z bends in a thin layer before it.
+    """
     places = []
     for name in layout.stream_names:
         stream = case.stream[name]
         z = 0.0 if stream.direction == "+z" else layout.length
         places.append(Place(f"inlet of {name}", z, "inlet", stream.slips_at_inlet))
+        last = layout.sections[-1 if stream.direction == "+z" else 0]
+        if last.is_heated and not stream.is_still:
+            places.append(Place(f"outlet of {name}", layout.length - z, OUTLET, False))
     for end, z in (("first", 0.0), ("last", layout.length)):
         conditions = getattr(case.ends, end)
         if any(not c.insulated for c in conditions.values()):

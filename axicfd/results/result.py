@@ -111,8 +111,8 @@ def make_result(
     parts = [{key: t[key] for key in WITH_BARS} for t in trees]
     nested = tuple(Nested(part, curve) for part, curve in zip(parts, curves, strict=True))
     if len(solutions) >= 3 and all(s.converged for s in solutions):
-        known = nested_mesh(case, trees[-1], solution, views[-1])
-        values, widths, hows = uncertainty.estimate_tree(parts, known)
+        least = least_widths(case, trees[-1], solution, views[-1])
+        values, widths, hows = uncertainty.estimate_tree(parts, least)
         along = _told_apart(case, layout, trees[-2], halves, widths, hows) if halves is not None else {}
         extrapolated = {
             "finest_mesh": parts[-1],
@@ -124,7 +124,7 @@ def make_result(
             },
         }
         tree = {**tree, **values}
-        half_widths = {name: _curve_half_widths(name, curves, known) for name in curves[-1]}
+        half_widths = {name: _curve_half_widths(name, curves, least) for name in curves[-1]}
         for name, columns in curves[-1].items():
             _blank_where_unknown(columns, half_widths[name])
     found = cautions.after(case, layout, {**head, **tree}, curves[-1], solution)
@@ -148,14 +148,14 @@ def with_accuracy(result: Result, found: dict[str, Any], seconds: float) -> Resu
     return replace(result, summary=full)
 
 
-def nested_mesh(
+def least_widths(
     case: Case, tree: dict[str, Any], solution: Solution, views: dict[str, axial.StreamView]
-) -> uncertainty.Nested:
+) -> uncertainty.LeastWidths:
     """What mesh errors need of the finest mesh besides its tree."""
     scales = accuracy.scales(tree, solution)
     of = {"K": scales["temperature_K"], "W": scales["heat_W"], "Pa": max(scales["pressure_Pa"].values(), default=0.0)}
-    undone = uncertainty.UNDONE * case.solve.stop_below
-    return uncertainty.Nested(solution.grid.z, summary.curves_of_places(solution, views), of, undone)
+    curves = summary.curves_of_places(solution, views)
+    return uncertainty.LeastWidths(solution.grid.z, curves, of, case.solve.stop_below)
 
 
 def _told_apart(
@@ -198,7 +198,7 @@ def _blank_where_unknown(columns: dict[str, np.ndarray], half_widths: dict[str, 
 
 
 def _curve_half_widths(
-    name: str, curves: list[dict[str, dict[str, np.ndarray]]], known: uncertainty.Nested
+    name: str, curves: list[dict[str, dict[str, np.ndarray]]], least: uncertainty.LeastWidths
 ) -> dict[str, np.ndarray]:
     z = [c[name]["z_m"] for c in curves]
     widths = {}
@@ -209,7 +209,7 @@ def _curve_half_widths(
             widths[column] = np.full(len(values), np.nan)  # a flag has no mesh error
         else:
             largest = float(np.abs(values).max(where=np.isfinite(values), initial=0.0))
-            floor = known.floor((column,), largest)
+            floor = least.floor((column,), largest)
             widths[column] = uncertainty.curve_half_widths(z, [c[name][column] for c in curves], floor)
     return widths
 

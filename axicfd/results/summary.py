@@ -67,7 +67,7 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
     wall_z, wall = view.wall_z
     hottest, hottest_z = lines.extreme(wall_z, wall, 1.0)
     coldest, coldest_z = lines.extreme(wall_z, wall, -1.0)
-    heated = sum(s.length for s in layout.sections if _is_heated(s))
+    heated = sum(s.length for s in layout.sections if s.is_heated)
     tree: dict[str, Any] = {"mass_flow_kg_s": view.mass_flow, "inlet_temperature_K": t_in}
     walls = {
         "hottest_wetted_wall_K": hottest + t_in,
@@ -107,7 +107,7 @@ def _stream(case: Case, layout: Layout, solution: Solution, view: StreamView) ->
         "hydrodynamic_entry_length_m": _hydrodynamic_entry(solution, view, why),
         "thermal_entry_length_m": None,
     }
-    entries = {s.name: _thermal_entry(case, solution, view, s) for s in layout.sections if _is_heated(s)}
+    entries = {s.name: _thermal_entry(case, solution, view, s) for s in layout.sections if s.is_heated}
     order = list(entries)[::-1] if view.mirrored else list(entries)
     if order:
         tree["thermal_entry_length_m"], reason = entries[order[0]]
@@ -136,10 +136,6 @@ def _heat_brought_in(layout: Layout, solution: Solution) -> float:
     parts += [float(heat.generated.sum()), float(heat.first.sum()), float(heat.last.sum())]
     brought = sum(part for part in parts if part > 0.0)
     return brought if brought > TRICKLE_OF_HEAT * sum(abs(part) for part in parts) else 0.0
-
-
-def _is_heated(section: PlacedSection) -> bool:
-    return not section.outside.insulated or any(section.heat_density(p) for p in section.layers)
 
 
 def _from_start(view: StreamView, z: float) -> float:

@@ -23,9 +23,10 @@ LEAST_OF_COARSER = 0.05  # and of the half-width that one mesh less would have g
 SETTLED = 3.4, 4.8  # the ratio on coarser meshes that, with it on the finest, makes four meshes agree on second order
 LEAST_OF_SETTLED = 0.05  # share of the correction where they do
 ROUND_OFF = 1e-11  # changes below this share of the value are round-off
-# What the iteration leaves undone: a share of the scale of a quantity, as a multiple of the residual at which solves
-# stop. Going on from 1e-3, 1e-5, 1e-7 or 1e-8 changed no value by more than 3.1 times that (validation/robustness).
-UNDONE = 5.0
+# What the iteration may leave undone, as a multiple of the residual at which solves stop: a share of the scale of
+# temperatures, heats and pressures; a share of the value for all else. Residuals are sums over the whole tube, so what
+# is local, as the largest shear stress, may be off by more (validation/robustness/iterations).
+UNDONE, UNDONE_ELSE = 5.0, 300.0
 
 EXTRAPOLATED, FINEST, OSCILLATES, EXACT = "extrapolated", "finest", "oscillates", "exact"
 SPACING = "spacing"  # a place: known to a cell of the finest mesh, or to the stretch where its curve is flat
@@ -168,8 +169,8 @@ def grid_convergence_index(values: tuple[float, float, float], ratios: tuple[flo
     }
 
 
-def scale(path: tuple[str, ...], value: float, of: dict[str, float]) -> float:
-    """What a share of a quantity is counted of: by its unit "K", "W" or "Pa" in `of`, else its own size.
+def unit(path: tuple[str, ...]) -> str | None:
+    """ "K", "W" or "Pa" where a quantity is counted of a scale that the case has for it, None where of its own size.
 
     path : its names in the tree, or the one of a column
     """
@@ -177,34 +178,41 @@ def scale(path: tuple[str, ...], value: float, of: dict[str, float]) -> float:
         if name.endswith("_K_W"):
             break
         if name.endswith("_K"):
-            return of["K"]
+            return "K"
         if name.endswith("_W"):
-            return of["W"]
+            return "W"
         if name.endswith("_Pa") and "shear" not in name:
-            return of["Pa"]
-    return abs(value)
+            return "Pa"
+    return None
+
+
+def scale(path: tuple[str, ...], value: float, of: dict[str, float]) -> float:
+    """What a share of a quantity is counted of: the scale of its unit, or its own size."""
+    counted = unit(path)
+    return of[counted] if counted else abs(value)
 
 
 PLACE = "_z_m"  # end of the name of a place; "_K" in its stead is the extreme that lies there
 
 
 @dataclass(frozen=True)
-class Nested:
+class LeastWidths:
     """What the mesh errors of a tree need besides the values.
 
-    z      : (nz + 1,) [m] axial faces of the finest mesh
-    curves : names of each place, joined by dots -> (z, values) of the curve whose largest value lies there
-    scales : "K", "W", "Pa" -> what shares of temperatures, heats and pressures are counted of
-    undone : share of the scale by which iterations left undone may change a value
+    z        : (nz + 1,) [m] axial faces of the finest mesh
+    curves   : names of each place, joined by dots -> (z, values) of the curve whose largest value lies there
+    scales   : "K", "W", "Pa" -> what shares of temperatures, heats and pressures are counted of
+    residual : at which the solves stop
     """
 
     z: Array
     curves: dict[str, tuple[Array, Array]]
     scales: dict[str, float]
-    undone: float
+    residual: float
 
     def floor(self, path: tuple[str, ...], value: float) -> float:
-        return self.undone * scale(path, value, self.scales)
+        """The least half-width of a quantity: what further iterations might change."""
+        return (UNDONE if unit(path) else UNDONE_ELSE) * self.residual * scale(path, value, self.scales)
 
     def known_to(self, path: tuple[str, ...], places: list[float], extremes: list[float]) -> float:
         """[m] half-width of a place, from the places and the extremes there on the last meshes.
@@ -228,7 +236,7 @@ def _extreme(place: str) -> str:
     return place.removesuffix(PLACE) + "_K"
 
 
-def estimate_tree(trees: list[Any], nested: Nested, path: tuple[str, ...] = ()) -> tuple[Any, Any, Any]:
+def estimate_tree(trees: list[Any], least: LeastWidths, path: tuple[str, ...] = ()) -> tuple[Any, Any, Any]:
     """(values, half-widths, how) of the trees of headline quantities on nested meshes, coarsest first.
 
     Leaves that are not numbers on all of the last three meshes are taken from the finest, without a half-width.
@@ -238,15 +246,15 @@ def estimate_tree(trees: list[Any], nested: Nested, path: tuple[str, ...] = ()) 
         below, here = [tree.get(key) if isinstance(tree, dict) else None for tree in trees], (*path, key)
         values[key], width, how = leaf, None, None
         if isinstance(leaf, dict) and key != "why":
-            values[key], width, how = estimate_tree(below, nested, here)
+            values[key], width, how = estimate_tree(below, least, here)
         elif all(_is_number(value) for value in below[-3:]):
             numbers = [float(value) for value in below if _is_number(value)]
             if key.endswith(PLACE):
                 extremes = [tree.get(_extreme(key)) for tree in trees if isinstance(tree, dict)]
-                width = nested.known_to(here, numbers, [float(value) for value in extremes if _is_number(value)])
+                width = least.known_to(here, numbers, [float(value) for value in extremes if _is_number(value)])
                 how = {"observed_order": None, "rule": SPACING}
             else:
-                found = estimate(numbers, nested.floor(here, numbers[-1]))
+                found = estimate(numbers, least.floor(here, numbers[-1]))
                 values[key], width = found.value, found.half_width
                 how = {"observed_order": found.order, "rule": found.rule}
         if width is not None and width != {}:

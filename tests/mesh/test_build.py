@@ -167,13 +167,21 @@ def test_cells_are_graded_to_inlet_joint_and_heater_edge():
     f = jacketed()
     assert [(p.name, p.kind, p.singular) for p in f.places] == [
         ("inlet of water", "inlet", True),
+        ("outlet of water", "outlet", False),
         ("joint bare | jacketed", "joint", False),
     ]
     grid = f.grid()
-    assert grid.z[list(grid.joints)] == pytest.approx([0.0, 0.1])
+    assert grid.z[list(grid.joints)] == pytest.approx([0.0, 0.1])  # the scheme along z knows of no outlet
     first, last = grid.dz[grid.section == 0], grid.dz[grid.section == 1]
     assert np.argmin(first) in (0, len(first) - 1) and first[0] < 0.2 * first.max()
-    assert np.argmin(last) == 0  # nothing happens at the outlet
+    assert last[0] < 0.2 * last.max() and last[-1] < 0.2 * last.max()
+
+
+def test_an_insulated_outlet_is_not_graded_to():
+    f = jacketed(stream='direction = "-z"')
+    assert [p.kind for p in f.places] == ["inlet", "joint"]
+    bare = f.grid().dz[f.grid().section == 0]
+    assert np.argmax(bare) == 0 and np.argmin(bare) == len(bare) - 1
 
 
 def test_an_inlet_at_the_far_end_is_graded_there():

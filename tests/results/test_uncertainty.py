@@ -10,7 +10,7 @@ import pytest
 
 from axicfd.results import uncertainty
 from axicfd.results.uncertainty import (
-    Nested,
+    LeastWidths,
     curve_half_widths,
     estimate,
     estimate_tree,
@@ -232,8 +232,8 @@ def leaves(temperature: float, place: float, entry: float | None) -> dict:
     }
 
 
-def nested_at(faces, curves=None, undone=0.0) -> Nested:
-    return Nested(np.array(faces), curves or {}, {"K": 40.0, "W": 5.0, "Pa": 7.0}, undone)
+def least_at(faces, curves=None, residual=0.0) -> LeastWidths:
+    return LeastWidths(np.array(faces), curves or {}, {"K": 40.0, "W": 5.0, "Pa": 7.0}, residual)
 
 
 FACES = [0.0, 0.3, 0.3225, 0.32575, 1.0]  # the place of `walked` lies in a cell of 3.25 mm
@@ -242,7 +242,7 @@ FACES = [0.0, 0.3, 0.3225, 0.32575, 1.0]  # the place of `walked` lies in a cell
 @pytest.fixture
 def walked():
     trees = [leaves(300.16, 0.30, None), leaves(300.04, 0.32, 0.5), leaves(300.01, 0.325, None)]
-    return estimate_tree(trees, nested_at(FACES))
+    return estimate_tree(trees, least_at(FACES))
 
 
 def test_numbers_of_a_tree_are_extrapolated_in_place(walked):
@@ -273,7 +273,7 @@ def test_places_are_known_to_a_cell_or_to_their_last_move(walked):
     assert widths["stream"]["oil"]["hottest_wetted_wall_z_m"] == pytest.approx(0.005)
     assert how["stream"]["oil"]["hottest_wetted_wall_z_m"] == {"observed_order": None, "rule": uncertainty.SPACING}
     still = [leaves(300.0, 0.325, None)] * 3
-    _, widths, _ = estimate_tree(still, nested_at(FACES))
+    _, widths, _ = estimate_tree(still, least_at(FACES))
     assert widths["stream"]["oil"]["hottest_wetted_wall_z_m"] == pytest.approx(0.00325)
 
 
@@ -281,8 +281,8 @@ def flat(extreme: float, place: float) -> dict:
     return {"layer": {"wall": {"hottest_K": extreme, "hottest_z_m": place}}}
 
 
-def known_to(trees: list[dict], curve: np.ndarray, z: np.ndarray, undone: float = 0.0) -> float:
-    _, widths, _ = estimate_tree(trees, nested_at(z, {"layer.wall.hottest_z_m": (z, curve)}, undone))
+def known_to(trees: list[dict], curve: np.ndarray, z: np.ndarray, residual: float = 0.0) -> float:
+    _, widths, _ = estimate_tree(trees, least_at(z, {"layer.wall.hottest_z_m": (z, curve)}, residual))
     return widths["layer"]["wall"]["hottest_z_m"]
 
 
@@ -302,7 +302,7 @@ def test_a_curve_flat_to_what_the_iteration_leaves_undone():
     curve = np.where((z > 0.195) & (z < 0.805), 40.0, 20.0)
     curve[30] += 1e-8
     assert known_to([flat(333.15, 0.3)] * 3, curve, z) == pytest.approx(0.01)
-    assert known_to([flat(333.15, 0.3)] * 3, curve, z, undone=5e-8) == pytest.approx(0.5)
+    assert known_to([flat(333.15, 0.3)] * 3, curve, z, residual=1e-8) == pytest.approx(0.5)
 
 
 def test_two_tops_alike_are_both_in_the_bar():
@@ -313,10 +313,17 @@ def test_two_tops_alike_are_both_in_the_bar():
 
 
 def test_no_bar_is_below_what_the_iteration_leaves_undone():
-    """The floor is a share of the scale by the unit; what does not depend on the mesh keeps its zero."""
-    trees = [{"stream": {"oil": {"heat_gain_W": w, "reynolds": 100.0}}} for w in (2.0 + 1.6e-7, 2.0 + 4e-8, 2.0 + 1e-8)]
-    _, widths, _ = estimate_tree(trees, nested_at([0.0, 1.0], undone=5e-8))
-    assert widths["stream"]["oil"] == {"heat_gain_W": pytest.approx(5e-8 * 5.0), "reynolds": 0.0}
+    """The floor is a share of the scale by the unit, or of the value; what no mesh changes keeps its zero."""
+    trees = [
+        {"stream": {"oil": {"heat_gain_W": w, "largest_reynolds": 50 * w, "reynolds": 1.0}}}
+        for w in (2.0 + 1.6e-7, 2.0 + 4e-8, 2.0 + 1e-8)
+    ]
+    _, widths, _ = estimate_tree(trees, least_at([0.0, 1.0], residual=1e-8))
+    assert widths["stream"]["oil"] == {
+        "heat_gain_W": pytest.approx(5e-8 * 5.0),
+        "largest_reynolds": pytest.approx(3e-6 * 100.0),
+        "reynolds": 0.0,
+    }
     z = nested()
     columns = [1.0 + 1e-9 * 0.25**k + np.zeros_like(x) for k, x in enumerate(z)]
     assert curve_half_widths(z, columns, 1e-6) == pytest.approx(1e-6, rel=1e-3)

@@ -18,7 +18,7 @@ from axicfd.case.model import Case
 from axicfd.mesh.build import LEVELS, family
 from axicfd.pipeline import NESTED, START_BELOW
 from axicfd.results import axial, summary, uncertainty
-from axicfd.results.result import WITH_BARS, nested_mesh
+from axicfd.results.result import WITH_BARS, least_widths
 from axicfd.solver.solve import solve_on
 
 MORE = 2  # halvings beyond the mesh that is judged
@@ -62,7 +62,7 @@ class Climb:
     cells: int
     judged: list[dict[str, Any]]
     finer: list[dict[str, Any]]
-    nested: uncertainty.Nested  # of the case's mesh
+    least: uncertainty.LeastWidths  # of the case's mesh
     seconds: float
 
 
@@ -96,9 +96,9 @@ def climb(case: Case, more: int = 0) -> Climb:
         views = axial.stream_views(case, solution)
         trees.append(summary.summary(case, place, solution, views))
         if level == 0:
-            nested = nested_mesh(case, trees[-1], solution, views)
+            least = least_widths(case, trees[-1], solution, views)
     judged, finer = trees[:NESTED], trees[NESTED:]
-    return Climb(meshes.cells, judged, finer, nested, time.perf_counter() - begun)
+    return Climb(meshes.cells, judged, finer, least, time.perf_counter() - begun)
 
 
 def leaves(tree: dict[str, Any], path: str = "") -> Iterator[tuple[str, float]]:
@@ -135,9 +135,9 @@ def limit(values: list[float]) -> tuple[float, float]:
 
 def triples(group: str, name: str, mesh: int, found: Climb, limits: dict[str, tuple[float, float]]) -> list[Triple]:
     """Every quantity of a climb that has a known limit and a value on all of its meshes."""
-    of, flat = found.nested.scales, [dict(leaves(tree)) for tree in found.judged]
+    of, flat = found.least.scales, [dict(leaves(tree)) for tree in found.judged]
     _, widths, _ = uncertainty.estimate_tree(
-        [{key: tree[key] for key in WITH_BARS} for tree in found.judged], found.nested
+        [{key: tree[key] for key in WITH_BARS} for tree in found.judged], found.least
     )
     bars = dict(leaves(widths))
     rows = []
