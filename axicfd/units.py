@@ -150,7 +150,13 @@ def _with_example(kind: str) -> str:
 def _registry() -> Any:
     import pint
 
-    return pint.UnitRegistry()
+    from axicfd import cache
+
+    try:
+        # reading the table of units takes longer than all else that is done with it
+        return pint.UnitRegistry(cache_folder=cache.folder(f"units-{pint.__version__}"))
+    except Exception:  # a damaged cache raises whatever it happens to raise
+        return pint.UnitRegistry()
 
 
 def _checked(unit: str) -> str | None:

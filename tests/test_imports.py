@@ -23,7 +23,7 @@ ORDER = (
     ("theory", "materials", "kernels"),
     ("glossary",),
     ("units",),
-    ("errors", "version"),
+    ("errors", "version", "cache"),
 )
 RANK = {name: rank for rank, names in enumerate(ORDER) for name in names}
 HEAVY = ("numpy", "scipy", "numba", "matplotlib", "pyvista", "pint", "pydantic")

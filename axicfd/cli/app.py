@@ -32,6 +32,8 @@ fields and curves, from a case file in TOML."""
 def main(argv: Sequence[str] | None = None) -> int:
     """Run the command line; returns the exit status. No traceback reaches a user."""
     words = list(sys.argv[1:] if argv is None else argv)
+    # matrices are small here, and threads of the linear algebra that wait for a busy core cost seconds
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
     for stream in (sys.stdout, sys.stderr):
         if hasattr(stream, "reconfigure"):
             stream.reconfigure(errors="replace")  # a terminal of few characters gets "?" rather than a crash

@@ -12,17 +12,14 @@ an edit anywhere starts an empty one, and kernels may call each other across fil
 """
 
 import hashlib
-import os
-import shutil
 import sys
-import tempfile
-import time
 from pathlib import Path
 
 import numba
 
+from axicfd import cache
+
 OPTIONS = {"error_model": "numpy"}
-KEEP_DAYS = 60  # caches of other versions that nobody used for so long are removed
 
 
 def _fingerprint() -> str:
@@ -34,40 +31,27 @@ def _fingerprint() -> str:
     return digest.hexdigest()[:16]
 
 
-def _user_cache() -> Path:
-    """Where this kind of machine keeps caches; NUMBA_CACHE_DIR, if the user set it, comes first."""
-    if os.environ.get("NUMBA_CACHE_DIR"):
-        return Path(os.environ["NUMBA_CACHE_DIR"])
-    if sys.platform == "win32":
-        return Path(os.environ.get("LOCALAPPDATA", Path.home() / "AppData" / "Local"))
-    if sys.platform == "darwin":
-        return Path.home() / "Library" / "Caches"
-    return Path(os.environ.get("XDG_CACHE_HOME") or Path.home() / ".cache")
-
-
-def _cache_folder() -> Path | None:
-    """A writable folder for this version of the kernels, or None where there is none."""
-    try:
-        folder = _user_cache() / "axicfd" / _fingerprint()
-        folder.mkdir(parents=True, exist_ok=True)
-        with tempfile.TemporaryFile(dir=folder):
-            pass
-        os.utime(folder)
-        _remove_unused(folder)
-        return folder
-    except (OSError, RuntimeError):  # RuntimeError: no home folder
-        return None
-
-
-def _remove_unused(current: Path) -> None:
-    for other in current.parent.iterdir():
-        if other != current and time.time() - other.stat().st_mtime > KEEP_DAYS * 86400:
-            shutil.rmtree(other, ignore_errors=True)
-
-
-CACHE_FOLDER = _cache_folder()
+CACHE_FOLDER = cache.folder(_fingerprint())
 if CACHE_FOLDER is not None:
     setattr(numba.config, "CACHE_DIR", str(CACHE_FOLDER))  # noqa: B010  not among its typed names
+
+
+def _start_quickly() -> None:
+    """Let the compiler load what it needs without importing the linear algebra of scipy, of which it only wants to know
+    whether it is there: 0.15 s at every start, and no kernel uses it.
+    """
+    wanted = "scipy.linalg.cython_blas"
+    if wanted in sys.modules or "numba.np.arraymath" in sys.modules:
+        return
+    sys.modules[wanted] = None  # type: ignore[assignment]  # an import of it now fails at once
+    try:
+        from numba.np import arraymath
+    finally:
+        del sys.modules[wanted]
+    arraymath._HAVE_BLAS = True  # scipy is always installed with this package; kernels of others may use it
+
+
+_start_quickly()
 
 
 def kernel(function):

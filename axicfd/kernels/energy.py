@@ -10,8 +10,6 @@ Convected face temperatures: along z Fromm's scheme (half central, half linear u
 inlets, where Fromm would undershoot; along r central. No scheme of first order is used in the interior.
 """
 
-import numpy as np
-
 from axicfd.kernels._jit import kernel
 
 
@@ -136,46 +134,54 @@ def balance(hz, hr, qz, qr, gain, r):
 
 
 @kernel
-def stencil(gz, gr, wz, wr, c, g, loss, empty, rows, cols, vals):
-    """Entries of the derivative of (net outflow - gain) by T, as a list of triplets; returns their number.
+def stencil(gz, gr, wz, wr, c, g, loss, empty, links):
+    """Derivative of (net outflow - gain) by T, links (7, nz, nr): by the own cell, and by those at i - 2, i - 1, i + 1,
+    i + 2, j - 1, j + 1.
 
     wz, wr : m cp at faces [W/K], (nz + 1, nr) and (nz, nr + 1)
     loss   : (nz, nr) [W/K] conductance to the outside and the end conditions
     empty  : (nz, nr) cells without an equation, which keep T = 0
-    rows, cols, vals : at least 7 nz nr long, written
     """
     nz, nr = loss.shape
-    a = np.zeros(7)
-    shift = np.array([-2 * nr, -nr, 0, nr, 2 * nr, -1, 1])
-    n = 0
     for i in range(nz):
         for j in range(nr):
-            here = i * nr + j
             if empty[i, j]:
-                rows[n] = here
-                cols[n] = here
-                vals[n] = 1.0
-                n += 1
+                for k in range(7):
+                    links[k, i, j] = 0.0
+                links[0, i, j] = 1.0
                 continue
-            a[:] = 0.0
-            a[1] -= gz[i, j]
-            a[3] -= gz[i + 1, j]
-            a[5] -= gr[i, j]
-            a[6] -= gr[i, j + 1]
-            a[2] += gz[i, j] + gz[i + 1, j] + gr[i, j] + gr[i, j + 1] + loss[i, j]
-            for k in range(4):
-                a[k] -= wz[i, j] * c[i, j, k]
-                a[k + 1] += wz[i + 1, j] * c[i + 1, j, k]
+            west, east = wz[i, j], wz[i + 1, j]
+            own = gz[i, j] + gz[i + 1, j] + gr[i, j] + gr[i, j + 1] + loss[i, j]
+            own += east * c[i + 1, j, 1] - west * c[i, j, 2]
+            inner, outer = -gr[i, j], -gr[i, j + 1]
             if j > 0:
-                a[5] -= wr[i, j] * (1.0 - g[j])
-                a[2] -= wr[i, j] * g[j]
+                inner -= wr[i, j] * (1.0 - g[j])
+                own -= wr[i, j] * g[j]
             if j < nr - 1:
-                a[2] += wr[i, j + 1] * (1.0 - g[j + 1])
-                a[6] += wr[i, j + 1] * g[j + 1]
-            for k in range(7):
-                if a[k] != 0.0 and (k > 4 or 0 <= i + k - 2 < nz):
-                    rows[n] = here
-                    cols[n] = here + shift[k]
-                    vals[n] = a[k]
-                    n += 1
-    return n
+                own += wr[i, j + 1] * (1.0 - g[j + 1])
+                outer += wr[i, j + 1] * g[j + 1]
+            links[0, i, j] = own
+            # weights of cells outside the grid belong to what enters, which is given
+            links[1, i, j] = -west * c[i, j, 0] if i > 1 else 0.0
+            links[2, i, j] = east * c[i + 1, j, 0] - west * c[i, j, 1] - gz[i, j] if i > 0 else 0.0
+            links[3, i, j] = east * c[i + 1, j, 2] - west * c[i, j, 3] - gz[i + 1, j] if i < nz - 1 else 0.0
+            links[4, i, j] = east * c[i + 1, j, 3] if i < nz - 2 else 0.0
+            links[5, i, j] = inner
+            links[6, i, j] = outer
+
+
+@kernel
+def apply(links, x, y):
+    """y = A x with the links of `stencil`; x, y (nz, nr)."""
+    nz, nr = x.shape
+    for i in range(nz):
+        for j in range(nr):
+            y[i, j] = links[0, i, j] * x[i, j]
+        for j in range(1, nr):
+            y[i, j] += links[5, i, j] * x[i, j - 1]
+        for j in range(nr - 1):
+            y[i, j] += links[6, i, j] * x[i, j + 1]
+        for k, a in ((1, i - 2), (2, i - 1), (3, i + 1), (4, i + 2)):
+            if 0 <= a < nz:
+                for j in range(nr):
+                    y[i, j] += links[k, i, j] * x[a, j]

@@ -106,3 +106,52 @@ def remainder(w, e, s, n, d, b, x, r):
             if j < nr - 1:
                 q += n[i, j] * x[i, j + 1]
             r[i, j] = q
+
+
+@kernel
+def eliminate(w, e, s, n, d, band):
+    """The LU factors of the system on a small grid, without exchange of rows: band (nz nr, 2 nr + 1), diagonal in the
+    middle.
+
+    Returns whether every pivot is a number other than zero. Diagonals outweigh rows, so pivots do not get small.
+    """
+    nz, nr = d.shape
+    for i in range(nz):
+        for j in range(nr):
+            row = band[i * nr + j]
+            for k in range(2 * nr + 1):
+                row[k] = 0.0
+            row[nr] = d[i, j]
+            # one ring: both neighbours along r are outside, and a station apart is one column
+            row[nr - 1] -= s[i, j]
+            row[nr + 1] -= n[i, j]
+            row[0] -= w[i, j]
+            row[2 * nr] -= e[i, j]
+    sound = True
+    for p in range(nz * nr):
+        pivot = band[p, nr]
+        sound = sound and pivot != 0.0 and np.isfinite(pivot)
+        for q in range(p + 1, min(p + nr + 1, nz * nr)):
+            f = band[q, p - q + nr]
+            if f != 0.0:
+                f /= pivot
+                band[q, p - q + nr] = f
+                for k in range(1, nr + 1):
+                    band[q, p - q + nr + k] -= f * band[p, nr + k]
+    return sound
+
+
+@kernel
+def substitute(band, b, x):
+    """x (nz, nr) of the system whose factors `eliminate` left in `band`."""
+    nz, nr = b.shape
+    for p in range(nz * nr):
+        t = b[p // nr, p % nr]
+        for k in range(max(nr - p, 0), nr):
+            t -= band[p, k] * x[(p + k - nr) // nr, (p + k - nr) % nr]
+        x[p // nr, p % nr] = t
+    for p in range(nz * nr - 1, -1, -1):
+        t = x[p // nr, p % nr]
+        for k in range(1, min(nr + 1, nz * nr - p)):
+            t -= band[p, nr + k] * x[(p + k) // nr, (p + k) % nr]
+        x[p // nr, p % nr] = t / band[p, nr]

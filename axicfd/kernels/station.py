@@ -177,15 +177,26 @@ def smooth(m, mu, rho, u, v, p, mz, mr, fu, fv, fc, su, sv, old_u, old_v, old_p,
     fu, fv [N], fc [kg/s] : given sources        old_u, old_v, old_p : work space of the shapes of u, v, p
     """
     for _ in range(times):
-        old_u[:, :] = u
-        old_v[:, :] = v
-        old_p[:, :] = p
+        keep(u, old_u)
+        keep(v, old_v)
+        keep(p, old_p)
         explicit_terms(m, mu, u, v, mz, mr, fu, fv, su, sv)
         sweep(m, mu, rho, u, v, p, mz, mr, su, sv, fc)
         damp(u, old_u, share)
         damp(v, old_v, share)
         damp(p, old_p, share)
         mass_fluxes(m, rho, u, v, mz, mr)
+
+
+@kernel
+def keep(field, old):
+    """Copy a field to `old`, both (n, m).
+
+    One array assigned to another as a whole takes four seconds to compile: it may fail, with a formatted message.
+    """
+    for i in range(field.shape[0]):
+        for j in range(field.shape[1]):
+            old[i, j] = field[i, j]
 
 
 @kernel

@@ -12,10 +12,10 @@ from math import acosh, asinh, sqrt
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.optimize import brentq
 
 # Beyond this ratio round-off of the map would show in the smallest cells.
 LARGEST_STRETCH = 1e8
+PRECISION = 1e-7  # of the logarithm of a stretch
 
 
 @dataclass(frozen=True)
@@ -69,7 +69,11 @@ def stretch_for_end_cell(cells: int, length: float, end_cell: float, at_start: b
     high = float(np.log(LARGEST_STRETCH))
     if excess(high) > 0.0:
         return LARGEST_STRETCH
-    return float(np.exp(brentq(excess, 1e-9, high, xtol=1e-6)))
+    low = 0.0
+    while high - low > PRECISION:  # by halves: it happens once per line, and a root finder takes long to import
+        middle = 0.5 * (low + high)
+        low, high = (middle, high) if excess(middle) > 0.0 else (low, middle)
+    return float(np.exp(0.5 * (low + high)))
 
 
 def length_weight(length: float, scale: float, graded_ends: int) -> float:

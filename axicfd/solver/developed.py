@@ -5,7 +5,6 @@ order of the mesh error), and the values that entry lengths are measured against
 """
 
 import numpy as np
-from scipy.linalg import eigh, solve_banded
 
 from axicfd.kernels.momentum import FlowMesh
 from axicfd.mesh.grid import Array
@@ -67,12 +66,13 @@ def nusselt_third_kind(mesh: FlowMesh, u: Array, biot: float, peclet: float) -> 
     matrix = np.diag(link[:-1] + link[1:]) - np.diag(link[1:-1], 1) - np.diag(link[1:-1], -1)
     g = 0.0
     for _ in range(200):
-        values, vectors = eigh(matrix, np.diag(flow + g * mesh.area), subset_by_index=[0, 0])
+        scale = 1.0 / np.sqrt(flow + g * mesh.area)
+        values, vectors = np.linalg.eigh(matrix * np.outer(scale, scale))
         done = abs(values[0] - g) < SETTLED * values[0]
         g = 0.5 * (g + values[0]) if g else values[0]
         if done:
             break
-    t = vectors[:, 0]
+    t = scale * vectors[:, 0]
     bulk = (t * flow).sum() / flow.sum()
     out = t[-1] * link[-1]
     wall = t[-1] - out * half
@@ -82,8 +82,10 @@ def nusselt_third_kind(mesh: FlowMesh, u: Array, biot: float, peclet: float) -> 
 def _solve(link: Array, source: Array) -> Array:
     """Tridiagonal conduction between cells with links to zero at both ends."""
     n = len(source)
-    bands = np.zeros((3, n))
-    bands[1] = link[:-1] + link[1:]
-    bands[0, 1:] = -link[1:-1]
-    bands[2, :-1] = -link[1:-1]
-    return solve_banded((1, 1), bands, source)
+    # the flow that passes each face but for what passes the innermost one, and the fall from it to the outside
+    passed = np.concatenate([[0.0], np.cumsum(source)])
+    resistance = np.zeros(n + 1)
+    np.divide(1.0, link, out=resistance, where=link > 0.0)
+    total = resistance.sum()
+    inner = (passed * resistance).sum() / total if link[0] > 0.0 else 0.0
+    return np.cumsum(((passed - inner) * resistance)[:0:-1])[::-1]

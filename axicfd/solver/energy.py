@@ -6,9 +6,9 @@ The unknown is the temperature of every cell measured from the inlet temperature
 the round-off of absolute temperatures).
 """
 
+from typing import Any
+
 import numpy as np
-from scipy.sparse import coo_matrix, csr_matrix
-from scipy.sparse.linalg import SuperLU, splu
 
 from axicfd.case.model import Case
 from axicfd.kernels import energy as kernel
@@ -63,7 +63,7 @@ class Energy:
         self.q_outside, self.q_first, self.q_last = np.zeros(nz), np.zeros(nr), np.zeros(nr)
         self._r = np.zeros(grid.shape)
         self.cycle: HeatCycle | None = HeatCycle(case, grid, t_in)
-        self._lu: SuperLU | None = None
+        self._lu: Any = None  # factors of the sparse LU, once it was needed
         self._stale = True
 
     def set_flow(self, mz: Array, mr: Array) -> None:
@@ -163,7 +163,7 @@ class Energy:
         change = self.cycle.solve(self._r, drop) if self.cycle is not None else None
         if change is None:
             self.cycle = None
-            self._lu = self._lu or _factorised(self._matrix)
+            self._lu = self._lu or factorised(self._links)
             change = self._lu.solve(self._r.ravel()).reshape(self.grid.shape)
         return change
 
@@ -171,18 +171,24 @@ class Energy:
         """The derivative of the residual, exact but for what properties change."""
         grid, c = self.grid, self._conduction
         wz, wr = self.mz * self._cp(self.tz), self.mr * self._cp(self.tr)
-        size = 7 * grid.cells
-        rows, cols, vals = np.empty(size, np.int32), np.empty(size, np.int32), np.empty(size)
-        n = kernel.stencil(c.gz, c.gr, wz, wr, self._weights, self._g, self._loss, self._empty, rows, cols, vals)
-        self._matrix = coo_matrix((vals[:n], (rows[:n], cols[:n])), shape=(grid.cells, grid.cells)).tocsr()
+        self._links = np.empty((7, *grid.shape))
+        kernel.stencil(c.gz, c.gr, wz, wr, self._weights, self._g, self._loss, self._empty, self._links)
         self._lu, self._stale = None, False
         if self.cycle is not None:
             try:
-                self.cycle.refresh(self.t, c, self._loss, wz, wr, self._matrix)
+                self.cycle.refresh(self.t, c, self._loss, wz, wr, self._links)
             except RuntimeError:  # its coarsest mesh is singular
                 self.cycle = None
 
 
-def _factorised(matrix: csr_matrix) -> SuperLU:
-    """Sparse LU with an ordering for nearly symmetric patterns."""
-    return splu(matrix.tocsc(), permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.1, options={"SymmetricMode": True})
+def factorised(links: Array) -> Any:
+    """Sparse LU of the system of `kernels.energy.stencil`, with an ordering for nearly symmetric patterns."""
+    from scipy.sparse import coo_matrix
+    from scipy.sparse.linalg import splu
+
+    _, nz, nr = links.shape
+    k, i, j = np.nonzero(links)
+    index = i * nr + j
+    shift = np.array([0, -2 * nr, -nr, nr, 2 * nr, -1, 1])[k]
+    matrix = coo_matrix((links[k, i, j], (index, index + shift)), shape=(nz * nr, nz * nr)).tocsc()
+    return splu(matrix, permc_spec="MMD_AT_PLUS_A", diag_pivot_thresh=0.1, options={"SymmetricMode": True})

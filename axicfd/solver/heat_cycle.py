@@ -14,11 +14,9 @@ from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.sparse import coo_matrix, csr_matrix
-from scipy.sparse.linalg import SuperLU, splu
 
 from axicfd.case.model import Case
-from axicfd.kernels import heat_lines, krylov, transfer
+from axicfd.kernels import energy, heat_lines, krylov, transfer
 from axicfd.mesh.build import coarser
 from axicfd.mesh.grid import NOTHING, Array, Grid
 from axicfd.solver import boundary
@@ -68,16 +66,17 @@ class HeatCycle:
             )
             self.levels.append(level)
             grid = coarse
-        self._matrix: Any = None
-        self._coarsest: SuperLU | None = None
+        self._links: Any = None
+        self._coarsest = np.zeros((grid.cells, 2 * grid.nr + 1))  # its LU factors
         self.steps = 0  # GMRES steps of the last solve
 
-    def refresh(self, t: Array, c: Conduction, loss: Array, wz: Array, wr: Array, matrix: csr_matrix) -> None:
+    def refresh(self, t: Array, c: Conduction, loss: Array, wz: Array, wr: Array, links: Array) -> None:
         """Take the state of the finest mesh.
 
-        t (nz, nr) temperatures; c, loss its conductances; wz, wr : m cp through faces [W/K]; matrix : the true system
+        t (nz, nr) temperatures; c, loss its conductances; wz, wr : m cp through faces [W/K]; links : the true system,
+        of `kernels.energy.stencil`. Raises `RuntimeError` where the coarsest mesh is singular.
         """
-        self._matrix = matrix
+        self._links = links
         gz, gr = c.gz, c.gr
         for k, level in enumerate(self.levels):
             if k > 0:
@@ -100,48 +99,65 @@ class HeatCycle:
             )
             level.pivots = np.empty(shape), np.empty(shape)
             heat_lines.factors(*level.links, *level.pivots)
-        self._coarsest = splu(_five_point(self.levels[-1].links))
+        if not heat_lines.eliminate(*self.levels[-1].links, self._coarsest):
+            raise RuntimeError("singular heat system on the coarsest mesh")
 
     def solve(self, residual: Array, drop: float = DROP) -> Array | None:
         """The correction (nz, nr) that leaves `drop` of the residual's norm; None if the cycle does not get there."""
         shape = residual.shape
-        x: Any = np.zeros(residual.size)
-        r: Any = residual.ravel().copy()
+        x: Any = np.zeros(shape)
+        r: Any = residual.copy()
         start = krylov.norm(r)
         self.steps = 0
         for _ in range(RESTARTS):
             if start == 0.0 or krylov.norm(r) <= drop * start:
                 break
-            x = x + self._gmres(r, drop * start, shape)
-            r = residual.ravel() - self._matrix @ x
+            x = x + self._gmres(r, drop * start)
+            r = residual - self._times(self._links, x)
         # less than the round-off of A x cannot be asked for: a tube that loses its heat only by a trickle gets very hot
-        floor = ROUND_OFF * krylov.norm(abs(self._matrix) @ np.abs(x))
-        return x.reshape(shape) if krylov.norm(r) <= max(2.0 * drop * start, floor) else None
+        left = krylov.norm(r)
+        if left <= 2.0 * drop * start or left <= ROUND_OFF * krylov.norm(self._times(np.abs(self._links), np.abs(x))):
+            return x
+        return None
 
-    def _gmres(self, r: Array, goal: float, shape: tuple[int, int]) -> Array:
+    @staticmethod
+    def _times(links: Array, x: Array) -> Array:
+        y = np.empty_like(x)
+        energy.apply(links, x, y)
+        return y
+
+    def _gmres(self, r: Array, goal: float) -> Array:
         """One run of right-preconditioned GMRES from zero, until its residual norm is below the goal."""
         size = krylov.norm(r)
-        basis = np.empty((STEPS + 1, len(r)))
-        basis[0] = r / size
-        columns, turns, g = np.zeros((STEPS, STEPS + 1)), np.zeros((STEPS, 2)), np.zeros(STEPS + 1)
-        g[0] = size
-        k = 0
-        for k in range(1, STEPS + 1):
-            w = self._matrix @ self._visit(0, basis[k - 1].reshape(shape)).ravel()
-            krylov.orthogonalise(basis, k - 1, w, columns[k - 1])
+        basis = [r / size]
+        columns: list[list[float]] = []
+        turns: list[tuple[float, float]] = []
+        g = [size]
+        while len(columns) < STEPS:
+            w = self._times(self._links, self._visit(0, basis[-1]))
+            column = [krylov.take_out(v, w) for v in basis]
+            column.append(krylov.norm(w))
+            if column[-1] > 0.0:
+                w /= column[-1]
+            basis.append(w)
             self.steps += 1
-            if not krylov.rotate(columns[k - 1], turns, k - 1, g) > goal:
+            columns.append(column)
+            if not krylov.rotate(column, turns, g) > goal:
                 break
-        y = np.linalg.lstsq(columns[:k, :k].T, g[:k], rcond=None)[0]
-        u = np.empty_like(r)
-        krylov.combine(basis, y, k, u)
-        return self._visit(0, u.reshape(shape)).ravel()
+        triangle = np.zeros((len(columns), len(columns)))
+        for k, column in enumerate(columns):
+            triangle[: k + 1, k] = column[: k + 1]
+        u = np.zeros_like(r)
+        for factor, v in zip(np.linalg.lstsq(triangle, g[:-1], rcond=None)[0], basis[:-1], strict=True):
+            krylov.add(factor, v, u)
+        return self._visit(0, u)
 
     def _visit(self, k: int, b: Array) -> Array:
         level = self.levels[k]
         if k == len(self.levels) - 1:
-            assert self._coarsest is not None
-            return self._coarsest.solve(b.ravel()).reshape(b.shape)
+            x = np.empty_like(b)
+            heat_lines.substitute(self._coarsest, b, x)
+            return x
         x = np.zeros_like(b)
         heat_lines.r_sweep(*level.links, *level.pivots, b, x, True)
         heat_lines.z_sweep(*level.links, *level.pivots, b, x)
@@ -194,18 +210,3 @@ def _means(values: Array, level: _Level) -> Array:
     """Means over the fine cells of each coarse cell."""
     counts = np.diff(np.append(level.rows, len(values)))[:, None] * np.diff(np.append(level.columns, values.shape[1]))
     return _sums(values, level) / counts
-
-
-def _five_point(links: tuple[Array, ...]) -> csr_matrix:
-    """The five-point system as a sparse matrix by columns."""
-    w, e, s, n, d = links
-    index = np.arange(d.size).reshape(d.shape)
-    entries = (
-        (index, index, d),
-        (index[1:], index[:-1], -w[1:]),
-        (index[:-1], index[1:], -e[:-1]),
-        (index[:, 1:], index[:, :-1], -s[:, 1:]),
-        (index[:, :-1], index[:, 1:], -n[:, :-1]),
-    )
-    rows, columns, values = (np.concatenate([entry[k].ravel() for entry in entries]) for k in range(3))
-    return coo_matrix((values, (rows, columns)), shape=(d.size, d.size)).tocsc()

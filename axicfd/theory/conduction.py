@@ -13,7 +13,6 @@ from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike
-from scipy.special import i0, i1, k0, k1
 
 # ----- resistances
 
@@ -235,6 +234,8 @@ def wavy_cylinder_temperature(
     Insulated inner face and ends; outer film of outer_biot = h r_outer / k, inf for a given temperature;
     waves = 1, 2, ... half waves along the length. Source: separation of variables, exact.
     """
+    from scipy.special import i0, i1, k0, k1
+
     kappa = waves * math.pi / length
     slope_ratio = i1(kappa * r_inner) / k1(kappa * r_inner)
 

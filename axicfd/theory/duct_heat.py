@@ -23,7 +23,6 @@ from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
-from scipy.linalg import eig, eigh
 
 Array = NDArray[np.float64]
 
@@ -97,7 +96,11 @@ def modes(biot: float) -> Modes:
     # its largest and so the most precise
     raised = stiffness + mass
     scale = 1.0 / np.sqrt(np.diag(raised))
-    inverse, vectors = eigh(mass * np.outer(scale, scale), raised * np.outer(scale, scale))
+    # mass x = inverse raised x by Cholesky's factors, without a library that takes long to import
+    lower = np.linalg.cholesky(raised * np.outer(scale, scale))
+    half = np.linalg.solve(lower, mass * np.outer(scale, scale))
+    inverse, vectors = np.linalg.eigh(np.linalg.solve(lower, half.T))
+    vectors = np.linalg.solve(lower.T, vectors)
     lambda_squared = 1.0 / inverse[::-1][:TERMS] - 1.0
     shape = to_basis @ (scale[:, None] * vectors[:, ::-1][:, :TERMS])
     shape /= np.sqrt(np.einsum("in,ij,jn->n", shape, (P.T * ((1.0 - s) * w)) @ P, shape))
@@ -287,6 +290,8 @@ def developed_nusselt_T_with_axial_conduction(peclet: float) -> tuple[float, flo
     Nu rises from 3.6568 (Pe = inf) to 4.1807 (Pe = 0). For H it is 48/11 at every Pe. Computed here: the
     radial problem 4 (s R')' + (m2 + Pe m (1 - s)) R = 0 is quadratic in m; the smallest positive m counts.
     """
+    from scipy.linalg import eig
+
     count = 40
     P, dP, s, w = _legendre(count)
     basis = np.eye(count, count - 1) - np.eye(count, count - 1, -1)
