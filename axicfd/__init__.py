@@ -22,10 +22,12 @@ if TYPE_CHECKING:
     from axicfd.errors import AxicfdError
     from axicfd.pipeline import solve
     from axicfd.results.result import Result
+    from axicfd.variants.matters import what_matters
+    from axicfd.variants.wall import wall_effect
 
 __version__ = VERSION
 
-__all__ = ["AxicfdError", "Case", "Result", "load", "solve"]
+__all__ = ["AxicfdError", "Case", "Result", "load", "solve", "wall_effect", "what_matters"]
 
 # Public name -> the module that holds it. No module at the top of the package bears one of these names:
 # importing it would put the module where the function should be.
@@ -35,6 +37,8 @@ _HOMES = {
     "Result": "axicfd.results.result",
     "load": "axicfd.case.read",
     "solve": "axicfd.pipeline",
+    "wall_effect": "axicfd.variants.wall",
+    "what_matters": "axicfd.variants.matters",
 }
 
 
@@ -44,18 +48,25 @@ def __getattr__(name: str) -> Any:
     if home is None:
         raise AttributeError(f"module 'axicfd' has no attribute {name!r}")
     value = getattr(import_module(home), name)
-    if name in ("Result", "solve"):
-        _show_in_notebooks()
+    if name in _SHOWN:
+        _show_in_notebooks(name)
     globals()[name] = value
     return value
 
 
-def _show_in_notebooks() -> None:
-    """Let results show themselves: results lie below output and cannot reach up to it by themselves."""
-    from axicfd.output.notebook import html
-    from axicfd.results.result import Result
+# Public name -> (module of the class it gives, class, module of the function that shows it, function).
+_SHOWN = {
+    "Result": ("axicfd.results.result", "Result", "axicfd.output.notebook", "html"),
+    "solve": ("axicfd.results.result", "Result", "axicfd.output.notebook", "html"),
+    "wall_effect": ("axicfd.variants.wall", "WallEffect", "axicfd.output.effects", "wall_html"),
+    "what_matters": ("axicfd.variants.matters", "Assumptions", "axicfd.output.effects", "assumption_html"),
+}
 
-    setattr(Result, "_repr_html_", html)  # noqa: B010
+
+def _show_in_notebooks(name: str) -> None:
+    """Let results show themselves: they lie below output and cannot reach up to it by themselves."""
+    home, shows, output, function = _SHOWN[name]
+    setattr(getattr(import_module(home), shows), "_repr_html_", getattr(import_module(output), function))  # noqa: B010
 
 
 def __dir__() -> list[str]:

@@ -658,6 +658,9 @@ class Physics(Part):
     """Switches for single effects."""
 
     viscous_heating: Annotated[bool, Switch("heat from friction, always together with the work of pressure")] = True
+    axial_conduction_in_streams: Annotated[
+        bool, Switch("heat conducted along z in the fluids; without it they carry heat along z by their flow alone")
+    ] = True
 
     not_yet = {
         "buoyancy": "free convection in a vertical tube",

@@ -85,6 +85,19 @@ class ResultQuantity:
         return summary_row(self.key)
 
     @property
+    def label(self) -> str:
+        """Words for tables and sentences: "hottest wetted wall", "hottest place of line", "sensor far"."""
+        part, name = self.keys[:2]
+        if part == "sensor":
+            return f"sensor {name}"
+        if self.key == "heat_in_W":
+            return f"heat into section {name}"
+        words = self.row.label
+        if part == "layer":
+            return f"{words} place of {name}" if self.kind == "temperature" else f"{words} of {name}"
+        return f"{words} of section {name}" if part == "section" else words
+
+    @property
     def kind(self) -> str:
         """Key of `units.KINDS`; "" for a pure number."""
         return _KIND_OF_UNIT[self.row.unit]

@@ -89,6 +89,7 @@ stations = ["100 mm", "400 mm"]     # places of radial profiles
 
 [physics]
 viscous_heating = true
+axial_conduction_in_streams = true  # heat conducted along z in the fluid, which matters at low flow
 
 [mesh]
 # at_most = 40000                   # cells in all

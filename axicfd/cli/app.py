@@ -11,18 +11,20 @@ from typing import NoReturn
 
 from axicfd import __version__
 from axicfd.cli import exits
-from axicfd.cli.commands import check, draw, keys, materials, new, solve
+from axicfd.cli.commands import check, draw, keys, materials, matters, new, solve, wall
 from axicfd.errors import AxicfdError
 
 COMMANDS = {
     "new": new,
     "check": check,
     "solve": solve,
+    "wall": wall,
+    "matters": matters,
     "draw": draw,
     "materials": materials,
     "keys": keys,
 }
-LATER = ("wall", "matters", "sweep", "find", "spread", "compare", "report", "schema")
+LATER = ("sweep", "find", "spread", "compare", "report", "schema")
 
 DESCRIPTION = """\
 Laminar flow and heat transfer in tubes and their walls: outlet temperature, pressure drop, hottest wall,

@@ -61,6 +61,35 @@ class Progress:
         return "   ".join(parts)
 
 
+class VariantProgress(Progress):
+    """Of several solves one after the other, all on one line that names the variant; for use in a `with`."""
+
+    def __call__(self, name: str, event: Any) -> None:  # type: ignore[override]
+        now = time.monotonic()
+        if self._in_place:
+            if event.done or now - self._written > REWRITE_EVERY:
+                self._out.write(f"\r\x1b[K{name}   {self.line(event)}")
+                self._out.flush()
+                self._open, self._written = True, now
+        elif event.done and event.level == event.levels:
+            self._out.write(f"{name}   {self.line(event)}\n")
+            self._out.flush()
+
+    def __enter__(self) -> VariantProgress:
+        return self
+
+    def __exit__(self, *_: Any) -> None:
+        self.close()
+
+
+def say_if_cold() -> None:
+    """Say that kernels are about to be compiled, which looks like a standstill."""
+    from axicfd.solver.warm_up import is_cold
+
+    if is_cold():
+        print("compiling the numerical kernels, once on this machine: half a minute or so", file=sys.stderr, flush=True)
+
+
 def grouped(count: int) -> str:
     """40960 -> "40 960"."""
     return f"{count:,}".replace(",", " ")

@@ -44,6 +44,13 @@ def rows(target: Console, header: Sequence[str], body: Iterable[Sequence[str]], 
     target.print(table)
 
 
+def sentences(target: Console, said: Iterable[str]) -> None:
+    """Verdicts, one below the other, and an empty line."""
+    for text in said:
+        target.print(Text(text, style="bold"))
+    target.print()
+
+
 def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, where: str) -> None:
     """The headline table with its mesh errors, cautions, and where the rest is.
 
@@ -130,16 +137,14 @@ def can_hurt(result: Any) -> bool:
 def _print_accuracy(out: Console, found: dict[str, Any], shown: Shown) -> None:
     """Whether the mesh errors are as small as asked, and what per cent mean."""
     scale = found["scale"]
-    span = f"{number(float(shown.difference('temperature', scale['temperature_K'])))} {_difference_unit(shown)}"
-    sizes = [f"temperature {span}", f"heat {amount(shown, 'heat', scale['heat_W'])}"]
+    span = number(float(shown.difference("temperature", scale["temperature_K"])))
+    sizes = [
+        f"temperature {span} {shown.difference_unit('temperature')}",
+        f"heat {amount(shown, 'heat', scale['heat_W'])}",
+    ]
     sizes += [f"pressure {amount(shown, 'pressure', drop)}" for drop in scale["pressure_Pa"].values()]
     out.print(Text(found["text"], style="" if found["reached"] else "bold"))
     out.print(f"Scales of per cent: {', '.join(sizes)}.")
-
-
-def _difference_unit(shown: Shown) -> str:
-    """Of a temperature difference; degC and K are alike there."""
-    return {"degC": "K", "degF": "degF"}.get(shown.unit("temperature"), shown.unit("temperature"))
 
 
 def _print_effort(out: Console, summary: dict[str, Any], where: str) -> None:

@@ -6,7 +6,7 @@ once from several threads.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -18,7 +18,7 @@ from matplotlib.figure import Figure
 from matplotlib.patches import Rectangle
 from matplotlib.ticker import FuncFormatter, MaxNLocator
 
-from axicfd.glossary import curve_row
+from axicfd.glossary import Reported, curve_row
 from axicfd.output.folder import file_name
 from axicfd.output.shown import Shown, shown_units
 
@@ -37,7 +37,7 @@ GREYS = (
 HEATED_TINT, COOLED_TINT = "#fbe9d9", "#e1ecf6"
 INK = "#222222"
 SOFT_INK = "#777777"
-CURVE_INKS = ("#22436b", "#b4552d")  # dark and light enough apart to read in grey, with line styles on top
+CURVE_INKS = ("#22436b", "#b4552d", "#6d6d6d")  # dark and light enough apart to read in grey, with line styles on top
 
 # Panels of the axial picture: title and the columns shown in it.
 PANELS = (
@@ -142,9 +142,38 @@ def temperature_picture(result: Any) -> Figure:
 
 def axial_picture(result: Any, stream: str) -> Figure:
     """Temperatures, wall flux, Nusselt number and pressure of a stream along the tube, under the tube."""
-    shown, tube, columns = shown_units(result.case), result.layout, result.axial[stream]
+    shown, columns = shown_units(result.case), result.axial[stream]
     panels = [(title, _present_columns(columns, names)) for title, names in PANELS]
     panels = [(title, names) for title, names in panels if names]
+    z = shown.value("length", np.asarray(columns["z_m"], float))
+
+    def drawn(title: str, names: list[str]) -> Callable[[Axes], None]:
+        return lambda axes: _curves(axes, z, _labelled(columns, names), curve_row(names[0]), shown, title)
+
+    return _under_the_tube(result, f"{stream}: along the tube", [drawn(*panel) for panel in panels])
+
+
+def variants_picture(results: dict[str, Any], stream: str, columns: Sequence[str], note: str) -> Figure:
+    """Columns of the curves of a stream in several variants of a case, one panel each, under the tube of the first.
+
+    results : name of a variant -> Result on the same faces along z
+    """
+    first = next(iter(results.values()))
+    shown = shown_units(first.case)
+    z = shown.value("length", np.asarray(first.axial[stream]["z_m"], float))
+
+    def drawn(column: str) -> Callable[[Axes], None]:
+        row = curve_row(column)
+        curves = {name: np.asarray(result.axial[stream][column], float) for name, result in results.items()}
+        named = column == columns[0]
+        return lambda axes: _curves(axes, z, curves, row, shown, row.label, named)
+
+    return _under_the_tube(first, note, [drawn(column) for column in columns])
+
+
+def _under_the_tube(result: Any, note: str, panels: Sequence[Callable[[Axes], None]]) -> Figure:
+    """Panels of curves under the to-scale tube, sharing its ruler; heated and cooled parts shaded through both."""
+    shown, tube = shown_units(result.case), result.layout
     stretch = _stretch(tube, share=TUBE_SHARE / 2)
     tube_height = _tube_height(tube, stretch, ruler=RULER * WIDTH)
     panel_height, gap, below, above = 1.5, 0.34, 1.0, 0.85
@@ -163,12 +192,11 @@ def axial_picture(result: Any, stream: str) -> Figure:
     _radius_ticks(tube_axes, tube, shown)
     _stream_ends(tube_axes, result, shown)
 
-    z = shown.value("length", np.asarray(columns["z_m"], float))
-    for number, (title, names) in enumerate(panels):
+    for number, draw in enumerate(panels):
         bottom -= panel_height + gap
         axes = figure.add_axes((LEFT, bottom / total, RULER, panel_height / total))
         _shade(axes, tube, shown, heat)
-        _curves(axes, z, columns, names, shown, title)
+        draw(axes)
         axes.set_xlim(*tube_axes.get_xlim())
         if number == len(panels) - 1:
             _ruler(axes, tube, shown)
@@ -177,7 +205,7 @@ def axial_picture(result: Any, stream: str) -> Figure:
             axes.spines["bottom"].set_visible(False)
     words = (("heated parts shaded", 1), ("cooled parts shaded blue", -1))
     shaded = "".join(f", {word}" for word, sign in words if sign in heat.values())
-    _heading(figure, result, f"{stream}: along the tube; tube above with radius × {stretch}{shaded}")
+    _heading(figure, result, f"{note}; tube above with radius × {stretch}{shaded}")
     return figure
 
 
@@ -588,21 +616,35 @@ def _sided_labels(name: str) -> tuple[str, str]:
     return f"inner {label}", f"outer {label}"
 
 
-def _curves(axes: Axes, z: np.ndarray, columns: dict[str, Any], names: list[str], shown: Shown, title: str) -> None:
-    row = curve_row(names[0])
-    unit = shown.unit(row.kind) if row.kind else row.unit
-    values = [shown.value(row.kind, np.asarray(columns[name], float)) for name in names]
+def _labelled(columns: dict[str, Any], names: list[str]) -> dict[str, np.ndarray]:
+    """Label -> curve in SI."""
+    curves = {curve_row(name).label: np.asarray(columns[name], float) for name in names}
     if names == ["pressure_Pa"]:  # the small drop would drown in the absolute pressure
-        values = [value - np.nanmin(value[[0, -1]]) for value in values]
+        curves = {label: curve - np.nanmin(curve[[0, -1]]) for label, curve in curves.items()}
+    return curves
+
+
+def _curves(
+    axes: Axes,
+    z: np.ndarray,
+    curves: dict[str, np.ndarray],
+    row: Reported,
+    shown: Shown,
+    title: str,
+    named: bool = True,
+) -> None:
+    """Curves of one unit in a panel; curves: label -> values in SI; named: with a legend where there are several."""
+    unit = shown.unit(row.kind) if row.kind else row.unit
+    values = [shown.value(row.kind, curve) for curve in curves.values()]
     styles = ("-", (0, (5, 2)), (0, (1, 1.2)))
-    for number, (name, value) in enumerate(zip(names, values, strict=True)):
+    for number, (label, value) in enumerate(zip(curves, values, strict=True)):
         axes.plot(
             z,
             value,
             color=CURVE_INKS[number % len(CURVE_INKS)],
             linestyle=styles[number % len(styles)],
             linewidth=1.6,
-            label=curve_row(name).label,
+            label=label,
             zorder=3,
         )
     cut = _set_reach(axes, z, values)
@@ -619,7 +661,7 @@ def _curves(axes: Axes, z: np.ndarray, columns: dict[str, Any], names: list[str]
         color=INK,
         pad=3,
     )
-    if len(names) > 1:
+    if named and len(curves) > 1:
         axes.legend(fontsize=9, frameon=False, loc="best")
 
 

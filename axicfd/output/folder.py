@@ -64,8 +64,11 @@ def half_width_name(stream: str) -> str:
     return f"axial-{file_name(stream)}.half-width.csv"
 
 
-def refuse_unusable(path: Path, replace: bool) -> None:
-    """Raise ResultsFolderError if the folder could not be written; asked before the solve and after."""
+def refuse_unusable(path: Path, replace: bool, mark: str = SUMMARY) -> None:
+    """Raise ResultsFolderError if the folder could not be written; asked before the solve and after.
+
+    mark : the file by which a folder of the same kind is known, which alone may be replaced
+    """
     if not path.exists() and not path.is_symlink():
         parent = next((above for above in path.absolute().parents if above.exists()), Path("/"))
         if not parent.is_dir() or not os.access(parent, os.W_OK):
@@ -79,10 +82,10 @@ def refuse_unusable(path: Path, replace: bool) -> None:
         raise ResultsFolderError(
             f"the folder {path} exists already. Replace it with --replace, or give another place with --out."
         )
-    if any(path.iterdir()) and not (path / SUMMARY).exists():
+    if any(path.iterdir()) and not (path / mark).exists():
         # Replacing means deleting: a folder with someone's other files must not vanish by a slip of --out.
         raise ResultsFolderError(
-            f"the folder {path} holds other files and no {SUMMARY}; only a results folder is replaced. "
+            f"the folder {path} holds other files and no {mark}; only a results folder is replaced. "
             "Give another place with --out."
         )
 
@@ -90,11 +93,8 @@ def refuse_unusable(path: Path, replace: bool) -> None:
 def write(result: Any, path: Path, replace: bool = False) -> None:
     """Write the results folder of a Result; raises ResultsFolderError where that is not possible."""
     refuse_unusable(path, replace)
-    try:
-        with _whole_or_not(path) as folder:
-            _write_files(result, folder)
-    except OSError as error:
-        raise ResultsFolderError(f"cannot write the folder {path}: {error.strerror or error}.") from error
+    with whole_or_not(path) as folder:
+        _write_files(result, folder)
 
 
 def read(path: Path) -> Stored:
@@ -176,8 +176,20 @@ def _read_fields(path: Path) -> dict[str, Any]:
 
 
 @contextmanager
-def _whole_or_not(path: Path) -> Iterator[Path]:
-    """A temporary folder that becomes `path` at the end, or vanishes when anything interrupts."""
+def whole_or_not(path: Path) -> Iterator[Path]:
+    """A temporary folder that becomes `path` at the end, or vanishes when anything interrupts.
+
+    Raises ResultsFolderError where the disk does not let it.
+    """
+    try:
+        with _temporary(path) as folder:
+            yield folder
+    except OSError as error:
+        raise ResultsFolderError(f"cannot write the folder {path}: {error.strerror or error}.") from error
+
+
+@contextmanager
+def _temporary(path: Path) -> Iterator[Path]:
     path.parent.mkdir(parents=True, exist_ok=True)
     unfinished = path.parent / f".{path.name}-unfinished-{os.getpid()}"
     old = path.parent / f".{path.name}-old-{os.getpid()}"

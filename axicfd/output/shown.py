@@ -40,6 +40,11 @@ class Shown:
         """The same for a difference or a half-width: no zero point."""
         return self.value(kind, si) - self.value(kind, 0.0) if kind else si
 
+    def difference_unit(self, kind: str) -> str:
+        """Of a difference: degC and K are alike there."""
+        unit = self.unit(kind)
+        return {"degC": "K"}.get(unit, unit)
+
 
 def shown_units(case: Any) -> Shown:
     """The units of a case: per kind the first unit the user wrote in a matching place."""

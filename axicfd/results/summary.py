@@ -246,7 +246,8 @@ def developed_nusselt(case: Case, solution: Solution, view: StreamView, section:
     elif isinstance(contact, float):
         resistance += contact / (2.0 * math.pi * outer)
     biot = 2.0 * bore / (2.0 * math.pi * bore * resistance * k) if resistance > 0.0 else math.inf
-    peclet = view.mean_velocity * view.density * cp * view.diameter / k
+    along = case.physics.axial_conduction_in_streams
+    peclet = view.mean_velocity * view.density * cp * view.diameter / k if along else math.inf
     return developed.nusselt_third_kind(mesh, u, biot, peclet)
 
 

@@ -61,7 +61,7 @@ def _surface(section: PlacedSection) -> PlacedLayer:
 def _depth_ratio(case: Case, layer: PlacedLayer, t_in: float) -> float | None:
     """Multiplier of depths with which the layer conducts alike both ways; None if it does not along z."""
     if layer.kind == "stream":
-        return 1.0
+        return 1.0 if case.physics.axial_conduction_in_streams else None
     solid = case.solid_of(layer.material)
     along, across = float(solid.conductivity_z(t_in)), float(solid.conductivity_r(t_in))
     return float(np.sqrt(along / across)) if along > 0.0 else None

@@ -65,6 +65,10 @@ class Conductors:
         self.is_constant = all(m.across.is_constant and m.along.is_constant for m in self.materials)
         self._same_r = (self._id[:, 1:] == self._id[:, :-1]) & (self._id[:, 1:] >= 0)
         self._same_z = (self._id[1:] == self._id[:-1]) & (self._id[1:] >= 0)
+        conducts = grid.kind != NOTHING
+        if not case.physics.axial_conduction_in_streams:
+            conducts &= grid.kind != STREAM
+        self._linked_z = conducts[1:] & conducts[:-1]
         self._contact = boundary.contact(grid)
         self._same_r &= self._contact[:, 1:-1] == 0.0
         self._shape_in, self._shape_out = _radial_shapes(grid)
@@ -113,8 +117,7 @@ class Conductors:
         # a wall that conducts nothing along z has k = 0: its links vanish
         with np.errstate(divide="ignore"):
             half_w, half_e = half / self._k("along", k_w), half / self._k("along", k_e)
-            linked = conducts[1:] & conducts[:-1]
-            gz[1:-1] = np.where(linked, 1.0 / (half_w[:-1] + half_e[1:]), 0.0)
+            gz[1:-1] = np.where(self._linked_z, 1.0 / (half_w[:-1] + half_e[1:]), 0.0)
         if self._edges is not None:
             gz, gr = gz * self._edges.z, gr * self._edges.r
             rows, last = np.arange(grid.nz), grid.outer - 1

@@ -39,8 +39,8 @@ FAULTS = (
     Fault(
         "the fluid conducts nothing along z",
         PROPERTIES,
-        "linked = conducts[1:] & conducts[:-1]",
-        "linked = (grid.kind[1:] == SOLID) & (grid.kind[:-1] == SOLID)",
+        "self._linked_z = conducts[1:] & conducts[:-1]",
+        "self._linked_z = (grid.kind[1:] == SOLID) & (grid.kind[:-1] == SOLID)",
         f"{LUMPED}::test_stream_at_rest_carries_heat_along_itself",
     ),
     Fault(

@@ -3,9 +3,12 @@
 import numpy as np
 import pytest
 
+from axicfd.case.read import load
 from axicfd.materials.laws import Constant, Exponential
+from axicfd.pipeline import solve
 from axicfd.solver import boundary, properties
 from axicfd.solver.flow import stream_mesh
+from axicfd.theory.duct_heat import wall_H
 from tests.solver.tubes import grid_of, tube
 
 T_IN = 293.15
@@ -144,3 +147,40 @@ def test_a_constant_viscosity_is_the_same_everywhere():
     for array in found:
         assert (np.asarray(array) == 0.01).all()
     assert found.corner.shape == (mesh.nz + 1, mesh.nr + 1)
+
+
+def test_without_axial_conduction_in_streams_low_peclet_numbers_give_the_graetz_series():
+    """The series has none of it: at Pe = 5 the wall of a stream that has it is colder near the start of the heat."""
+    text = """
+[stream.liquid]
+fluid = "liquid"
+inlet_temperature = "20 degC"
+mean_velocity = "2.5 mm/s"
+inlet_profile = "developed"
+[fluid.liquid]
+density = "1000 kg/m^3"
+specific_heat = "1000 J/kg/K"
+conductivity = "1 W/m/K"
+viscosity = "50 mPa s"
+[[layer]]
+stream = "liquid"
+diameter = "2 mm"
+[[section]]
+name = "heated"
+length = "10 mm"
+outside = { heat_flux = "1 kW/m^2" }
+[mesh]
+at_most = 8000
+[physics]
+viscous_heating = false
+axial_conduction_in_streams = false
+"""
+    case = load(text)
+    unit = 1000.0 * 2e-3 / 1.0  # q D / k
+    for on, closest, furthest in ((False, 0.0, 0.004), (True, 0.05, 1.0)):
+        found = solve(case.replace({"physics.axial_conduction_in_streams": on})).axial["liquid"]
+        z = found["z_m"][1:]
+        here = (z > 1e-3) & (z < 9e-3)
+        want = wall_H(z[here] / (2e-3 * 5.0))
+        deviation = np.abs((found["wetted_wall_temperature_K"][1:][here] - 293.15) / unit / want - 1.0).max()
+        assert closest <= deviation < furthest

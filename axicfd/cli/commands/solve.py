@@ -38,12 +38,10 @@ def run(arguments: argparse.Namespace) -> int:
 
     case = load(Path(arguments.case), set=chosen(arguments))
 
-    from axicfd.cli.progress import Progress
+    from axicfd.cli.progress import Progress, say_if_cold
     from axicfd.pipeline import solve
-    from axicfd.solver.warm_up import is_cold
 
-    if is_cold():
-        print("compiling the numerical kernels, once on this machine: half a minute or so", file=sys.stderr, flush=True)
+    say_if_cold()
     progress = Progress(shown_units(case))
     try:
         result = solve(case, on_progress=progress)

@@ -1,0 +1,74 @@
+"""`axicfd wall CASE`: does conduction in the wall matter?"""
+
+from __future__ import annotations
+
+import argparse
+import sys
+from pathlib import Path
+
+from axicfd.cli import exits
+from axicfd.cli.commands._sets import add_set, chosen
+
+SUMMARY = "tell whether the wall matters: in full, with radial resistance only, and without it"
+
+
+def add_arguments(parser: argparse.ArgumentParser) -> None:
+    add_contrast(parser, "wall")
+    parser.add_argument("--layer", metavar="NAME", help="take out the conduction along z of this layer only")
+
+
+def add_contrast(parser: argparse.ArgumentParser, word: str) -> None:
+    """Arguments of every command that solves a case in several ways and writes the folder NAME-word."""
+    parser.add_argument("case", metavar="CASE", help="a case file in TOML")
+    parser.add_argument(
+        "--care",
+        action="append",
+        metavar="AMOUNT",
+        help='from where on a change matters: "1 K", "0.5 W", or per cent of each scale; may be given several times '
+        "(default: 2 %%)",
+    )
+    parser.add_argument("--out", metavar="DIR", help=f"folder of the answer (default: ./NAME-{word})")
+    parser.add_argument("--replace", action="store_true", help="replace that folder if it exists")
+    add_set(parser)
+    parser.add_argument("--json", action="store_true", help=f"print {word}.json alone on standard output")
+
+
+def run(arguments: argparse.Namespace) -> int:
+    from axicfd.output import folder
+
+    where = place(arguments, "wall")
+    folder.refuse_unusable(where, arguments.replace, "wall.json")
+
+    from axicfd.case.read import load
+    from axicfd.cli.progress import VariantProgress, say_if_cold
+    from axicfd.output.shown import shown_units
+
+    case = load(Path(arguments.case), set=chosen(arguments))
+
+    from axicfd.output import effects, variants
+    from axicfd.variants.wall import wall_effect
+
+    say_if_cold()
+    shown = shown_units(case)
+    with VariantProgress(shown) as progress:
+        found = wall_effect(case, arguments.care, arguments.layer, progress)
+    variants.write_wall(found, where, arguments.replace)
+    if arguments.json:
+        sys.stdout.write(variants.wall_text(found))
+    else:
+        from axicfd.cli import render
+
+        out = render.console()
+        render.sentences(out, effects.wall_sentences(found))
+        render.rows(out, *effects.wall_rows(found))
+        out.print()
+        out.print("Largest differences along the tube (at the edges of heaters they are always large):")
+        render.rows(out, ["", "", "", ""], effects.along_rows(found.effects, shown))
+        out.print(effects.care_text(found.care, shown))
+        out.print(f"Cases, curves and a picture in {where}")
+    return exits.SOLVED if found.converged else exits.NOT_CONVERGED
+
+
+def place(arguments: argparse.Namespace, word: str) -> Path:
+    """The folder asked for, or ./NAME-word."""
+    return Path(arguments.out) if arguments.out else Path(f"{Path(arguments.case).stem}-{word}")
