@@ -72,6 +72,13 @@ class InputError(AxicfdError):
         return type(self), (self.mistakes,)
 
 
+class UnknownQuantity(InputError, KeyError):
+    """A path that names no quantity of a case; a KeyError too, for those who look values up in a result."""
+
+    def __str__(self) -> str:  # a KeyError would show the text in quotes
+        return "\n".join(mistake.text for mistake in self.mistakes)
+
+
 def bad_input(key: str, value: object, allowed: str, instead: str = "") -> InputError:
     """An `InputError` of one mistake that has no place in a file."""
     return InputError([Mistake(None, None, key, value, allowed, instead)])

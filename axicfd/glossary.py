@@ -180,6 +180,7 @@ SUMMARY = (
         "pressure",
     ),
     Reported("temperature_K", "temperature", "T", "K", "temperature at the place", "temperature"),
+    Reported("generated_W", "generated heat", "Q_g", "W", "in the layer, over all sections", "heat"),
     Reported("cells", "cells", "", "", "cells of the finest mesh, all layers"),
     Reported("iterations", "iterations", "", "", "outer iterations on the finest mesh"),
     Reported("residual", "residual", "", "", "largest normalised residual left"),
@@ -272,6 +273,16 @@ def quantity_name(key: str) -> str:
 def summary_row(key: str) -> Reported:
     """The row of a key of summary.json; a key without a row of its own speaks for itself."""
     return _BY_KEY.get(key) or Reported(key, quantity_name(key).replace("_", " "), "", "", "")
+
+
+def named_row(key: str, kind: str) -> Reported:
+    """The row of the value of a combination that the case names.
+
+    key  : "value" with the suffix of its unit        kind : key of `units.KINDS`, "" for a pure number
+    """
+    unit = key.removeprefix(quantity_name(key))[1:].replace("_", "/")
+    label = kind.replace("_", " ") or "number"
+    return Reported(key, label, "", unit, "as put together in the case", kind)
 
 
 def curve_row(key: str) -> Reported:

@@ -12,8 +12,18 @@ from axicfd.case.keys import ZTable
 from axicfd.case.layout import PlacedLayer, PlacedSection, end_temperatures, layout
 from axicfd.case.model import Case, FileProfile, Outside, Section
 from axicfd.case.presence import Findings, Place
-from axicfd.case.tolerance import parts_of
-from axicfd.errors import Mistake
+from axicfd.case.quantities import (
+    NAMED,
+    advice,
+    combination_in,
+    depends_on_mesh,
+    key_named,
+    kind_of_sum,
+    quantities,
+    quantity,
+)
+from axicfd.case.tolerance import FOLLOWS
+from axicfd.errors import InputError, Mistake
 
 if TYPE_CHECKING:
     from axicfd.case.read import Source
@@ -38,7 +48,9 @@ def contradictions(case: Case, source: Source) -> list[Mistake]:
     _places(case, tube.sections, found)
     _inlets(case, tube.bore_diameter, found)
     _mesh(case, tube.sections, found)
-    _accuracy(case, tube.sections, found)
+    _combinations(case, found)
+    _limits(case, found)
+    _accuracy(case, found)
     if not found.mistakes:
         _heat_has_somewhere_to_go(case, tube.sections, found)
         _gas(case, found)
@@ -361,28 +373,118 @@ def _mesh(case: Case, sections: tuple[PlacedSection, ...], found: Findings) -> N
         )
 
 
-def _accuracy(case: Case, sections: tuple[PlacedSection, ...], found: Findings) -> None:
+def _combinations(case: Case, found: Findings) -> None:
+    """What `[quantity.NAME]` adds and takes away."""
+    known = _formed(case)
+    for name, combined in case.quantity.items():
+        kinds: dict[str, list[str]] = {"plus": [], "minus": []}
+        sound = True
+        for side, of_side in kinds.items():
+            for i, path in enumerate(getattr(combined, side)):
+                wrong = _wrong_term(case, name, path, known)
+                if wrong is None and not _builds_on_unsound(case, path, known):
+                    of_side.append(quantity(case, path).kind)
+                    continue
+                sound = False
+                if wrong:
+                    found.add((NAMED, name, side, i), path, *wrong)
+        if sound:
+            try:
+                kind_of_sum(kinds["plus"], kinds["minus"])
+            except ValueError as why:
+                hint = "As many in `minus` as in `plus` make a difference, one less makes a value such as a mean."
+                found.add((NAMED, name), None, str(why), hint if "zero point" in str(why) else "")
+
+
+def _formed(case: Case) -> set[str]:
+    """Names of the combinations that can be formed as far as their kinds tell."""
+    return {q.keys[1] for q in quantities(case, headline_only=True) if q.combined is not None}
+
+
+def _wrong_term(case: Case, name: str, path: str, known: set[str]) -> tuple[str, str] | None:
+    """(what is wrong, what to write) with a path in the combination of a name."""
+    circle = _circle(case, name, path)
+    if circle:
+        return f"leads back to itself: {' -> '.join(circle)}", "Take it out of one of them."
+    if _builds_on_unsound(case, path, known):
+        return None  # said where it is wrong
+    other = combination_in(path)
+    if other is not None and other not in case.quantity:
+        return "names no quantity of this case", advice(path, dict.fromkeys(case.quantity))
+    try:
+        term = quantity(case, path)
+    except InputError as unknown:
+        return unknown.mistakes[0].allowed, unknown.mistakes[0].instead
+    if term.key.endswith("_z_m"):
+        return "is a place, which is known to a cell and not refined like other results", "Take it out."
+    return None
+
+
+def _builds_on_unsound(case: Case, path: str, known: set[str]) -> bool:
+    name = combination_in(path)
+    return name in case.quantity and name not in known
+
+
+def _circle(case: Case, name: str, path: str) -> list[str] | None:
+    """The names on the way from a combination through one of its paths back to itself, or None."""
+    ways = [([name], path)]
+    while ways:
+        way, path = ways.pop()
+        step = combination_in(path)
+        if step == name:
+            return [*way, step]
+        if step in case.quantity and step not in way:
+            combined = case.quantity[step]
+            ways += [([*way, step], further) for further in (*combined.plus, *combined.minus)]
+    return None
+
+
+def _limits(case: Case, found: Findings) -> None:
+    """Paths in [limits] whose stream, layer, section or sensor the case does not have, or that say the same twice."""
+    seen: dict[str, str] = {}
+    known = _formed(case)
+    for path in case.limits:
+        if _builds_on_unsound(case, path, known):
+            continue  # said where it is wrong
+        try:
+            limited = quantity(case, path).path
+        except InputError as unknown:
+            wrong = unknown.mistakes[0]
+            found.add(("limits", path), _given(found, ("limits", path), None), wrong.allowed, wrong.instead)
+            continue
+        if limited in seen:
+            found.add(
+                ("limits", path),
+                _given(found, ("limits", path), None),
+                f"limits the same quantity as {seen[limited]}",
+                "Write `below` and `above` in one entry.",
+            )
+        seen.setdefault(limited, path)
+
+
+def _accuracy(case: Case, found: Findings) -> None:
     """Names in the table of `accuracy` that the case does not have."""
-    wanted = case.solve.accuracy
-    if not isinstance(wanted, dict):
-        return
-    solids = dict.fromkeys(p.name for s in sections for p in s.layers if p.kind == "solid")
-    have = {"stream": list(case.stream), "layer": list(solids), "sensor": list(case.sensor)}
-    have["section"] = [section.name for section in sections]
-    for path in wanted:
-        parts = parts_of(path)
-        assert parts is not None
-        name, measured = parts
-        names = have[measured.part]
-        what = "solid layer" if measured.part == "layer" else measured.part
-        place: Place = ("solve", "accuracy", path)
-        if name is not None and name not in names:
-            near = keys.nearest(name, names)
-            listed = f"There are: {', '.join(names)}." if names else f"The case has no {what}."
-            instead = f'Write "{measured.part}.{near}.{measured.name}".' if near else listed
-            found.add(place, _given(found, place, None), f"names no {what} of the case", instead)
-        elif not names:
+    wanted, known, every = case.solve.accuracy, _formed(case), list(quantities(case))
+    for name in wanted if isinstance(wanted, dict) else ():
+        place: Place = ("solve", "accuracy", name)
+        if _builds_on_unsound(case, name, known):
+            continue
+        try:
+            meant = (
+                [quantity(case, name)]
+                if "." in name
+                else [q for q in every if q.keys[:1] + (q.key,) == key_named(name)]
+            )
+        except InputError as unknown:
+            wrong = unknown.mistakes[0]
+            found.add(place, _given(found, place, None), wrong.allowed, wrong.instead)
+            continue
+        if not meant:
+            part, _ = key_named(name) or ("quantity", "")
+            what = "solid layer" if part == "layer" else part
             found.add(place, _given(found, place, None), f"needs a {what}, and the case has none", "Take it out.")
+        elif not any(depends_on_mesh(case, q) for q in meant):
+            found.add(place, _given(found, place, None), f"has no mesh error: {FOLLOWS}", "Take it out.")
 
 
 # ------------------------------------------------------------------------------------------------ heat

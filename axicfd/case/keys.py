@@ -35,6 +35,22 @@ class Problem:
     looks_like: tuple[str, ...] = ()  # kinds of quantity whose unit this is
 
 
+@dataclass(frozen=True)
+class WithKinds:
+    """A table as written, with the kinds of the case's named quantities: they decide the units of its entries.
+
+    kinds : None of a quantity that cannot be formed, which is found elsewhere
+    """
+
+    value: Any
+    kinds: Mapping[str, str | None]
+
+    @staticmethod
+    def apart(value: Any) -> tuple[Any, Mapping[str, str | None]]:
+        """(value as written, kinds) of a value that may come with kinds."""
+        return (value.value, value.kinds) if isinstance(value, WithKinds) else (value, {})
+
+
 class BadValue(Exception):
     """Raised by `Key.read`; carries every problem found in one value."""
 

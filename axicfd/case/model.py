@@ -30,6 +30,7 @@ from axicfd.case.keys import (
     Text,
     ZTable,
 )
+from axicfd.case.limits import Accepted, Limit, Limits
 from axicfd.case.tolerance import Accuracy, Tolerance
 from axicfd.materials import laws
 from axicfd.materials.library import FLUIDS, SOLIDS
@@ -614,6 +615,30 @@ class Sensor(Part):
     not_yet = {"plus_minus": "the error of a sensor"}
 
 
+@dataclass(frozen=True)
+class Terms(ListOf):
+    """A list of paths of quantities, one at least."""
+
+    def read(self, value: Any, in_file: bool) -> tuple:
+        read = super().read(value, in_file)
+        if not read:
+            raise self.refuse(value, "is empty", f"Write {self.example}, or take it out.")
+        return read
+
+
+class Combination(Part):
+    """A quantity of the user's own: quantities of the results added and taken away."""
+
+    plus: Annotated[
+        tuple[str, ...],
+        Terms("quantities that are added, by their paths", Text("path", sample="sensor.behind")),
+    ]
+    minus: Annotated[
+        tuple[str, ...],
+        Terms("quantities that are taken away, by their paths", Text("path", sample="sensor.before")),
+    ] = ()
+
+
 class MeshChoice(Part):
     """The mesh, where the tool's own choice is not wanted."""
 
@@ -710,15 +735,18 @@ class Case(Part):
     section: tuple[Section, ...]
     ends: Ends = Ends()
     sensor: dict[str, Sensor] = {}
+    quantity: dict[str, Combination] = {}
+    limits: Annotated[
+        dict[str, Limit],
+        Limits("bounds of quantities by their paths: the answer passes, fails, or is too close to call"),
+    ] = {}
+    accept: Annotated[dict[str, str], Accepted("cautions that may stand, by their codes, each with the reason")] = {}
     mesh: MeshChoice = MeshChoice()
     physics: Physics = Physics()
     solve: SolveChoice = SolveChoice()
     results: ResultsChoice = ResultsChoice()
 
     not_yet = {
-        "quantity": "named combinations of results",
-        "limits": "limits that pass or fail",
-        "accept": "cautions that may stand",
         "time": "a solve in time",
         "also_without_flow": "a second solve with the flow stopped",
     }
@@ -739,7 +767,7 @@ class Case(Part):
         structure = presence.in_structure(tree, source)
         mistakes = structure + presence.in_conditions(tree, source)
         try:
-            case = handler(tree)
+            case = handler(read.with_kinds(tree))
         except ValidationError as found:
             raise read.as_input_error(found, tree, source, mistakes) from None
         case._tree = tree

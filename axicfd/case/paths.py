@@ -7,30 +7,13 @@ from collections.abc import Mapping
 from typing import Any
 
 from axicfd.case import keys
+from axicfd.case.dotted import step as step_in_path
+from axicfd.case.dotted import steps_of
 from axicfd.case.model import Case, Part, layer_name
 from axicfd.errors import InputError, bad_input
 
 Place = tuple[str | int, ...]
 Table = dict[str, Any]
-
-
-def steps_of(path: str) -> list[str]:
-    """The names in a path; a name may stand in double quotes."""
-    steps, name, quoted = [], "", False
-    for mark in path:
-        if mark == '"':
-            quoted = not quoted
-        elif mark == "." and not quoted:
-            steps.append(name.strip())
-            name = ""
-        else:
-            name += mark
-    steps.append(name.strip())
-    if quoted or not all(steps):
-        raise bad_input(
-            path, None, "is not a path", "Write names with dots between them, such as stream.water.mass_flow."
-        )
-    return steps
 
 
 def spelled(tree: Any, place: Place) -> str:
@@ -43,7 +26,7 @@ def spelled(tree: Any, place: Place) -> str:
         except (KeyError, IndexError, TypeError):
             there = None
         if isinstance(step, str):
-            names.append(f'"{step}"' if "." in step else step)
+            names.append(step_in_path(step))
         elif names and names[-1] in ("section", "layer"):
             names.append(_entry_name(names[-1], there, step))
         here = there
@@ -124,7 +107,7 @@ def _put(tree: Table, path: str, value: Any, set_now: list[list[str]]) -> None:
                     raise _unknown(path, step, known)
                 if step in ("section", "layer"):
                     raise _no_such(path, step, steps[-1], [])
-                if len(place) == 1 and place[0] in ("stream", "fluid", "solid", "sensor"):
+                if len(place) == 1 and place[0] in ("stream", "fluid", "solid", "sensor", "quantity"):
                     raise _no_such(path, str(place[0]), step, list(here))
                 here[step] = {}
             elif not isinstance(here[step], dict | list):

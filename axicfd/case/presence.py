@@ -34,7 +34,7 @@ class Findings:
 def in_structure(tree: dict, source: Source) -> list[Mistake]:
     """Names, materials and stacks: without them right nothing can be placed."""
     found = Findings(tree, source)
-    for kind in ("stream", "fluid", "solid", "sensor"):
+    for kind in ("stream", "fluid", "solid", "sensor", "quantity"):
         _names(found, kind, _table(tree.get(kind)))
     _streams(found, tree)
     _stack(found, ("layer",), tree.get("layer"))

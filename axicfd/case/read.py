@@ -13,7 +13,7 @@ from typing import Any
 
 from pydantic import BaseModel, ValidationError
 
-from axicfd.case import keys, paths
+from axicfd.case import keys, paths, quantities
 from axicfd.case.lines import lines_of
 from axicfd.case.model import Case, EndFace, Outside, Part, Stream, is_one_condition, layer_name
 from axicfd.errors import InputError, Mistake
@@ -161,6 +161,17 @@ def with_names(tree: Any) -> Any:
         for i, section in enumerate(tree["section"], start=1)
     ]
     return tree | {"section": sections}
+
+
+def with_kinds(tree: dict) -> dict:
+    """The tree with the kinds of its named quantities beside the tables that hold values of quantities."""
+    kinds = quantities.kinds_in(tree)
+    told = dict(tree)
+    if "limits" in tree:
+        told["limits"] = keys.WithKinds(tree["limits"], kinds)
+    if isinstance(tree.get("solve"), dict) and "accuracy" in tree["solve"]:
+        told["solve"] = {**tree["solve"], "accuracy": keys.WithKinds(tree["solve"]["accuracy"], kinds)}
+    return told
 
 
 # ------------------------------------------------------------------------------------------------ the words
@@ -320,6 +331,7 @@ _HOMES = {
     "layer": "[[layer]]",
     "section": "[[section]]",
     "sensor": "[sensor.NAME]",
+    "quantity": "[quantity.NAME]",
     "mesh": "[mesh]",
     "physics": "[physics]",
     "solve": "[solve]",
@@ -349,7 +361,7 @@ def _wrong_shape(tree: Any, place: Place, value: Any, source: Source) -> Mistake
     if first in ("section", "layer") or "layer" in place:
         name = ".".join(str(step) for step in place if isinstance(step, str))
         return source.mistake(tree, place, value, "must be a list of tables", f"Write [[{name}]] above each one.")
-    if first in ("stream", "fluid", "solid", "sensor") and len(place) <= 2:
+    if first in ("stream", "fluid", "solid", "sensor", "quantity") and len(place) <= 2:
         return source.mistake(tree, place, value, _NAMELESS, f"Write [{first}.NAME] above its keys.")
     if "outside" in place or first == "ends":
         return source.mistake(tree, place, value, "must be a table", "Write it in braces: { insulated = true }.")

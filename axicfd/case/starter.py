@@ -85,6 +85,16 @@ at = "outside"                      # or "axis", "bulk", "tube inner", "tube out
 [results]
 stations = ["100 mm", "400 mm"]     # places of radial profiles
 
+[quantity.warming]                  # results added and taken away, with a mesh error of its own
+plus  = ["stream.water.outlet_temperature"]     # a result is named by its path in summary.json, without unit
+minus = ["stream.water.inlet_temperature"]
+
+[limits]                            # pass, fail, or too close to call against the mesh error; `below`, `above` or both
+"stream.water.hottest_wetted_wall" = { below = "90 degC" }
+
+# [accept]                          # cautions that may stand, each with the reason
+# free-convection = "checked on the rig"
+
 # ---- how to solve it: best left alone ------------------------------------------------------------------------------
 
 [physics]

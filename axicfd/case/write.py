@@ -9,6 +9,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from axicfd.case.keys import toml_key
+from axicfd.case.limits import Accepted, Limits
 from axicfd.case.model import Case, EndFace, Layer, Part, Section
 from axicfd.case.read import declared
 
@@ -16,7 +17,7 @@ from axicfd.case.read import declared
 def to_toml(case: Case) -> str:
     """The text of a case file that reads back as `case`."""
     raw = case._tree
-    blocks = ["\n".join(_pairs(case, raw))]
+    blocks = ["\n".join(_pairs(case, raw, ("limits", "accept")))]
     for kind in ("stream", "fluid", "solid"):
         for name, part in getattr(case, kind).items():
             blocks.append(_block(f"[{kind}.{toml_key(name)}]", _pairs(part, _inside(raw, kind, name))))
@@ -27,6 +28,13 @@ def to_toml(case: Case) -> str:
     blocks.append(_block("[ends]", _ends(case, _inside(raw, "ends"))))
     for name, sensor in case.sensor.items():
         blocks.append(_block(f"[sensor.{toml_key(name)}]", _pairs(sensor, _inside(raw, "sensor", name))))
+    for name, combined in case.quantity.items():
+        blocks.append(_block(f"[quantity.{toml_key(name)}]", _pairs(combined, _inside(raw, "quantity", name))))
+    for kind in ("limits", "accept"):
+        key = declared(Case, kind)
+        assert isinstance(key, Limits | Accepted)
+        if lines := key.pairs(getattr(case, kind), _inside(raw, kind)):
+            blocks.append(_block(f"[{kind}]", lines))
     for kind in ("mesh", "physics", "solve", "results"):
         if lines := _pairs(getattr(case, kind), _inside(raw, kind)):
             blocks.append(_block(f"[{kind}]", lines))

@@ -10,8 +10,11 @@ from rich.console import Console
 from rich.table import Table
 from rich.text import Text
 
+from axicfd.output import verdicts
 from axicfd.output.headline import amount, headline, number
 from axicfd.output.shown import Shown, shown_units
+from axicfd.results.cautions import SAFETY, standing
+from axicfd.results.limits import PASS
 
 PLAIN_WIDTH = 120  # columns where the output is no terminal
 CAUTIONS_SHOWN = 2  # the rest with --verbose
@@ -84,6 +87,8 @@ def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, wher
         cells[0], previous = ("" if cells[0] == previous else cells[0]), cells[0]
     rows(out, header, body, right=(2,))
     out.print()
+    for verdict, sentence in verdicts.sentences(result, shown):
+        out.print(Text(f"limit: {sentence}", style="" if verdict == PASS else "bold"))
     if hand:
         out.print("By hand: constant inlet properties, no conduction along the wall, section by section.")
     if not bars:
@@ -93,17 +98,17 @@ def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, wher
     out.print(STANDING)
     print_cautions(out, summary["cautions"], verbose)
     if can_hurt(result):
-        from axicfd.results.cautions import SAFETY
-
         out.print(SAFETY)
     _print_effort(out, summary, where)
 
 
 def print_cautions(out: Console, cautions: Sequence[dict[str, Any]], verbose: bool) -> None:
-    """The cautions that weigh most, in the order given; all of them when verbose."""
+    """The cautions that weigh most, in the order given, then those the case accepts; all of them when verbose."""
     if not cautions:
         out.print("No cautions.")
         return
+    accepted = [caution for caution in cautions if caution.get("accepted")]
+    cautions = standing(list(cautions))
     for caution in cautions if verbose else cautions[:CAUTIONS_SHOWN]:
         mark = "Caution" if caution.get("checked", True) else "Not checked"
         line = Text(f"{mark} ({caution['code']}): ", style="bold")
@@ -115,6 +120,10 @@ def print_cautions(out: Console, cautions: Sequence[dict[str, Any]], verbose: bo
     hidden = len(cautions) - CAUTIONS_SHOWN
     if hidden > 0 and not verbose:
         out.print(f"{hidden} more with --verbose and in summary.json.")
+    for caution in accepted:
+        out.print(f"Accepted ({caution['code']}): {caution['accepted']}")
+        if verbose:
+            out.print(f"   {caution['text']}")
 
 
 def can_hurt(result: Any) -> bool:
@@ -137,11 +146,8 @@ def can_hurt(result: Any) -> bool:
 def _print_accuracy(out: Console, found: dict[str, Any], shown: Shown) -> None:
     """Whether the mesh errors are as small as asked, and what per cent mean."""
     scale = found["scale"]
-    span = number(float(shown.difference("temperature", scale["temperature_K"])))
-    sizes = [
-        f"temperature {span} {shown.difference_unit('temperature')}",
-        f"heat {amount(shown, 'heat', scale['heat_W'])}",
-    ]
+    span = amount(shown, "temperature_difference", scale["temperature_K"])
+    sizes = [f"temperature {span}", f"heat {amount(shown, 'heat', scale['heat_W'])}"]
     sizes += [f"pressure {amount(shown, 'pressure', drop)}" for drop in scale["pressure_Pa"].values()]
     out.print(Text(found["text"], style="" if found["reached"] else "bold"))
     out.print(f"Scales of per cent: {', '.join(sizes)}.")

@@ -7,7 +7,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any
 
-from axicfd.glossary import Reported, quantity_name, summary_row
+from axicfd.glossary import Reported, named_row, quantity_name, summary_row
 from axicfd.output.shown import Shown
 
 STREAM_ROWS = (
@@ -68,24 +68,40 @@ class Line:
     @property
     def name(self) -> str:
         """Dotted path without unit suffix, as users name quantities."""
+        if self.path[0] == "quantity":
+            return ".".join(self.path[:2])
         return ".".join((*self.path[:-1], quantity_name(self.path[-1])))
 
 
 def headline(summary: dict[str, Any], shown: Shown, everything: bool = False) -> Iterator[Line]:
-    """The lines of the headline table; quantities without a value only when everything is asked for."""
-    stream_rows = STREAM_ROWS + MORE_STREAM_ROWS if everything else STREAM_ROWS
-    for kind, keys in (
-        ("stream", stream_rows),
-        ("layer", LAYER_ROWS),
-        ("section", SECTION_ROWS),
-        ("sensor", SENSOR_ROWS),
-    ):
-        for name, entries in (summary.get(kind) or {}).items():
-            owner = f"{kind} {name}" if kind in ("section", "sensor") else name
-            is_found = bool(_entry(summary.get("numerical_uncertainty"), (kind, name, FLOW)))
-            for key in (FLOW, *keys) if is_found and not everything else keys:
-                if key in entries and (everything or _has_value(entries[key])):
-                    yield _line(summary, shown, owner, (kind, name, key), entries[key])
+    """The lines of the headline table.
+
+    Only when everything is asked for: quantities without a value, and sections that exchange no heat.
+    """
+    yield from _of_parts(summary, shown, everything, "stream", STREAM_ROWS + (MORE_STREAM_ROWS if everything else ()))
+    yield from _of_parts(summary, shown, everything, "layer", LAYER_ROWS)
+    for name, heat in ((summary.get("ledger") or {}).get("generated") or {}).items():
+        if _has_value(heat) and heat != 0.0:
+            yield _line(summary, shown, name, ("ledger", "generated", name), heat, summary_row("generated_W"))
+    yield from _of_parts(summary, shown, everything, "section", SECTION_ROWS)
+    yield from _of_parts(summary, shown, everything, "sensor", SENSOR_ROWS)
+    for name, entry in (summary.get("quantity") or {}).items():
+        key = next(key for key in entry if quantity_name(key) == "value")
+        if everything or _has_value(entry[key]):
+            row = named_row(key, entry["kind"])
+            yield _line(summary, shown, f"quantity {name}", ("quantity", name, key), entry[key], row)
+
+
+def _of_parts(
+    summary: dict[str, Any], shown: Shown, everything: bool, kind: str, keys: tuple[str, ...]
+) -> Iterator[Line]:
+    for name, entries in (summary.get(kind) or {}).items():
+        owner = f"{kind} {name}" if kind in ("section", "sensor") else name
+        is_found = bool(_entry(summary.get("numerical_uncertainty"), (kind, name, FLOW)))
+        for key in (FLOW, *keys) if is_found and not everything else keys:
+            idle = kind == "section" and entries.get(key) == 0.0
+            if key in entries and (everything or (_has_value(entries[key]) and not idle)):
+                yield _line(summary, shown, owner, (kind, name, key), entries[key], summary_row(key))
 
 
 def number(value: float, digits: int = 4) -> str:
@@ -128,8 +144,7 @@ def _decade(value: float) -> int:
     return math.floor(math.log10(abs(value)))
 
 
-def _line(summary: dict[str, Any], shown: Shown, owner: str, path: tuple[str, ...], value: Any) -> Line:
-    row = summary_row(path[-1])
+def _line(summary: dict[str, Any], shown: Shown, owner: str, path: tuple[str, ...], value: Any, row: Reported) -> Line:
     half = _entry(summary.get("numerical_uncertainty"), path)
     bar = ""
     if _has_value(value) and _has_value(half) and half > 0.0:

@@ -7,6 +7,7 @@ from typing import Any
 
 from axicfd.output.headline import headline
 from axicfd.output.shown import shown_units
+from axicfd.output.verdicts import sentences
 
 
 def html(result: Any) -> str:
@@ -20,8 +21,15 @@ def html(result: Any) -> str:
         words = (line.owner, line.row.label, " ".join(filter(None, (line.text, line.bar))), line.place)
         cells.append("<tr>" + "".join(f'<td style="text-align:left">{escape(word)}</td>' for word in words) + "</tr>")
     parts.append(f"<table>{''.join(cells)}</table>")
+    limits = "".join(f"<li>{escape(sentence)}</li>" for _, sentence in sentences(result, shown_units(result.case)))
+    parts += [f"<p>Limits</p><ul>{limits}</ul>"] if limits else []
     cautions = summary.get("cautions") or []
     if cautions:
-        items = "".join(f"<li>{escape(str(caution['text']))}</li>" for caution in cautions)
+        items = "".join(f"<li>{escape(_words(caution))}</li>" for caution in cautions)
         parts.append(f"<p>Cautions</p><ul>{items}</ul>")
     return "".join(parts)
+
+
+def _words(caution: dict[str, Any]) -> str:
+    reason = caution.get("accepted")
+    return f"{caution['text']} Accepted: {reason}" if reason else str(caution["text"])

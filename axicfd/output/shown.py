@@ -24,21 +24,29 @@ _UNFIT = {"pressure": {"atm"}}
 
 @dataclass(frozen=True)
 class Shown:
-    """kind -> unit text. The kind "" stands for SI values that are shown as they are."""
+    """kind -> unit text. The kind "" stands for SI values that are shown as they are, as those of other kinds are."""
 
     units: dict[str, str]
 
     def unit(self, kind: str) -> str:
         """The unit's text as written for people, "" for the kind ""."""
-        return self.units[kind].replace("^2", "²").replace("^3", "³") if kind else ""
+        if kind == "temperature_difference":
+            return self.difference_unit("temperature")
+        return self._written(kind).replace("^2", "²").replace("^3", "³") if kind else ""
 
     def value(self, kind: str, si: Any) -> Any:
         """SI numbers (float or array; temperatures absolute) in the shown unit."""
-        return units.convert(si, self.units[kind], _parsed_as(kind)) if kind else si
+        if kind == "temperature_difference":
+            return self.difference("temperature", si)
+        return units.convert(si, self._written(kind), _parsed_as(kind)) if kind else si
+
+    def _written(self, kind: str) -> str:
+        kind = "pressure" if kind == "pressure_difference" else kind
+        return self.units.get(kind) or units.KINDS[kind].si
 
     def difference(self, kind: str, si: Any) -> Any:
         """The same for a difference or a half-width: no zero point."""
-        return self.value(kind, si) - self.value(kind, 0.0) if kind else si
+        return self.value(kind, si) - self.value(kind, 0.0 * si) if kind else si
 
     def difference_unit(self, kind: str) -> str:
         """Of a difference: degC and K are alike there."""

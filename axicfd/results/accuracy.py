@@ -1,33 +1,32 @@
 """The accuracy a case asks for, held against the mesh errors found, and where the mesh is to be finer.
 
 Per cent mean a share of a scale: of temperatures the largest distance from the inlet temperature, of heats the larger
-of what is put in or taken out and of what a stream takes up, of pressure the pressure drop.
+of what is put in or taken out and of what a stream takes up, of pressure the pressure drop, of other quantities
+themselves.
 """
 
 import math
-from collections.abc import Iterator
 from dataclasses import asdict, dataclass
 from typing import Any
 
 import numpy as np
 
 from axicfd.case.model import Case
-from axicfd.case.tolerance import HEADLINE, MEASURED, Measured, Tolerance, parts_of
+from axicfd.case.quantities import HEADLINE, ResultQuantity, depends_on_mesh, key_named, quantities, quantity
+from axicfd.case.tolerance import Tolerance
 from axicfd.mesh.grid import NOTHING
 from axicfd.solver.state import Solution
 
 SMALLEST_TEMPERATURE = 1e-6  # K; a smaller scale is zero: nothing is refined for a share of it
 FINER, FINEST = 1.25, 2.0  # least and most refinement of a direction at a time
 
-BY_KEY: dict[tuple[str, str], Measured] = {(m.part, m.key): m for m in MEASURED}
+PER_CENT_OF_ALL = {(part, key) for part, known in HEADLINE.items() for key in known if part != "sensor"}
+PER_CENT_OF_ALL |= {("stream", "mass_flow_kg_s")}  # where it is found from a pressure drop
 
 
-def quantities(tree: dict[str, Any]) -> Iterator[tuple[str, str, str]]:
-    """(part, name, key) of the quantities of a tree whose mesh error can be asked for: headline and sensors."""
-    for measured in MEASURED:
-        for name, entries in (tree.get(measured.part) or {}).items():
-            if isinstance(entries.get(measured.key), int | float):
-                yield measured.part, name, measured.key
+def with_mesh_error(case: Case, tree: dict[str, Any]) -> list[ResultQuantity]:
+    """The quantities with a value in a tree whose mesh error can be asked for."""
+    return [q for q in quantities(case) if depends_on_mesh(case, q) and q.of(tree) is not None]
 
 
 def scales(summary: dict[str, Any], solution: Solution) -> dict[str, Any]:
@@ -90,15 +89,15 @@ def judge(case: Case, summary: dict[str, Any], solution: Solution) -> Verdict:
     scale = scales(summary, solution)
     found: dict[str, Judged] = {}
     finer = [1.0, 1.0]
-    for (part, name, key), tolerance in _asked(case, summary).items():
-        allowed = _allowed(tolerance, BY_KEY[part, key], name, scale)
+    for asked, tolerance in _asked(case, summary).items():
+        allowed = _allowed(tolerance, asked, summary, scale)
         if allowed is None:
             continue
-        judged = Judged(_leaf(bars, part, name, key), allowed)
-        found[f"{part}.{name}.{key}"] = judged
+        judged = Judged(asked.of(bars), allowed)
+        found[".".join(asked.keys)] = judged
         if judged.ratio <= 1.0:
             continue
-        errors = [_leaf(bars.get(word) or {}, part, name, key) for word in ("from_r", "from_z")]
+        errors = [asked.of(bars.get(word)) for word in ("from_r", "from_z")]
         total = sum(abs(e) for e in errors if e is not None)
         for k, error in enumerate(errors):
             share = 0.5 if error is None or total == 0.0 else abs(error) / total
@@ -131,40 +130,37 @@ def as_summary(verdict: Verdict, stopped_by: str | None, why: str, solves: int) 
     }
 
 
-def _asked(case: Case, tree: dict[str, Any]) -> dict[tuple[str, str, str], Tolerance]:
+def _asked(case: Case, tree: dict[str, Any]) -> dict[ResultQuantity, Tolerance]:
     """The quantities that have a value, with the tolerance of each; a path counts before a name for all."""
     wanted = case.solve.accuracy
-    have = list(quantities(tree))
+    have = with_mesh_error(case, tree)
     if wanted is None:
         return {}
     if isinstance(wanted, Tolerance):
-        headline = {(m.part, m.key) for m in HEADLINE}
-        return {(part, name, key): wanted for part, name, key in have if (part, key) in headline}
-    asked: dict[tuple[str, str, str], Tolerance] = {}
-    for path, tolerance in sorted(wanted.items(), key=lambda entry: "." in entry[0]):
-        parts = parts_of(path)
-        assert parts is not None
-        one, measured = parts
-        for part, name, key in have:
-            if (part, key) == (measured.part, measured.key) and one in (None, name):
-                asked[part, name, key] = tolerance
+        return {q: wanted for q in have if (q.keys[0], q.key) in PER_CENT_OF_ALL}
+    asked: dict[ResultQuantity, Tolerance] = {}
+    for name, tolerance in sorted(wanted.items(), key=lambda entry: "." in entry[0]):
+        one = quantity(case, name) if "." in name else None
+        for q in have:
+            if q == one or (one is None and (q.keys[0], q.key) == key_named(name)):
+                asked[q] = tolerance
     return asked
 
 
-def _allowed(tolerance: Tolerance, measured: Measured, name: str, scale: dict[str, Any]) -> float | None:
+def _allowed(
+    tolerance: Tolerance, asked: ResultQuantity, summary: dict[str, Any], scale: dict[str, Any]
+) -> float | None:
     """The half-width allowed in SI, or None where it would be a share of nothing."""
     if tolerance.amount is not None:
         return tolerance.amount
     assert tolerance.per_cent is not None
     share = tolerance.per_cent / 100.0
-    if measured.kind == "pressure":
-        return share * scale["pressure_Pa"][name] or None
+    kind = asked.row.kind
+    if kind == "pressure":
+        drops = scale["pressure_Pa"]
+        return share * max((drops[name] for name in asked.keys if name in drops), default=max(drops.values())) or None
+    if kind not in ("temperature", "temperature_difference", "heat"):
+        return share * abs(asked.of(summary) or 0.0) or None
     if scale["temperature_K"] <= SMALLEST_TEMPERATURE:
         return None  # heats are round-off too where nothing is warmed or cooled
-    return share * scale["temperature_K" if measured.kind == "temperature_difference" else "heat_W"] or None
-
-
-def _leaf(tree: Any, *path: str) -> float | None:
-    for step in path:
-        tree = tree.get(step) if isinstance(tree, dict) else None
-    return tree
+    return share * scale["heat_W" if kind == "heat" else "temperature_K"] or None

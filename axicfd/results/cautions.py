@@ -18,6 +18,7 @@ from axicfd import units
 from axicfd.case.checks import GAS_DENSITY_CHANGE
 from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout, PlacedSection, layout
+from axicfd.case.limits import CAUTIONS
 from axicfd.case.model import Case, Law, UsedFluid
 from axicfd.errors import RefusedModel
 from axicfd.materials.library import ATMOSPHERE, SOLIDS
@@ -39,6 +40,7 @@ OWN_LIMIT = "this tool's own target"
 REYNOLDS_CAUTION = 2000.0
 REYNOLDS_REFUSED = 4000.0
 REYNOLDS_SOURCE = "common practice, after Reynolds 1883 (from memory): tubes may turn turbulent from 2000 to 2300 on"
+ACCEPT_REYNOLDS = 'Where the flow is known to stay laminar, accept it: reynolds = "reason" in [accept].'
 RANGE_TOLERANCE = 1e-4  # share of the temperature span by which a law may be left
 GAS_DENSITY_CAUTION = 0.01
 WARM_END = 0.01  # share of the temperature span
@@ -77,11 +79,15 @@ class Caution:
     checked: bool = True
     weight: float = 1.0
 
+    def __post_init__(self) -> None:
+        if self.code not in CAUTIONS:
+            raise ValueError(f"{self.code} is not in the list of cautions that [accept] knows")
+
 
 def before(case: Case) -> list[dict[str, Any]]:
     """Cautions known before a solve, heaviest first. Raises `RefusedModel` for a flow that is not laminar."""
     ahead = Ahead(case, layout(case))
-    return _sorted(caution for rule in BEFORE for caution in rule(ahead))
+    return _sorted(case, (caution for rule in BEFORE for caution in rule(ahead)))
 
 
 def after(
@@ -96,7 +102,7 @@ def after(
     summary, axial : the tree of headline quantities and the curves of every stream
     """
     found = Found(case, layout, solution, summary, axial)
-    return _sorted(caution for rule in AFTER for caution in rule(found))
+    return _sorted(case, (caution for rule in AFTER for caution in rule(found)))
 
 
 def refusal(case: Case, layout: Layout, solution: Solution) -> str | None:
@@ -112,11 +118,11 @@ def refusal(case: Case, layout: Layout, solution: Solution) -> str | None:
                 "material of the case lets the answer stand with a caution."
             )
     largest, z = _largest_reynolds(found)
-    if largest > REYNOLDS_REFUSED:
+    if largest > REYNOLDS_REFUSED and "reynolds" not in case.accept:
         return (
             f"The Reynolds number of {found.name} reaches {_g(largest)} at z = {_length(case, z)}, above "
             f"{_g(REYNOLDS_REFUSED)}: the flow is not laminar there. Lower the flow, widen the bore or heat "
-            "less."
+            f"less. {ACCEPT_REYNOLDS}"
         )
     if found.fluid.is_gas and not found.fluid.density.is_constant and found.flows:
         change, z = _density_change(found)
@@ -129,8 +135,15 @@ def refusal(case: Case, layout: Layout, solution: Solution) -> str | None:
     return None
 
 
-def _sorted(cautions: Iterator[Caution]) -> list[dict[str, Any]]:
-    return [asdict(caution) for caution in sorted(cautions, key=lambda caution: -caution.weight)]
+def standing(cautions: list[dict[str, Any]]) -> list[dict[str, Any]]:
+    """Those that the case does not accept; what could not be checked stands too."""
+    return [caution for caution in cautions if not caution.get("accepted")]
+
+
+def _sorted(case: Case, cautions: Iterator[Caution]) -> list[dict[str, Any]]:
+    """As plain data, the heaviest first; `accepted` is the reason the case gives, or None."""
+    by_weight = sorted(cautions, key=lambda caution: -caution.weight)
+    return [{**asdict(caution), "accepted": case.accept.get(caution.code)} for caution in by_weight]
 
 
 # ----- what rules look at
@@ -472,9 +485,9 @@ def _mesh_error(found: Found) -> Iterator[Caution]:
 def _reynolds_caution(what: str, largest: float, place: str) -> Caution:
     return Caution(
         "reynolds",
-        f"{what}, above {_g(REYNOLDS_CAUTION)}: the flow may be turbulent there, and heat transfer and "
-        "pressure drop "
-        "are then higher than shown. Lower the flow, or use a turbulent correlation beside this answer.",
+        f"{what}, above {_g(REYNOLDS_CAUTION)}: the flow {'is as a rule' if largest > REYNOLDS_REFUSED else 'may be'} "
+        "turbulent there, and heat transfer and pressure drop are then higher than shown. Lower the flow, or use a "
+        "turbulent correlation beside this answer.",
         place=place,
         found=largest,
         limit=REYNOLDS_CAUTION,
@@ -487,11 +500,12 @@ def _reynolds_ahead(ahead: Ahead) -> Iterator[Caution]:
     at_inlet = float(ahead.reynolds(ahead.t_in))
     if ahead.case.stream[ahead.name].pressure_drop is not None:
         return  # the flow is a rough guess until it is solved
-    if at_inlet > REYNOLDS_REFUSED:
+    if at_inlet > REYNOLDS_REFUSED and "reynolds" not in ahead.case.accept:
         raise RefusedModel(
             f"The Reynolds number of {ahead.name} is {_g(at_inlet)} at the inlet, above "
             f"{_g(REYNOLDS_REFUSED)}: the flow "
-            "is not laminar, and laminar flow is all that is computed here. Lower the flow or widen the bore."
+            "is not laminar, and laminar flow is all that is computed here. Lower the flow or widen the bore. "
+            f"{ACCEPT_REYNOLDS}"
         )
     if at_inlet > REYNOLDS_CAUTION:
         yield _reynolds_caution(f"The Reynolds number is {_g(at_inlet)} at the inlet", at_inlet, "inlet")

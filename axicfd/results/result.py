@@ -7,13 +7,15 @@ import numpy as np
 
 from axicfd.case.layout import Layout
 from axicfd.case.model import Case
+from axicfd.case.quantities import quantity
+from axicfd.errors import UnknownQuantity
 from axicfd.mesh.build import Family
 from axicfd.mesh.grid import NOTHING, frozen
-from axicfd.results import accuracy, axial, cautions, summary, uncertainty
+from axicfd.results import accuracy, axial, cautions, limits, summary, uncertainty
 from axicfd.solver.state import Solution
 
 BARS_APART = 3.0  # half-widths by which wall and bulk temperature must differ for a Nusselt number to mean anything
-WITH_BARS = "stream", "layer", "section", "sensor"  # parts of the tree whose quantities get a mesh error
+WITH_BARS = "stream", "layer", "section", "sensor", "quantity"  # parts of the tree whose quantities get a mesh error
 
 
 @dataclass(frozen=True, eq=False)
@@ -61,12 +63,21 @@ class Result:
     def converged(self) -> bool:
         return bool(self.summary["converged"])
 
-    def __getitem__(self, quantity: str) -> float | None:
-        """A headline quantity by its dotted path with unit suffix: result["stream.oil.outlet_temperature_K"]."""
-        node: Any = self.summary
-        for part in quantity.split("."):
-            node = node[part]
-        return node
+    def __getitem__(self, path: str) -> Any:
+        """A quantity [SI] by its dotted path, with or without unit suffix: result["stream.oil.outlet_temperature"].
+
+        Other parts of the summary too, as their keys spell them: result["balance.energy"]. None where a quantity has
+        no value; raises `UnknownQuantity`, a KeyError, for a path that names nothing.
+        """
+        try:
+            return quantity(self.case, path).of(self.summary)
+        except UnknownQuantity:
+            node: Any = self.summary
+            for step in path.split("."):
+                if not isinstance(node, dict) or step not in node:
+                    raise
+                node = node[step]
+            return node
 
     def __repr__(self) -> str:
         state = "" if self.converged else " not converged,"
@@ -129,7 +140,8 @@ def make_result(
             _blank_where_unknown(columns, half_widths[name])
     found = cautions.after(case, layout, {**head, **tree}, curves[-1], solution)
     refused = cautions.refusal(case, layout, solution)
-    full = head | ({"refused": refused} if refused else {}) | {"cautions": found} | tree | extrapolated
+    full = head | ({"refused": refused} if refused else {}) | {"cautions": found, "limits": {}} | tree | extrapolated
+    full["limits"] = limits.judge(case, full)
     outside = axial.outside_curves(case, solution)
     for columns in (outside, *curves[-1].values(), *half_widths.values()):
         for column in columns.values():
@@ -166,26 +178,40 @@ def _told_apart(
     widths: dict[str, Any],
     hows: dict[str, Any],
 ) -> dict[str, Any]:
-    """Errors of the headline quantities from the cells along r and along z; widens half-widths where they cancel."""
+    """Errors of the quantities from the cells along r and along z; widens half-widths where they cancel."""
     coarse_r, coarse_z = (summary.summary(case, layout, s, axial.stream_views(case, s)) for s in halves)
     along: dict[str, Any] = {"from_r": {}, "from_z": {}}
-    for part, name, key in accuracy.quantities(medium):
-        found = uncertainty.split(*(tree[part][name].get(key) for tree in (medium, coarse_r, coarse_z)))
-        half = widths.get(part, {}).get(name, {}).get(key)
+    for q in accuracy.with_mesh_error(case, medium):
+        if q.key.endswith("_z_m"):
+            continue
+        found = uncertainty.split(*(q.of(tree) for tree in (medium, coarse_r, coarse_z)))
+        half = q.of(widths)
         if found is None or half is None:
             continue
         for word, value in ("from_r", found.r), ("from_z", found.z):
-            along[word].setdefault(part, {}).setdefault(name, {})[key] = value
-        how = hows[part][name][key]
+            _put(along[word], q.keys, value)
+        how = _branch(hows, q.keys)
         if found.opposed > half and how["rule"] != uncertainty.EXACT:
-            widths[part][name][key] = found.opposed
+            _put(widths, q.keys, found.opposed)
             how["rule"] = f"{how['rule']}, {uncertainty.OPPOSED}"
     return along
 
 
+def _branch(tree: dict[str, Any], path: tuple[str, ...]) -> dict[str, Any]:
+    for key in path:
+        tree = tree.setdefault(key, {})
+    return tree
+
+
+def _put(tree: dict[str, Any], path: tuple[str, ...], value: float) -> None:
+    _branch(tree, path[:-1])[path[-1]] = value
+
+
 def _leaves(tree: dict[str, Any], word: str) -> dict[str, Any]:
     """The tree of one word of each leaf of an estimate."""
-    return {key: leaf[word] if word in leaf else _leaves(leaf, word) for key, leaf in tree.items()}
+    # a user may call something "rule": only below it comes the leaf
+    is_leaf = {key: not isinstance(leaf.get(word, {}), dict) for key, leaf in tree.items()}
+    return {key: leaf[word] if is_leaf[key] else _leaves(leaf, word) for key, leaf in tree.items()}
 
 
 def _blank_where_unknown(columns: dict[str, np.ndarray], half_widths: dict[str, np.ndarray]) -> None:

@@ -12,6 +12,7 @@ import numpy as np
 from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout, PlacedSection
 from axicfd.case.model import Case
+from axicfd.case.quantities import ResultQuantity, quantities, quantity
 from axicfd.mesh.grid import SOLID, Array, Piece
 from axicfd.results import lines
 from axicfd.results.axial import StreamView
@@ -29,13 +30,19 @@ STANDARD_GRAVITY = 9.80665  # m/s2, CGPM 1901
 
 
 def summary(case: Case, layout: Layout, solution: Solution, views: dict[str, StreamView]) -> dict[str, Any]:
-    """The tree with `stream`, `layer`, `section`, `sensor`, `ledger` and `balance`; views of all its streams given."""
+    """The tree with `stream`, `layer`, `section`, `sensor`, `quantity`, `ledger` and `balance`.
+
+    views : of all streams
+    """
     ledger = _ledger(case, layout, solution)
-    return {
+    tree = {
         "stream": {name: _stream(case, layout, solution, view) for name, view in views.items()},
         "layer": _layers(case, solution),
         "section": {s.name: _section(k, s, solution, views) for k, s in enumerate(layout.sections)},
         "sensor": {name: _sensor(case, solution, views, sensor) for name, sensor in case.sensor.items()},
+    }
+    return tree | {
+        "quantity": _combinations(case, tree),
         "ledger": ledger,
         "balance": _balance(ledger, views, solution),
     }
@@ -334,6 +341,29 @@ def _sensor(case: Case, solution: Solution, views: dict[str, StreamView], sensor
     if not np.isfinite(value):
         return {"temperature_K": None, "why": {"temperature_K": "no material there"}}
     return {"temperature_K": value + view.t_in}
+
+
+def _combinations(case: Case, tree: dict[str, Any]) -> dict[str, Any]:
+    """The case's own quantities: what they add less what they take away, from the values of this tree."""
+    found: dict[str, Any] = {}
+
+    def value(of: ResultQuantity) -> float | None:
+        return entry(of)[of.key] if of.combined is not None else of.of(tree)
+
+    def entry(of: ResultQuantity) -> dict[str, Any]:
+        name = of.keys[1]
+        if name not in found:
+            sides = case.quantity[name].plus, case.quantity[name].minus
+            terms = [[(path, value(quantity(case, path))) for path in side] for side in sides]
+            missing = [path for side in terms for path, v in side if v is None]
+            plus, minus = ([v for _, v in side if v is not None] for side in terms)
+            total = None if missing else math.fsum([*plus, *(-v for v in minus)])
+            found[name] = {of.key: total, "kind": of.kind}
+            if missing:
+                found[name]["why"] = {of.key: f"{missing[0]} has no value"}
+        return found[name]
+
+    return {of.keys[1]: entry(of) for of in quantities(case, headline_only=True) if of.combined is not None}
 
 
 # ------------------------------------------------------------------------------------------------ ledger

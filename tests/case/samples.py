@@ -93,6 +93,17 @@ stop_below = 1e-9
 
 [results]
 stations = ["0.2 m", "0.7 m"]
+
+[quantity.warmth]
+plus  = ["stream.oil.outlet_temperature"]
+minus = ["stream.oil.inlet_temperature"]
+
+[limits]
+"stream.oil.hottest_wetted_wall" = { below = "90 degC" }
+"quantity.warmth"                = { above = "0.5 K", below = "60 K" }
+
+[accept]
+free-convection = "seen on the rig"
 """
 
 

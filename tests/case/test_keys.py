@@ -8,6 +8,7 @@ import tomllib
 import pytest
 
 from axicfd.case import keys
+from axicfd.case.limits import Limits
 from axicfd.case.model import Case, EndFace, Layer, Outside, Part, Section
 from axicfd.case.read import declared, load
 from axicfd.errors import InputError
@@ -21,7 +22,7 @@ TABLES: list[tuple[type[Part], str, str]] = [
     (Section, '[[section]]\nname      = "heater"', "section.heater"),
 ]
 for _kind, _name in (
-    ("stream", "oil"), ("fluid", "oil"), ("solid", "liner"), ("sensor", "case"),
+    ("stream", "oil"), ("fluid", "oil"), ("solid", "liner"), ("sensor", "case"), ("quantity", "warmth"),
     ("mesh", ""), ("physics", ""), ("solve", ""), ("results", ""),
 ):  # fmt: skip
     _path = f"{_kind}.{_name}" if _name else _kind
@@ -54,7 +55,8 @@ def with_line(header: str, path: str, name: str, value: str) -> str:
             for line in BASE.splitlines()
         ]
         return "\n".join(lines) + "\n"
-    before, after = BASE.split(header, 1) if header else ("", BASE)
+    text = BASE if header else re.sub(rf"^\[{name}\]\n(.+\n)+", "", BASE, flags=re.MULTILINE)
+    before, after = text.split(header, 1) if header else ("", text)
     if header.count("\n"):
         name_line = header.split("\n")[1]
         if name == "name":
@@ -139,6 +141,17 @@ def bad_values(key: keys.Key) -> list[str]:
         return ["3", '""', "[]", '"no such stuff"']
     if isinstance(key, keys.Text):
         return ["3", "true", "[]"] + (['"a/b"', '""', '"ä"', '"a.b"'] if key.name else ['"a\\nb"'])
+    if isinstance(key, Limits):
+        path = '"stream.oil.outlet_temperature"'
+        inner = ["3", '"90 degC"', "{}", "{ below = 90 }", '{ belw = "90 degC" }', '{ below = "1 Pa" }', "true"]
+        inner += ['{ below = "1 degC", above = "2 degC" }', '{ above = "0 K" }', "[]"]
+        return [
+            "3",
+            "true",
+            "[]",
+            '{ pressure_drop = { below = "1 Pa" } }',
+            *(f"{{ {path} = {bad} }}" for bad in inner),
+        ]
     return ["3", "true", '"flatt"', "{}", "{ file = 3 }", '{ file = "no such file.csv" }']  # an inlet profile
 
 

@@ -159,9 +159,6 @@ def test_keys_that_are_not_open_are_refused_by_name(table, line):
 @pytest.mark.parametrize(
     "addition, key",
     [
-        ('[limits]\n"stream.oil.pressure_drop" = { below = "1 bar" }', "limits"),
-        ('[quantity.signal]\nplus = ["sensor.case"]', "quantity"),
-        ('[accept]\n"free-convection" = "seen"', "accept"),
         ('[time]\nuntil = "1 s"', "time"),
     ],
 )

@@ -28,12 +28,13 @@ def test_the_starter_explains_every_open_key():
         "layer",
         "section",
         "sensor",
+        "quantity",
         "mesh",
         "physics",
         "solve",
         "results",
     ):
-        way = (table, "x") if table in ("stream", "fluid", "solid", "sensor") else (table, 0)
+        way = (table, "x") if table in ("stream", "fluid", "solid", "sensor", "quantity") else (table, 0)
         part = part_at(way) or part_at((table,))
         for name in part.model_fields:
             if name not in ("density", "name", "cells_across", "void", "layer", "specific_heat"):

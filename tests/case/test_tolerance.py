@@ -3,7 +3,7 @@
 import pytest
 
 from axicfd.case.read import load
-from axicfd.case.tolerance import Tolerance, parts_of
+from axicfd.case.tolerance import Tolerance, kind_asked
 from axicfd.case.write import to_toml
 from axicfd.errors import InputError
 from tests.case.samples import BASE, changed, mistakes_in
@@ -58,14 +58,15 @@ def test_it_is_written_as_given(value):
         ('"101 %"', "solve.accuracy", "at most 100 %"),
         ("{}", "solve.accuracy", "pressure_drop"),
         ('{ outlet_temp = "1 %" }', "solve.accuracy.outlet_temp", "stream.NAME.outlet_temperature"),
-        ('{ reynolds = "1 %" }', "solve.accuracy.reynolds", "There are: outlet_temperature"),
+        ('{ prandtl = "1 %" }', "solve.accuracy.prandtl", "follows from the inputs alone. There are: outlet"),
+        ('{ reynolds = "1 %" }', "solve.accuracy.reynolds", "follows from the inputs alone"),
         ('{ "layer.oil.pressure_drop" = "1 %" }', 'solve.accuracy."layer.oil.pressure_drop"', "stream.NAME"),
         ('{ pressure_drop = "1 K" }', "solve.accuracy.pressure_drop", "Pa"),
         ('{ pressure_drop = "-1 Pa" }', "solve.accuracy.pressure_drop", "greater than 0"),
         ('{ outlet_temperature = "1 mm" }', "solve.accuracy.outlet_temperature", '"0.1 K"'),
         ('{ "stream.oli.pressure_drop" = "1 %" }', 'solve.accuracy."stream.oli.pressure_drop"', "stream.oil.pres"),
-        ('{ "layer.oil.hottest" = "1 %" }', 'solve.accuracy."layer.oil.hottest"', "no solid layer"),
-        ('{ "section.oven.heat_in" = "1 %" }', 'solve.accuracy."section.oven.heat_in"', "lead-in, heater"),
+        ('{ "layer.oil.hottest" = "1 %" }', 'solve.accuracy."layer.oil.hottest"', "layer.liner.hottest"),
+        ('{ "section.oven.heat_in" = "1 %" }', 'solve.accuracy."section.oven.heat_in"', "section.hotter.heat_in"),
     ],
 )
 def test_bad_values_name_the_key_and_what_to_write(value, key, words):
@@ -85,6 +86,26 @@ def test_a_sensor_that_is_not_there():
         load(text[:start] + text[end:])
 
 
-def test_paths_have_three_parts():
-    assert parts_of("stream.a b.heat_gain")[0] == "a b" and parts_of("heat_gain")[0] is None
-    assert parts_of("oil.heat_gain") is None and parts_of("stream.oil.x.heat_gain") is None
+def test_the_kind_of_what_is_asked_for():
+    named = {"signal": "temperature_difference", "heat": "heat"}
+    assert kind_asked("stream.a b.heat_gain", named) == kind_asked("heat_gain", named) == "heat"
+    assert kind_asked("coldest", named) == kind_asked("sensor.far", named) == "temperature_difference"
+    assert kind_asked("quantity.heat", named) == "heat" and kind_asked("largest_reynolds", named) == ""
+    for wrong in ("oil.heat_gain", "stream.oil.x.heat_gain", "quantity.other", "quantity.heat.x", "prandtl", "a..b"):
+        assert kind_asked(wrong, named) is None, wrong
+
+
+def test_a_flow_that_is_found_has_a_mesh_error():
+    found = load(
+        with_accuracy('{ mass_flow = "1 %" }').replace('mass_flow         = "4 g/s"', 'pressure_drop = "1 bar"')
+    )
+    assert found.solve.accuracy == {"mass_flow": Tolerance(per_cent=1.0)}
+
+
+def test_a_named_combination():
+    wanted = '{ "quantity.warmth" = "20 mK", "sensor.case" = "1 %" }'
+    case = load(with_accuracy(wanted))
+    assert case.solve.accuracy["quantity.warmth"] == Tolerance(amount=0.02)
+    assert load(to_toml(case)) == case and f"accuracy = {wanted}" in to_toml(case)
+    (mistake,) = mistakes_in(with_accuracy('{ "quantity.warmht" = "1 K" }'))
+    assert 'Write "quantity.warmth".' in mistake.text

@@ -82,7 +82,6 @@ def test_set_changes_the_case(here, solver):
         (["--set", "stream.syrup.mas_flow=3 g/s"], "mass_flow"),
         (["--set", "stream.syrup.mass_flow=3"], "unit"),
         (["--set", "title=a", "--set", "title=b"], "twice"),
-        (["--strict"], "not available yet"),
         (["--nonsense"], "--help"),
     ],
 )
@@ -108,6 +107,63 @@ def test_what_did_not_converge_is_kept_and_marked(here, solver, capsys):
     assert "NOT CONVERGED" in captured.out
     assert "not converged: residual 1.0e-02" in captured.err
     assert json.loads((here / "syrup-results" / "summary.json").read_text())["converged"] is False
+
+
+def decided(limits=None, cautions=()):
+    """A made-up result with other limits and cautions."""
+    result = made_up()
+    return replace(result, summary={**result.summary, "limits": limits or {}, "cautions": list(cautions)})
+
+
+def limit(verdict, value=347.65, below=363.15, half=0.5):
+    return {
+        "stream.syrup.hottest_wetted_wall": {
+            "value_K": value, "below_K": below, "margin_K": below - value, "half_width_K": half, "verdict": verdict,
+        }
+    }  # fmt: skip
+
+
+CAUTION = {"code": "warm-end", "text": "the wall is warm", "checked": True}
+
+
+@pytest.mark.parametrize(
+    "answer, plain, strict, told",
+    [
+        (decided(), 0, 0, ""),
+        (decided(limit("pass")), 0, 0, ""),
+        (decided(limit("fail", below=340.0)), 3, 3, "1 limit failed: stream.syrup.hottest_wetted_wall"),
+        (decided(limit("too close to call", below=347.5)), 0, 3, "1 limit not settled"),
+        (decided(limit("not judged") | {}), 0, 3, "1 limit not settled"),
+        (decided(cautions=[CAUTION]), 0, 3, "1 caution not accepted: warm-end"),
+        (decided(cautions=[{**CAUTION, "checked": False}]), 0, 3, "1 caution not accepted: warm-end"),
+        (decided(cautions=[{**CAUTION, "accepted": "seen on the rig"}]), 0, 0, ""),
+    ],
+)
+def test_exit_statuses_of_limits_and_cautions(here, solver, capsys, answer, plain, strict, told):
+    if "limits" in answer.summary:
+        for entry in answer.summary["limits"].values():
+            entry.setdefault("why", "there is no answer")
+    solver.answer = lambda: answer
+    assert app.main(["solve", "syrup.toml"]) == plain
+    assert app.main(["solve", "syrup.toml", "--replace", "--strict"]) == strict
+    assert told in capsys.readouterr().err
+
+
+def test_no_convergence_and_refusal_come_before_limits(here, solver):
+    failing = decided(limit("fail", below=340.0))
+    solver.answer = lambda: replace(failing, summary={**failing.summary, "converged": False})
+    assert app.main(["solve", "syrup.toml", "--strict"]) == exits.NOT_CONVERGED
+    solver.answer = lambda: replace(failing, summary={**failing.summary, "refused": "Too fast."})
+    assert app.main(["solve", "syrup.toml", "--strict", "--replace"]) == exits.UNUSABLE
+
+
+def test_limits_and_accepted_cautions_are_printed(here, solver, capsys):
+    accepted = {**CAUTION, "code": "copper-kind", "accepted": "checked with the mill"}
+    solver.answer = lambda: decided(limit("pass"), [CAUTION, accepted])
+    app.main(["solve", "syrup.toml"])
+    out = capsys.readouterr().out
+    assert "limit: hottest wetted wall below 90 degC: pass, margin 15.5 K (mesh ±0.5 K)" in out
+    assert "Accepted (copper-kind): checked with the mill" in out and "Caution (warm-end)" in out
 
 
 def test_an_interruption_leaves_nothing(here, solver, capsys):

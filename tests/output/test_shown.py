@@ -32,3 +32,14 @@ def test_arrays_are_converted_whole():
     shown = shown_units(load(TEXT))
     assert np.allclose(shown.value("temperature", np.array([273.15, 283.15])), [0, 10])
     assert shown.value("", 3.5) == 3.5
+
+
+def test_differences_and_other_kinds():
+    shown = shown_units(load(TEXT.replace('"20 degC"', '"68 degF"')))
+    assert (shown.unit("temperature_difference"), shown.value("temperature_difference", 5.0)) == (
+        "degF",
+        pytest.approx(9),
+    )
+    assert shown_units(load(TEXT)).unit("temperature_difference") == "K"
+    assert (shown.unit("time"), shown.value("time", 3.0)) == ("s", 3.0)
+    assert (shown.unit("pressure_difference"), shown.difference("pressure_difference", 2.0)) == ("Pa", 2.0)

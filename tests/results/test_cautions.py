@@ -125,7 +125,7 @@ def test_a_caution_is_whole(found):
     listed = found()
     assert listed
     for caution in listed:
-        assert set(caution) == {"code", "found", "limit", "place", "source", "text", "checked", "weight"}
+        assert set(caution) == {"code", "found", "limit", "place", "source", "text", "checked", "weight", "accepted"}
         assert caution["place"] and caution["source"] and caution["text"].endswith(".")
         assert caution["found"] is None or math.isfinite(caution["found"])
         assert "nan" not in caution["text"] and "inf" not in caution["text"]

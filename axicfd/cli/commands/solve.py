@@ -9,7 +9,6 @@ from typing import Any
 
 from axicfd.cli import exits
 from axicfd.cli.commands._sets import add_set, chosen
-from axicfd.errors import AxicfdError
 
 SUMMARY = "solve a case, write its results folder and print the answer"
 
@@ -19,14 +18,16 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--out", metavar="DIR", help="results folder (default: ./NAME-results)")
     parser.add_argument("--replace", action="store_true", help="replace the results folder if it exists")
     add_set(parser)
-    parser.add_argument("--strict", action="store_true", help="fail when a caution stands (not available yet)")
+    parser.add_argument(
+        "--strict",
+        action="store_true",
+        help="end with 3 when a caution stands that [accept] does not name, or a limit is too close to call",
+    )
     parser.add_argument("--json", action="store_true", help="print summary.json alone on standard output")
     parser.add_argument("--verbose", action="store_true", help="print all quantities and all cautions")
 
 
 def run(arguments: argparse.Namespace) -> int:
-    if arguments.strict:
-        raise AxicfdError("`--strict` is not available yet. Leave it out; cautions are printed and in summary.json.")
     # Folder first: nobody should wait for a solve to learn that its place is taken.
     from axicfd.output import folder
 
@@ -70,4 +71,26 @@ def _report(result: Any, where: Path, arguments: argparse.Namespace) -> int:
             file=sys.stderr,
         )
         return exits.NOT_CONVERGED
-    return exits.SOLVED
+    return _decision(result.summary, arguments.strict)
+
+
+def _decision(summary: dict[str, Any], strict: bool) -> int:
+    """Whether the limits pass and, if strict, nothing stands in the way of using the answer."""
+    from axicfd.results.cautions import standing
+    from axicfd.results.limits import FAIL, PASS
+
+    limits = summary.get("limits") or {}
+    failed = [path for path, entry in limits.items() if entry["verdict"] == FAIL]
+    open_ones = [path for path, entry in limits.items() if entry["verdict"] not in (PASS, FAIL)]
+    said = [f"{_count(len(failed), 'limit')} failed: {', '.join(failed)}"] if failed else []
+    if strict and open_ones:
+        said.append(f"{_count(len(open_ones), 'limit')} not settled: {', '.join(open_ones)}")
+    if strict and (codes := sorted({str(caution["code"]) for caution in standing(summary["cautions"])})):
+        said.append(f"{_count(len(codes), 'caution')} not accepted: {', '.join(codes)}")
+    for sentence in said:
+        print(sentence, file=sys.stderr)
+    return exits.LIMIT_FAILED if said else exits.SOLVED
+
+
+def _count(n: int, what: str) -> str:
+    return f"{n} {what}{'s' if n > 1 else ''}"
