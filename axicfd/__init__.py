@@ -20,6 +20,7 @@ if TYPE_CHECKING:
     from axicfd.case.model import Case
     from axicfd.case.read import load
     from axicfd.errors import AxicfdError
+    from axicfd.output.sweep import sweep
     from axicfd.pipeline import solve
     from axicfd.results.result import Result
     from axicfd.variants.matters import what_matters
@@ -27,7 +28,7 @@ if TYPE_CHECKING:
 
 __version__ = VERSION
 
-__all__ = ["AxicfdError", "Case", "Result", "load", "solve", "wall_effect", "what_matters"]
+__all__ = ["AxicfdError", "Case", "Result", "load", "solve", "sweep", "wall_effect", "what_matters"]
 
 # Public name -> the module that holds it. No module at the top of the package bears one of these names:
 # importing it would put the module where the function should be.
@@ -37,6 +38,7 @@ _HOMES = {
     "Result": "axicfd.results.result",
     "load": "axicfd.case.read",
     "solve": "axicfd.pipeline",
+    "sweep": "axicfd.output.sweep",
     "wall_effect": "axicfd.variants.wall",
     "what_matters": "axicfd.variants.matters",
 }

@@ -125,6 +125,12 @@ def convert(values: Any, unit: str, kind: str) -> Any:
     return values / factor - offset
 
 
+def in_name(kind: str) -> str:
+    """The SI unit of a kind as the end of a column's name: "W/m^2/K" -> "W_m2K"."""
+    above, *below = KINDS[kind].si.replace("^", "").split("/")
+    return "_".join(part.replace(" ", "_") for part in (above, "".join(below)) if part)
+
+
 def _plain(number: float) -> str:
     text = repr(float(number))
     return text[:-2] if text.endswith(".0") else text

@@ -8,7 +8,8 @@ from axicfd.case.model import Case
 from axicfd.results.result import Result
 
 FOLDER = Path(__file__).parent.parent / "cases"
-NAMES = sorted(path.stem for path in FOLDER.glob("*.toml"))
+PLANS = sorted(FOLDER.glob("*-sweep.toml"))
+NAMES = sorted(path.stem for path in FOLDER.glob("*.toml") if path not in PLANS)
 COARSE = {"mesh.radial": 16, "mesh.axial": 96}
 
 

@@ -9,6 +9,7 @@ import pytest
 
 from axicfd.output import folder
 from axicfd.results.result import Result
+from axicfd.variants.plan import read_plan
 from tests import shipped
 from validation import ledger
 
@@ -101,3 +102,9 @@ def test_a_coarse_mesh_comes_close(name):
     for quantity, (value, tolerance) in EXPECTED[name].items():
         scale = value - result.fields["inlet_temperature"] if quantity.endswith("_K") else value
         assert result[quantity] == pytest.approx(value, abs=0.04 * abs(scale) + tolerance), quantity
+
+
+@pytest.mark.parametrize("path", shipped.PLANS, ids=lambda path: path.stem)
+def test_every_shipped_plan_makes_cases(path):
+    plan = read_plan(path)
+    assert len(plan.rows) > 1

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 import difflib
 import math
+import tomllib
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass, field
 from typing import Any
@@ -103,6 +104,16 @@ def toml_text(text: str) -> str:
         _ESCAPES.get(mark, mark if mark >= " " and mark != "\x7f" else f"\\u{ord(mark):04x}") for mark in text
     )
     return f'"{escaped}"'
+
+
+def toml_value(text: str) -> Any:
+    """What a word from outside a file means: TOML where it reads so, else the text itself ("4 g/s" without quotes)."""
+    try:
+        values = tomllib.loads(f"value = {text}")
+    except tomllib.TOMLDecodeError:
+        return text
+    # A line break could smuggle in further keys; such text is no TOML value.
+    return values["value"] if list(values) == ["value"] else text
 
 
 _ESCAPES = {'"': '\\"', "\\": "\\\\", "\n": "\\n", "\t": "\\t", "\r": "\\r"}

@@ -51,11 +51,8 @@ def load(case: str | os.PathLike, set: Mapping[str, Any] | None = None) -> Case:
     set : values to change, as `Case.replace` takes them, but with units as in the file
     Raises `InputError` with every mistake found.
     """
-    text, file, directory = _text_of(case)
-    try:
-        tree = tomllib.loads(text)
-    except tomllib.TOMLDecodeError as why:
-        raise InputError([_syntax_mistake(file, text, str(why))]) from None
+    text, file, directory = text_of(case)
+    tree = tables_of(text, file)
     settings: list[Place] = []
     if set:
         before = tree
@@ -70,7 +67,15 @@ def build(tree: Mapping[str, Any], source: Source | None = None, in_file: bool =
     return Case.model_validate(dict(tree), context={"source": source or Source(), keys.IN_FILE: in_file})
 
 
-def _text_of(case: str | os.PathLike) -> tuple[str, str | None, Path]:
+def tables_of(text: str, file: str | None) -> dict[str, Any]:
+    """The tables of a TOML text. Raises `InputError` with the line where it is none."""
+    try:
+        return tomllib.loads(text)
+    except tomllib.TOMLDecodeError as why:
+        raise InputError([_syntax_mistake(file, text, str(why))]) from None
+
+
+def text_of(case: str | os.PathLike) -> tuple[str, str | None, Path]:
     """(text, name of the file, folder that paths in it are relative to)."""
     if isinstance(case, str) and "\n" in case:
         return case, None, Path()
@@ -379,6 +384,8 @@ __all__ = [
     "load",
     "part_at",
     "plain",
+    "tables_of",
+    "text_of",
     "tolerances_in",
     "with_names",
 ]

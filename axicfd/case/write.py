@@ -16,8 +16,16 @@ from axicfd.case.read import declared
 
 def to_toml(case: Case) -> str:
     """The text of a case file that reads back as `case`."""
-    raw = case._tree
-    blocks = ["\n".join(_pairs(case, raw, ("limits", "accept")))]
+    return _text(case, case._tree)
+
+
+def canonical(case: Case) -> str:
+    """A text that two cases share exactly when they ask for the same solve: SI values, without the title."""
+    return _text(case, {}, leave_out=("title",))
+
+
+def _text(case: Case, raw: Any, leave_out: tuple[str, ...] = ()) -> str:
+    blocks = ["\n".join(_pairs(case, raw, ("limits", "accept", *leave_out)))]
     for kind in ("stream", "fluid", "solid"):
         for name, part in getattr(case, kind).items():
             blocks.append(_block(f"[{kind}.{toml_key(name)}]", _pairs(part, _inside(raw, kind, name))))

@@ -11,20 +11,21 @@ from typing import NoReturn
 
 from axicfd import __version__
 from axicfd.cli import exits
-from axicfd.cli.commands import check, draw, keys, materials, matters, new, solve, wall
+from axicfd.cli.commands import check, draw, keys, materials, matters, new, solve, sweep, wall
 from axicfd.errors import AxicfdError
 
 COMMANDS = {
     "new": new,
     "check": check,
     "solve": solve,
+    "sweep": sweep,
     "wall": wall,
     "matters": matters,
     "draw": draw,
     "materials": materials,
     "keys": keys,
 }
-LATER = ("sweep", "find", "spread", "compare", "report", "schema")
+LATER = ("find", "spread", "compare", "report", "schema")
 
 DESCRIPTION = """\
 Laminar flow and heat transfer in tubes and their walls: outlet temperature, pressure drop, hottest wall,

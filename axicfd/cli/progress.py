@@ -93,3 +93,47 @@ def say_if_cold() -> None:
 def grouped(count: int) -> str:
     """40960 -> "40 960"."""
     return f"{count:,}".replace(",", " ")
+
+
+class Rows:
+    """The same for many cases: one line for all of them, called after each."""
+
+    def __init__(self, stream: TextIO | None = None) -> None:
+        self._out = sys.stderr if stream is None else stream
+        self._in_place = self._out.isatty()
+        self._written = -PLAIN_EVERY
+        self._open = False
+
+    def __call__(self, event: Any) -> None:
+        now = time.monotonic()
+        last = event.done == event.rows
+        if self._in_place:
+            self._out.write("\r\x1b[K" + self.line(event))
+            self._open = True
+        elif last or now - self._written > PLAIN_EVERY:
+            self._out.write(self.line(event) + "\n")
+            self._written = now
+        self._out.flush()
+
+    def close(self) -> None:
+        """End the line that stands open on a terminal."""
+        if self._open:
+            self._out.write("\n")
+            self._out.flush()
+            self._open = False
+
+    def line(self, event: Any) -> str:
+        """`12 of 45 rows   1 not solved   2.5 min left`."""
+        parts = [f"{grouped(event.done)} of {grouped(event.rows)} rows"]
+        if event.failed:
+            parts.append(f"{grouped(event.failed)} not solved")
+        if event.left is not None and event.done < event.rows:
+            parts.append(f"{duration(event.left)} left")
+        return "   ".join(parts)
+
+
+def duration(seconds: float) -> str:
+    """42 -> "42 s", 150 -> "2.5 min", 9000 -> "2.5 h"."""
+    if seconds < 90:
+        return f"{seconds:.0f} s"
+    return f"{seconds / 60:.1f} min" if seconds < 5400 else f"{seconds / 3600:.1f} h"

@@ -172,3 +172,32 @@ def _fact(value: Any) -> str:
     if value is None:
         return ""
     return number(value) if isinstance(value, float) else str(value)
+
+
+SWEEP_ROWS = 12  # of the table of a sweep; all are in its files
+REASONS = 5  # of rows that are not solved
+
+
+def print_sweep(table: Any, where: str) -> None:
+    """The first rows of a sweep, those within their limits first, how many ended how and why, and where the rest is."""
+    from axicfd.output.sweep_lines import header_and_lines
+
+    out = console()
+    header, body = header_and_lines(table, everything=False)
+    solved = [line[:-1] for line in body if line[-1] == "solved"]
+    rows(out, header[:-1], solved[:SWEEP_ROWS], right=range(len(header) - 1))
+    if len(solved) > SWEEP_ROWS:
+        out.print(f"{len(solved) - SWEEP_ROWS} more solved rows")
+    out.print()
+    reasons: dict[str, list[str]] = {}
+    for row in table.rows:
+        if row["status"] != "solved":
+            reasons.setdefault(f"{row['status']}: {row['message']}", []).append(str(row["row"]))
+    for reason, numbers in list(reasons.items())[:REASONS]:
+        count = f"{len(numbers)} rows" if len(numbers) > 1 else f"row {numbers[0]}"
+        out.print(Text(f"{count} {reason}", style="bold"))
+    if len(reasons) > REASONS:
+        out.print(f"{len(reasons) - REASONS} more reasons in the table")
+    out.print(STANDING)
+    counts = ", ".join(f"{count} {status or 'not solved yet'}" for status, count in table.counts.items())
+    out.print(f"{len(table)} rows: {counts}; the table is {where}/sweep.csv, pictures with `axicfd draw {where}`")

@@ -105,7 +105,7 @@ def temperature_picture(result: Any) -> Figure:
     shown, fields, tube = shown_units(result.case), result.fields, result.layout
     stretch = _stretch(tube)
     height = _tube_height(tube, stretch, ruler=RULER * WIDTH)
-    figure = _figure(height + 2.8)
+    figure = new_figure(height + 2.8)
     total = figure.get_figheight()
     axes = figure.add_axes((LEFT, 1.95 / total, RULER, height / total))
     _prepare_tube(axes, tube, shown)
@@ -133,7 +133,7 @@ def temperature_picture(result: Any) -> Figure:
     bar_axes = figure.add_axes((0.25, 0.62 / total, 0.5, 0.14 / total))
     bar = figure.colorbar(mesh, cax=bar_axes, orientation="horizontal")
     bar.outline.set_visible(False)
-    bar.ax.xaxis.set_major_formatter(_plain_numbers())
+    bar.ax.xaxis.set_major_formatter(plain_numbers())
     bar.ax.tick_params(labelsize=10, color=SOFT_INK)
     bar.set_label(f"temperature, {shown.unit('temperature')}", fontsize=11, color=INK)
     _heading(figure, result, f"radius × {stretch}")
@@ -178,7 +178,7 @@ def _under_the_tube(result: Any, note: str, panels: Sequence[Callable[[Axes], No
     tube_height = _tube_height(tube, stretch, ruler=RULER * WIDTH)
     panel_height, gap, below, above = 1.5, 0.34, 1.0, 0.85
     total = below + len(panels) * (panel_height + gap) + tube_height + above
-    figure = _figure(total)
+    figure = new_figure(total)
 
     bottom = below + len(panels) * (panel_height + gap)
     tube_axes = figure.add_axes((LEFT, bottom / total, RULER, tube_height / total))
@@ -212,7 +212,7 @@ def _under_the_tube(result: Any, note: str, panels: Sequence[Callable[[Axes], No
 # --- paper --------------------------------------------------------------------------------------------------
 
 
-def _figure(height: float) -> Figure:
+def new_figure(height: float) -> Figure:
     figure = Figure(figsize=(WIDTH, height), facecolor="white")
     FigureCanvasAgg(figure)
     return figure
@@ -247,7 +247,7 @@ def _height_of_paper(axes: Axes) -> float:
     return float(axes.get_figure(root=True).get_figheight())  # type: ignore[union-attr]
 
 
-def _plain_numbers() -> FuncFormatter:
+def plain_numbers() -> FuncFormatter:
     """Numbers on a scale without offset or exponent."""
     return FuncFormatter(lambda value, _: f"{value:.10g}")
 

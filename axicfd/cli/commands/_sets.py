@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import argparse
-import tomllib
 from typing import Any
 
 from axicfd.errors import AxicfdError
@@ -22,6 +21,8 @@ def add_set(parser: argparse.ArgumentParser) -> None:
 
 def chosen(arguments: argparse.Namespace) -> dict[str, Any]:
     """Dotted path -> value, split at the first `=`; the value is TOML where it reads so, else a string."""
+    from axicfd.case.keys import toml_value
+
     found: dict[str, Any] = {}
     for text in arguments.set:
         key, sign, value = text.partition("=")
@@ -32,14 +33,5 @@ def chosen(arguments: argparse.Namespace) -> dict[str, Any]:
             )
         if key in found:
             raise AxicfdError(f"`--set {key}=...` is given twice. Give it once.")
-        found[key] = _read(value.strip())
+        found[key] = toml_value(value.strip())
     return found
-
-
-def _read(text: str) -> Any:
-    try:
-        values = tomllib.loads(f"value = {text}")
-    except tomllib.TOMLDecodeError:
-        return text
-    # A line break could smuggle in further keys; such text is no TOML value.
-    return values["value"] if list(values) == ["value"] else text
