@@ -24,11 +24,12 @@ if TYPE_CHECKING:
     from axicfd.pipeline import solve
     from axicfd.results.result import Result
     from axicfd.variants.matters import what_matters
+    from axicfd.variants.spread import spread
     from axicfd.variants.wall import wall_effect
 
 __version__ = VERSION
 
-__all__ = ["AxicfdError", "Case", "Result", "load", "solve", "sweep", "wall_effect", "what_matters"]
+__all__ = ["AxicfdError", "Case", "Result", "load", "solve", "spread", "sweep", "wall_effect", "what_matters"]
 
 # Public name -> the module that holds it. No module at the top of the package bears one of these names:
 # importing it would put the module where the function should be.
@@ -38,6 +39,7 @@ _HOMES = {
     "Result": "axicfd.results.result",
     "load": "axicfd.case.read",
     "solve": "axicfd.pipeline",
+    "spread": "axicfd.variants.spread",
     "sweep": "axicfd.output.sweep",
     "wall_effect": "axicfd.variants.wall",
     "what_matters": "axicfd.variants.matters",
@@ -60,6 +62,7 @@ def __getattr__(name: str) -> Any:
 _SHOWN = {
     "Result": ("axicfd.results.result", "Result", "axicfd.output.notebook", "html"),
     "solve": ("axicfd.results.result", "Result", "axicfd.output.notebook", "html"),
+    "spread": ("axicfd.variants.spread", "Spread", "axicfd.output.spread", "html"),
     "wall_effect": ("axicfd.variants.wall", "WallEffect", "axicfd.output.effects", "wall_html"),
     "what_matters": ("axicfd.variants.matters", "Assumptions", "axicfd.output.effects", "assumption_html"),
 }

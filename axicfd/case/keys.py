@@ -189,7 +189,7 @@ class Quantity(_Bounded):
             problems += [Problem(p.value, p.allowed, p.instead, (given[0],), p.looks_like) for p in bad.problems]
         if problems or found is None:
             raise BadValue(*problems)
-        tolerance = InputTolerance(found, half, given[0])
+        tolerance = InputTolerance(found, half, given[0], self.kind)
         for end in tolerance.reach:
             if self._outside(end) or (self.kind == "temperature" and end <= 0):
                 unit = units.split(value["value"])[1] if isinstance(value["value"], str) else units.KINDS[self.kind].si
@@ -293,16 +293,23 @@ class InputTolerance:
     half_width : with `plus_minus` the value lies within it, each place equally likely; with `std` the standard
                  deviation of a normal distribution
     given      : "plus_minus" or "std"
+    kind       : of the value, a key of `units.KINDS`
     """
 
     value: float
     half_width: float
     given: str
+    kind: str
 
     @property
     def std(self) -> float:
         """Standard deviation; that of a uniform distribution is its half-width over the root of 3."""
         return self.half_width if self.given == "std" else self.half_width / math.sqrt(3.0)
+
+    @property
+    def kind_of_width(self) -> str:
+        """Of the half-width."""
+        return "temperature_difference" if self.kind == "temperature" else self.kind
 
     @property
     def reach(self) -> tuple[float, float]:
@@ -317,9 +324,9 @@ def has_tolerance(value: Any) -> bool:
 
 
 def _read_entry(entry: Key, value: Any, in_file: bool) -> Any:
-    """One entry of a list or law; only values that stand alone take a tolerance."""
+    """A value inside a list or a law; only inputs that stand alone take a tolerance."""
     if has_tolerance(value):
-        raise entry.refuse(value, "has a tolerance inside a list or law", "Only one value alone takes a tolerance.")
+        raise entry.refuse(value, "has a tolerance inside a list or law", "Only an input that stands alone takes one.")
     return entry.read(value, in_file)
 
 

@@ -11,7 +11,7 @@ from typing import NoReturn
 
 from axicfd import __version__
 from axicfd.cli import exits
-from axicfd.cli.commands import check, draw, keys, materials, matters, new, solve, sweep, wall
+from axicfd.cli.commands import check, draw, keys, materials, matters, new, solve, spread, sweep, wall
 from axicfd.errors import AxicfdError
 
 COMMANDS = {
@@ -21,11 +21,12 @@ COMMANDS = {
     "sweep": sweep,
     "wall": wall,
     "matters": matters,
+    "spread": spread,
     "draw": draw,
     "materials": materials,
     "keys": keys,
 }
-LATER = ("find", "spread", "compare", "report", "schema")
+LATER = ("find", "compare", "report", "schema")
 
 DESCRIPTION = """\
 Laminar flow and heat transfer in tubes and their walls: outlet temperature, pressure drop, hottest wall,

@@ -98,7 +98,8 @@ def grouped(count: int) -> str:
 class Rows:
     """The same for many cases: one line for all of them, called after each."""
 
-    def __init__(self, stream: TextIO | None = None) -> None:
+    def __init__(self, stream: TextIO | None = None, of: str = "rows") -> None:
+        self._of = of
         self._out = sys.stderr if stream is None else stream
         self._in_place = self._out.isatty()
         self._written = -PLAIN_EVERY
@@ -124,7 +125,7 @@ class Rows:
 
     def line(self, event: Any) -> str:
         """`12 of 45 rows   1 not solved   2.5 min left`."""
-        parts = [f"{grouped(event.done)} of {grouped(event.rows)} rows"]
+        parts = [f"{grouped(event.done)} of {grouped(event.rows)} {self._of}"]
         if event.failed:
             parts.append(f"{grouped(event.failed)} not solved")
         if event.left is not None and event.done < event.rows:

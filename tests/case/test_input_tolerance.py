@@ -109,6 +109,11 @@ def test_an_end_with_a_tolerance_is_one_condition_for_all_layers():
             '{ at = "20 degC", value = { value = "1 Pa s", std = "5 %" }, exponent = "0.03 1/K" }',
             "inside a list or law",
         ),
+        (
+            "limits",
+            '{ "stream.oil.outlet_temperature" = { below = { value = "90 degC", std = "1 K" } } }',
+            "takes no tolerance",
+        ),
         ("fluid.oil.viscosity", '{ at = "20 degC", value = "1 Pa s", exponent = "0.03 1/K", std = "5 %" }', "law"),
     ],
 )
