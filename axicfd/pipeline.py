@@ -11,12 +11,12 @@ from typing import Any
 from axicfd.case.layout import layout
 from axicfd.case.model import Case
 from axicfd.given_drop import GivenDrop
-from axicfd.mesh.build import LEVELS, Family, family
+from axicfd.mesh.build import LEVELS, NEST, Family, family
 from axicfd.mesh.grid import Grid
 from axicfd.results import accuracy, cautions
 from axicfd.results.accuracy import Verdict
 from axicfd.results.axial import stream_view
-from axicfd.results.result import Result, make_result, with_accuracy
+from axicfd.results.result import Result, make_result, tree_with_bars, with_accuracy
 from axicfd.solver.solve import OnCheck, solve_on
 from axicfd.solver.state import Solution
 from axicfd.solver.warm_up import warm_up
@@ -128,6 +128,32 @@ class _Climb:
         coarse_z = solve_one(meshes.grid(medium + 1, medium), solutions[-2], below, None)
         return (coarse_r, coarse_z) if coarse_r.converged and coarse_z.converged else None
 
+    def factors(self, meshes: Family, result: Result, excess: dict[str, float], way: str) -> list[float]:
+        """How many times the cells each radial or axial segment should have.
+
+        On the third finest mesh one segment after the other is coarsened once more; each such solve takes a sixteenth
+        of the finest's cells.
+        """
+        segments = meshes.radial if way == "radial" else meshes.axial
+        refined = [k for k, segment in enumerate(segments) if segment.cells >= NEST]
+        changes: list[dict[str, float] | None] = [None] * len(refined)
+        if excess and len(refined) > 1 and len(result.nested) > 2:
+            changes = [self._change(meshes.coarsened(**{way: k}), result) for k in refined]
+        found = [1.0] * len(segments)
+        wanted = accuracy.factors(excess, [segments[k].cells for k in refined], changes)
+        for k, factor in zip(refined, wanted, strict=True):
+            found[k] = factor
+        return found
+
+    def _change(self, coarser: Family, result: Result) -> dict[str, float] | None:
+        """Difference of the quantities between the third finest mesh and the same one of a family with fewer cells."""
+        grid = coarser.grid(2 - self.halvings)
+        solution = _solver(self.case, coarser)(grid, result.solution, self.case.solve.stop_below, None)
+        if not solution.converged:
+            return None
+        tree = tree_with_bars(self.case, result.layout, solution)
+        return accuracy.changes(self.case, tree, result.nested[-3].tree)
+
     def ended(self, found: tuple[Result, Verdict], stopped_by: str | None, why: str, solves: int) -> Result:
         """The result with what came of the accuracy asked for."""
         result, verdict = found
@@ -159,11 +185,13 @@ def _accurate(case: Case, meshes: Family, climb: _Climb) -> Result:
             best = result, verdict
         if verdict.reached:
             return climb.ended(best, None, "", solves)
-        free = case.mesh.radial is None, case.mesh.axial is None
-        finer_r, finer_z = (verdict.finer_r if free[0] else 1.0), (verdict.finer_z if free[1] else 1.0)
-        if max(finer_r, finer_z) == 1.0:
+        excess_r = verdict.excess_r if case.mesh.radial is None else {}
+        excess_z = verdict.excess_z if case.mesh.axial is None else {}
+        if not excess_r and not excess_z:
             why = f"`radial` or `axial` in [mesh] fixes the mesh, of {meshes.cells} cells."
             return climb.ended(best, "mesh", why, solves)
+        finer_r = climb.factors(meshes, result, excess_r, "radial")
+        finer_z = climb.factors(meshes, result, excess_z, "axial")
         refined = meshes.refined(finer_r, finer_z, limit)
         if refined is None:
             break

@@ -5,10 +5,9 @@ face of the finest one (m < 0 refines it), so coarse faces are fine faces and a 
 The mesh chooses itself from the case; `[mesh]` keys override the choice.
 """
 
-from collections.abc import Callable
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
-from itertools import product
-from math import ceil, log, sqrt
+from math import ceil, sqrt
 
 import numpy as np
 
@@ -23,6 +22,8 @@ LEVELS = 5  # meshes climbed, the finest included
 CELLS = 40_000  # default number of cells of the finest mesh
 ROUGH_ACROSS = 8  # least cells from the axis to the bore's wall for a rough answer
 WORTHWHILE = 1.2  # least growth of the cells for which a finer family is solved
+LEFT_OUT = 0.3  # of NEST cells: so much of what a segment should have is not worth another NEST
+LARGEST_POWER = 100.0  # of refinement factors that are too small to change anything
 ACROSS_STREAM = 48  # cells from the axis to the bore's wall in CELLS cells
 ACROSS_SOLID = 8  # cells across a layer up to half as thick as the bore's radius
 STRETCH_TO_WALLS = 4.0  # largest over smallest cell across a layer
@@ -101,21 +102,40 @@ class Family:
         """
         return max((m for m in (1, 2) if self.counts["radial"] >= ROUGH_ACROSS * 2**m), default=0)
 
-    def refined(self, radial: float, axial: float, at_most: int) -> "Family | None":
-        """The family whose finest mesh has so many times the cells in each direction, as far as `at_most` allows.
+    def refined(self, radial: Sequence[float], axial: Sequence[float], at_most: int) -> "Family | None":
+        """The family whose segments have so many times the cells on the finest mesh.
 
-        None where that leaves hardly more cells than there are. The maps stay; counts stay multiples of NEST.
+        radial, axial : one factor >= 1 for each segment
+        Where that is more than `at_most` cells, all factors, or those of one direction alone, are less in proportion
+        of their logarithms; where it is hardly more than there are, they are larger. None where there is no such
+        family. The maps stay; counts stay multiples of NEST.
         """
-        if radial * axial > 1.0 and radial * axial * self.cells > at_most:  # less of both, in proportion
-            share = log(max(at_most / self.cells, 1.0)) / log(radial * axial)
-            radial, axial = radial**share, axial**share
-        ways: tuple[Callable[[float], int], ...] = (ceil, int)
-        tried = [
-            replace(self, radial=_more(self.radial, radial, up_r), axial=_more(self.axial, axial, up_z))
-            for up_r, up_z in product(ways, repeat=2)
-        ]
-        good = [finer for finer in tried if WORTHWHILE * self.cells <= finer.cells <= at_most]
+        enough = WORTHWHILE * self.cells
+        if self._finer(radial, axial, 1.0).cells < enough:
+            below = self._finer_below(radial, axial, enough, LARGEST_POWER)
+            tried = [self._finer(radial, axial, below * (1.0 + 1e-6))]
+        else:
+            ways = (radial, axial), (radial, [1.0] * len(axial)), ([1.0] * len(radial), axial)
+            tried = [self._finer(*way, self._finer_below(*way, at_most + 1, 1.0)) for way in ways]
+        good = [finer for finer in tried if enough <= finer.cells <= at_most]
         return max(good, key=lambda finer: finer.cells, default=None)
+
+    def _finer(self, radial: Sequence[float], axial: Sequence[float], power: float) -> "Family":
+        return replace(self, radial=_more(self.radial, radial, power), axial=_more(self.axial, axial, power))
+
+    def _finer_below(self, radial: Sequence[float], axial: Sequence[float], cells: float, largest: float) -> float:
+        """The largest power of the factors with fewer cells than given; cells grow with it by steps."""
+        if self._finer(radial, axial, largest).cells < cells:
+            return largest
+        low, high = 0.0, largest
+        for _ in range(40):
+            power = 0.5 * (low + high)
+            low, high = (power, high) if self._finer(radial, axial, power).cells < cells else (low, power)
+        return low
+
+    def coarsened(self, radial: int | None = None, axial: int | None = None) -> "Family":
+        """The family with half the cells in one segment, given by its number along r or along z."""
+        return replace(self, radial=_halved(self.radial, radial), axial=_halved(self.axial, axial))
 
     def like(self, other: "Family") -> "Family":
         """This family with the counts and maps of another one, segment by segment from the axis and from z = 0.
@@ -268,12 +288,18 @@ def coarser(grid: Grid) -> Grid | None:
     return _grid(grid.layout, frozen(z), frozen(r), tuple(grid.z[i] for i in grid.joints))
 
 
-def _more(segments: tuple[Segment, ...], factor: float, rounded: Callable[[float], int]) -> tuple[Segment, ...]:
-    """Segments with so many times the cells; those with fewer than NEST cells, the voids, stay as they are."""
+def _more(segments: tuple[Segment, ...], factors: Sequence[float], power: float) -> tuple[Segment, ...]:
+    """Segments with factor^power times the cells; those with fewer than NEST cells, the voids, stay as they are."""
     return tuple(
-        replace(s, cells=NEST * max(s.cells // NEST, rounded(s.cells * factor / NEST))) if s.cells >= NEST else s
-        for s in segments
+        replace(s, cells=NEST * max(s.cells // NEST, ceil(s.cells * f**power / NEST - LEFT_OUT)))
+        if s.cells >= NEST
+        else s
+        for s, f in zip(segments, factors, strict=True)
     )
+
+
+def _halved(segments: tuple[Segment, ...], one: int | None) -> tuple[Segment, ...]:
+    return tuple(replace(s, cells=s.cells // 2) if k == one else s for k, s in enumerate(segments))
 
 
 def _as_there(own: Segment, there: Segment) -> Segment:

@@ -18,7 +18,8 @@ from axicfd.mesh.grid import NOTHING
 from axicfd.solver.state import Solution
 
 SMALLEST_TEMPERATURE = 1e-6  # K; a smaller scale is zero: nothing is refined for a share of it
-FINER, FINEST = 1.25, 2.0  # least and most refinement of a direction at a time
+FINEST = 2.0  # most refinement of a segment at a time
+HOPELESS = 1e6  # excess of a quantity that has no half-width yet, or a very large one
 
 PER_CENT_OF_ALL = {(part, key) for part, known in HEADLINE.items() for key in known if part != "sensor"}
 PER_CENT_OF_ALL |= {("stream", "mass_flow_kg_s")}  # where it is found from a pressure drop
@@ -57,12 +58,16 @@ class Judged:
 
 @dataclass(frozen=True)
 class Verdict:
-    """The quantities asked for by their dotted path, with the refinement that would do along r and along z."""
+    """The quantities asked for by their dotted path.
+
+    excess_r, excess_z : what r and z add to a half-width, over half of what is allowed; of quantities outside it, where
+                         it is more than 1
+    """
 
     quantity: dict[str, Judged]
     scale: dict[str, Any]
-    finer_r: float
-    finer_z: float
+    excess_r: dict[str, float]
+    excess_z: dict[str, float]
 
     @property
     def worst(self) -> str | None:
@@ -82,13 +87,12 @@ class Verdict:
 def judge(case: Case, summary: dict[str, Any], solution: Solution) -> Verdict:
     """Hold the mesh errors of a solved case against the accuracy it asks for.
 
-    Each direction is refined until its share of a half-width is below half of what is allowed, as if half-widths
-    went with the square of the cell size; the direction with the larger share so comes first.
+    Each direction may have half of what is allowed, so that the one with the larger share is refined first.
     """
     bars = summary.get("numerical_uncertainty") or {}
     scale = scales(summary, solution)
     found: dict[str, Judged] = {}
-    finer = [1.0, 1.0]
+    excess: tuple[dict[str, float], dict[str, float]] = {}, {}
     for asked, tolerance in _asked(case, summary).items():
         allowed = _allowed(tolerance, asked, summary, scale)
         if allowed is None:
@@ -102,8 +106,44 @@ def judge(case: Case, summary: dict[str, Any], solution: Solution) -> Verdict:
         for k, error in enumerate(errors):
             share = 0.5 if error is None or total == 0.0 else abs(error) / total
             if 2.0 * share * judged.ratio > 1.0:
-                finer[k] = max(finer[k], FINER, min(FINEST, math.sqrt(2.0 * share * judged.ratio)))
-    return Verdict(found, scale, *finer)
+                excess[k][".".join(asked.keys)] = 2.0 * share * judged.ratio
+    return Verdict(found, scale, *excess)
+
+
+def changes(case: Case, tree: dict[str, Any], other: dict[str, Any]) -> dict[str, float]:
+    """Values of one tree less those of another, of the quantities that both have, by their place in the tree."""
+    both = [(".".join(q.keys), q.of(tree), q.of(other)) for q in with_mesh_error(case, tree)]
+    return {path: a - b for path, a, b in both if a is not None and b is not None}
+
+
+def factors(excess: dict[str, float], cells: list[int], changes: list[dict[str, float] | None]) -> list[float]:
+    """How many times the cells each segment of one direction should have, at most FINEST at a time.
+
+    excess  : as in `Verdict`
+    cells   : of each segment
+    changes : how the quantities change where that segment alone is coarser; None where it is not known. The excess of a
+              quantity is shared out like them; alike to all cells where one is missing
+    The fewest cells for which what is left of the excess, by the square of the cell size, is 1: segments are refined
+    like the cube root of their share per cell. None is left far behind the others, or the changes from mesh to mesh no
+    longer look like second order: each gets at least the square root of the largest factor.
+    """
+    most = [1.0] * len(cells)
+    for path, amount in excess.items():
+        found = [(change or {}).get(path, math.nan) for change in changes]
+        shares = np.abs(found)
+        if not shares.sum() > 0.0:  # nan where one is missing
+            shares = np.array(cells, dtype=float)
+        amount = min(amount, HOPELESS)
+        shares *= amount / shares.sum()
+        way = np.cbrt(shares / cells)
+        low, high = 0.0, math.sqrt(amount) / way[way > 0.0].min()
+        for _ in range(60):
+            middle = 0.5 * (low + high)
+            enough = float((shares / np.maximum(1.0, middle * way) ** 2).sum()) <= 1.0
+            low, high = (low, middle) if enough else (middle, high)
+        most = [max(a, min(FINEST, high * b)) for a, b in zip(most, way.tolist(), strict=True)]
+    least = max(most, default=1.0) ** 0.5
+    return [max(a, least) for a in most]
 
 
 def as_summary(verdict: Verdict, stopped_by: str | None, why: str, solves: int) -> dict[str, Any]:

@@ -84,6 +84,12 @@ class Result:
         return f"<Result of {self.case.title!r}:{state} {self.summary['cells']} cells>"
 
 
+def tree_with_bars(case: Case, layout: Layout, solution: Solution) -> dict[str, Any]:
+    """The parts of the summary that get mesh errors, of one solution."""
+    tree = summary.summary(case, layout, solution, axial.stream_views(case, solution))
+    return {key: tree[key] for key in WITH_BARS}
+
+
 def make_result(
     case: Case,
     meshes: Family,

@@ -226,13 +226,18 @@ def test_one_direction_may_be_coarser_than_the_other():
     np.testing.assert_array_equal(grid.r, f.grid(2).r)
 
 
+def alike(f, radial, axial):
+    """The same factor for every segment of a direction."""
+    return [radial] * len(f.radial), [axial] * len(f.axial)
+
+
 def test_a_refined_family_keeps_maps_and_nests():
     f = jacketed()
-    finer = f.refined(2.0, 1.0, 10 * f.cells)
+    finer = f.refined(*alike(f, 2.0, 1.0), 10 * f.cells)
     np.testing.assert_array_equal(finer.grid(0).z, f.grid(0).z)
     np.testing.assert_allclose(finer.grid(1).r, f.grid(0).r, rtol=1e-14)
     assert 1.9 * f.cells < finer.cells == finer.grid().cells <= 2 * f.cells  # the void keeps its one cell
-    odd = f.refined(1.0, 1.3, 10 * f.cells)
+    odd = f.refined(*alike(f, 1.0, 1.4), 10 * f.cells)
     assert all(s.cells % 8 == 0 and a.cells < s.cells for a, s in zip(f.axial, odd.axial, strict=True))
     assert set(odd.grid(3).z) <= set(odd.grid(0).z)
 
@@ -240,11 +245,35 @@ def test_a_refined_family_keeps_maps_and_nests():
 @pytest.mark.parametrize("room", [1.5, 2.5, 3.7])
 def test_refining_stays_below_at_most(room):
     f = jacketed()
-    finer = f.refined(2.0, 2.0, int(room * f.cells))
+    finer = f.refined(*alike(f, 2.0, 2.0), int(room * f.cells))
     assert 1.2 * f.cells <= finer.cells <= room * f.cells
 
 
 def test_where_there_is_no_room_nothing_is_refined():
     f = jacketed()
-    assert f.refined(2.0, 2.0, int(1.1 * f.cells)) is None
-    assert f.refined(2.0, 2.0, f.cells // 2) is None
+    assert f.refined(*alike(f, 2.0, 2.0), int(1.1 * f.cells)) is None
+    assert f.refined(*alike(f, 2.0, 2.0), f.cells // 2) is None
+
+
+def test_one_segment_may_be_refined_alone():
+    f = jacketed()
+    radial, axial = alike(f, 1.0, 1.0)
+    radial[0] = 2.0
+    finer = f.refined(radial, axial, 10 * f.cells)
+    assert finer.radial[0].cells == 2 * f.radial[0].cells and finer.radial[1:] == f.radial[1:]
+    assert finer.axial == f.axial
+
+
+def test_a_refinement_too_small_to_be_worth_it_is_made_larger():
+    f = jacketed()
+    finer = f.refined(*alike(f, 1.0, 1.01), 10 * f.cells)
+    assert 1.2 * f.cells <= finer.cells < 1.5 * f.cells
+    assert f.refined(*alike(f, 1.0, 1.0), 10 * f.cells) is None
+
+
+def test_one_segment_may_be_coarser():
+    f = jacketed()
+    coarser = f.coarsened(axial=0)
+    assert 2 * coarser.axial[0].cells == f.axial[0].cells
+    assert coarser.axial[1:] == f.axial[1:] and coarser.radial == f.radial
+    assert set(coarser.grid(2).z) <= set(f.grid(2).z)

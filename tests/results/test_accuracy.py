@@ -68,7 +68,7 @@ def test_per_cent_ask_for_every_headline_quantity_and_no_sensor():
         "section.lead-in.heat_in_W": 0.135,
         "section.heater.heat_in_W": 0.135,
     })  # fmt: skip
-    assert found.reached and (found.finer_r, found.finer_z) == (1.0, 1.0)
+    assert found.reached and found.excess_r == found.excess_z == {}
 
 
 def test_a_path_counts_before_a_name_and_only_named_quantities_count():
@@ -81,20 +81,51 @@ def test_a_path_counts_before_a_name_and_only_named_quantities_count():
 
 
 @pytest.mark.parametrize(
-    "r, z, finer",
+    "r, z, excess",
     [
-        (1.0, 0.0, (2.0, 1.0)),  # all of it from r: 2 * 3 -> at most 2
-        (0.0, -1.0, (1.0, 2.0)),
-        (0.1, 0.9, (1.0, 2.0)),  # r's share of the bar, 0.3 allowed ones, is below half: left alone
-        (0.25, 0.75, (1.25, 2.0)),  # sqrt(2 * 0.25 * 3) = 1.22, no less than the smallest step
-        (None, None, (3.0**0.5, 3.0**0.5)),  # unknown: both alike
+        (1.0, 0.0, (6.0, None)),  # all of three allowed ones from r, which may have half of one
+        (0.0, -1.0, (None, 6.0)),
+        (0.1, 0.9, (None, 5.4)),  # r's share of the bar, 0.3 allowed ones, is below half: left alone
+        (0.25, 0.75, (1.5, 4.5)),
+        (None, None, (3.0, 3.0)),  # unknown: both alike
     ],
 )
-def test_the_direction_with_the_larger_share_is_refined(r, z, finer):
+def test_each_direction_may_have_half_of_what_is_allowed(r, z, excess):
     key = "pressure_drop_Pa"
     found = judge(case("1 %"), tree({key: r}, {key: z}, pressure_drop_Pa=12.0), SOLUTION)
     assert found.worst == "stream.water.pressure_drop_Pa"
-    assert (found.finer_r, found.finer_z) == pytest.approx(finer)
+    assert (found.excess_r.get(found.worst), found.excess_z.get(found.worst)) == pytest.approx(excess)
+
+
+def test_segments_are_refined_so_that_the_excess_goes_with_the_fewest_cells():
+    """Against a search over all pairs of factors, errors like the square of the cell size."""
+    cells, shares = [40, 8], [2.5, 0.5]
+    found = accuracy.factors({"a": 3.0}, cells, [{"a": 5.0}, {"a": -1.0}])
+    assert sum(share / f**2 for share, f in zip(shares, found, strict=True)) == pytest.approx(1.0)
+    first = np.linspace(1.0, 2.0, 2001)
+    left = 1.0 - shares[0] / first**2
+    other = np.maximum(1.0, np.sqrt(shares[1] / np.where(left > 0.0, left, np.nan)))
+    best = np.nanmin(cells[0] * first + cells[1] * other)
+    assert cells[0] * found[0] + cells[1] * found[1] == pytest.approx(best, rel=1e-4)
+
+
+def test_a_segment_without_a_share_keeps_up_by_half():
+    assert accuracy.factors({"a": 2.0}, [8, 8], [{"a": 0.3}, {"a": 0.0}]) == pytest.approx([2.0**0.5, 2.0**0.25])
+
+
+def test_what_is_not_known_is_shared_alike_by_all_cells():
+    assert accuracy.factors({"a": 3.0}, [40, 8], [{"a": 1.0}, None]) == pytest.approx([3.0**0.5] * 2)
+    assert accuracy.factors({"a": 3.0}, [40, 8], [{"a": 0.0}, {"a": 0.0}]) == pytest.approx([3.0**0.5] * 2)
+    assert accuracy.factors({"a": 100.0}, [40], [None]) == [accuracy.FINEST]
+    assert accuracy.factors({}, [40, 8], [None, None]) == [1.0, 1.0]
+
+
+def test_changes_are_of_what_both_have():
+    other = {part: dict(entries) for part, entries in TREE.items()} | {"layer": {"tube": {"hottest_K": 310.0}}}
+    other["stream"] = {"water": {"pressure_drop_Pa": None, "heat_gain_W": 9.0}}
+    found = accuracy.changes(case("1 %"), TREE, other)
+    assert found["layer.tube.hottest_K"] == 3.0 and found["stream.water.heat_gain_W"] == -1.0
+    assert "stream.water.pressure_drop_Pa" not in found and "stream.water.outlet_temperature_K" not in found
 
 
 def test_nothing_is_refined_for_a_share_of_nothing():
