@@ -1,6 +1,7 @@
 """From a case to a result: the climb over meshes, what is told on the way, and what a Result is."""
 
 import dataclasses
+import pickle
 
 import numpy as np
 import pytest
@@ -53,8 +54,14 @@ def test_result_is_read_only(result):
 def test_quantities_by_their_path(result):
     assert result["stream.water.outlet_temperature_K"] == result.summary["stream"]["water"]["outlet_temperature_K"]
     assert result["section.heater.heat_in_W"] == pytest.approx(5.0)
-    with pytest.raises(KeyError):
-        result["stream.water.colour"]
+    assert result["stream.water.outlet_temperature"] == result["stream.water.outlet_temperature_K"]
+    assert result["balance.energy"] == result.summary["balance"]["energy"]
+    for wrong in ("stream.water.colour", "balance.heat", "a..b"):
+        with pytest.raises(KeyError):
+            result[wrong]
+    with pytest.raises(axicfd.AxicfdError, match="Write stream.water.outlet_temperature") as error:
+        result["stream.water.outlet_temprature"]
+    assert pickle.loads(pickle.dumps(error.value)).mistakes == error.value.mistakes
 
 
 def test_axial_curves_have_the_promised_columns(result):

@@ -192,7 +192,10 @@ def quantity(case: Case, path: str) -> ResultQuantity:
             by_path[dotted(known.keys[:2])] = known
         elif known.keys[0] == NAMED:
             by_path[dotted((*known.keys[:2], quantity_name(known.key)))] = known
-    steps = dotted(steps_of(path))
+    try:
+        steps = dotted(steps_of(path))
+    except InputError as no_path:
+        raise UnknownQuantity(no_path.mistakes) from None
     if steps in by_path:
         return by_path[steps]
     raise _unknown(path, steps, by_path)
@@ -322,6 +325,19 @@ def kind_of_sum(plus: Sequence[str], minus: Sequence[str]) -> str:
     if added - taken not in (0, 1):
         raise ValueError(f"adds {added} {absolute}s and takes {taken} away, which would depend on the zero point")
     return absolute if added > taken else difference
+
+
+def terms_of(case: Case, of: ResultQuantity) -> dict[ResultQuantity, int]:
+    """What a combination comes to: quantity -> how often it is added, negative where it is taken away."""
+    if of.combined is None:
+        return {of: 1}
+    terms: dict[ResultQuantity, int] = {}
+    combined = case.quantity[of.keys[1]]
+    for sign, paths in ((1, combined.plus), (-1, combined.minus)):
+        for path in paths:
+            for term, times in terms_of(case, quantity(case, path)).items():
+                terms[term] = terms.get(term, 0) + sign * times
+    return terms
 
 
 def kinds_in(tree: Any) -> dict[str, str | None]:

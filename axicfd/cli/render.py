@@ -88,7 +88,7 @@ def print_result(result: Any, hand: dict[str, float] | None, verbose: bool, wher
     rows(out, header, body, right=(2,))
     out.print()
     for verdict, sentence in verdicts.sentences(result, shown):
-        out.print(Text(f"limit: {sentence}", style="" if verdict == PASS else "bold"))
+        out.print(Text(f"limit: {sentence}", style="" if verdict == PASS else "bold"), soft_wrap=True)
     if hand:
         out.print("By hand: constant inlet properties, no conduction along the wall, section by section.")
     if not bars:

@@ -9,6 +9,7 @@ from typing import Any
 
 from axicfd.glossary import Reported, named_row, quantity_name, summary_row
 from axicfd.output.shown import Shown
+from axicfd.results.uncertainty import EXACT
 
 STREAM_ROWS = (
     "outlet_temperature_K",
@@ -97,7 +98,8 @@ def _of_parts(
 ) -> Iterator[Line]:
     for name, entries in (summary.get(kind) or {}).items():
         owner = f"{kind} {name}" if kind in ("section", "sensor") else name
-        is_found = bool(_entry(summary.get("numerical_uncertainty"), (kind, name, FLOW)))
+        how = _entry(summary, ("numerical_uncertainty", "rule", kind, name, FLOW))
+        is_found = how is not None and how != EXACT
         for key in (FLOW, *keys) if is_found and not everything else keys:
             idle = kind == "section" and entries.get(key) == 0.0
             if key in entries and (everything or (_has_value(entries[key]) and not idle)):

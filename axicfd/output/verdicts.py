@@ -14,6 +14,7 @@ from axicfd.results.limits import NOT_JUDGED, PASS, TOO_CLOSE
 
 ASK_FOR = 0.5  # of the margin: the mesh error that would settle a limit if the value stayed
 HOPELESS = 0.01  # of the mesh error: that much closer takes some hundred times the cells
+EVERY_DIGIT = -99  # decade of the last digit that may be shown
 
 
 def sentences(result: Any, shown: Shown) -> Iterator[tuple[str, str]]:
@@ -51,7 +52,7 @@ def _verdict(limited: ResultQuantity, entry: dict[str, Any], shown: Shown) -> st
         side = "within" if margin >= 0.0 else "beyond"
         text = f"{verdict}, {size_text} {unit} {side}, mesh error ±{width_text} {unit}"
         return f"{text}; {_ask(limited, size, width, shown)}"
-    width_text = with_bar(0.0, width)[1]  # of its own digits: a wide margin needs none of them
+    width_text = with_bar(size or width, width, EVERY_DIGIT)[1]  # to its own digits, the margin needs none of them
     word = "margin" if verdict == PASS else "by"
     return f"{verdict}, {word} {number(size, 3)} {unit} (mesh ±{width_text} {unit})"
 

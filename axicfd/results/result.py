@@ -1,5 +1,6 @@
 """Result: the case, its fields, curves and headline quantities; read-only."""
 
+import math
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -7,7 +8,7 @@ import numpy as np
 
 from axicfd.case.layout import Layout
 from axicfd.case.model import Case
-from axicfd.case.quantities import quantity
+from axicfd.case.quantities import quantities, quantity, terms_of
 from axicfd.errors import UnknownQuantity
 from axicfd.mesh.build import Family
 from axicfd.mesh.grid import NOTHING, frozen
@@ -131,6 +132,7 @@ def make_result(
         least = least_widths(case, trees[-1], solution, views[-1])
         values, widths, hows = uncertainty.estimate_tree(parts, least)
         along = _told_apart(case, layout, trees[-2], halves, widths, hows) if halves is not None else {}
+        _from_terms(case, values, widths, hows)
         extrapolated = {
             "finest_mesh": parts[-1],
             "numerical_uncertainty": {
@@ -201,6 +203,25 @@ def _told_apart(
             _put(widths, q.keys, found.opposed)
             how["rule"] = f"{how['rule']}, {uncertainty.OPPOSED}"
     return along
+
+
+def _from_terms(case: Case, values: dict[str, Any], widths: dict[str, Any], hows: dict[str, Any]) -> None:
+    """Give combinations the sums of the values and half-widths of their terms, where that says more.
+
+    The differences of a sequence that hardly changes may look like those of no order, and its terms still be known.
+    """
+    for of in quantities(case, headline_only=True):
+        if of.combined is None:
+            continue
+        terms, own = terms_of(case, of), of.of(widths)
+        found = [(times, term.of(values), term.of(widths)) for term, times in terms.items() if times]
+        known = [(times, value, half) for times, value, half in found if value is not None and half is not None]
+        half = math.fsum(abs(times) * half for times, _, half in known)
+        if own is None or len(known) < len(found) or half >= own:
+            continue
+        _put(values, of.keys, math.fsum(times * value for times, value, _ in known))
+        _put(widths, of.keys, half)
+        _branch(hows, of.keys)["rule"] = uncertainty.TERMS
 
 
 def _branch(tree: dict[str, Any], path: tuple[str, ...]) -> dict[str, Any]:

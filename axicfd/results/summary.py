@@ -12,7 +12,7 @@ import numpy as np
 from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout, PlacedSection
 from axicfd.case.model import Case
-from axicfd.case.quantities import ResultQuantity, quantities, quantity
+from axicfd.case.quantities import quantities, terms_of
 from axicfd.mesh.grid import SOLID, Array, Piece
 from axicfd.results import lines
 from axicfd.results.axial import StreamView
@@ -346,24 +346,15 @@ def _sensor(case: Case, solution: Solution, views: dict[str, StreamView], sensor
 def _combinations(case: Case, tree: dict[str, Any]) -> dict[str, Any]:
     """The case's own quantities: what they add less what they take away, from the values of this tree."""
     found: dict[str, Any] = {}
-
-    def value(of: ResultQuantity) -> float | None:
-        return entry(of)[of.key] if of.combined is not None else of.of(tree)
-
-    def entry(of: ResultQuantity) -> dict[str, Any]:
-        name = of.keys[1]
-        if name not in found:
-            sides = case.quantity[name].plus, case.quantity[name].minus
-            terms = [[(path, value(quantity(case, path))) for path in side] for side in sides]
-            missing = [path for side in terms for path, v in side if v is None]
-            plus, minus = ([v for _, v in side if v is not None] for side in terms)
-            total = None if missing else math.fsum([*plus, *(-v for v in minus)])
-            found[name] = {of.key: total, "kind": of.kind}
-            if missing:
-                found[name]["why"] = {of.key: f"{missing[0]} has no value"}
-        return found[name]
-
-    return {of.keys[1]: entry(of) for of in quantities(case, headline_only=True) if of.combined is not None}
+    for of in quantities(case, headline_only=True):
+        if of.combined is None:
+            continue
+        values = {term: term.of(tree) for term in terms_of(case, of)}
+        missing = [term.path for term, value in values.items() if value is None]
+        total = math.fsum(times * (values[term] or 0.0) for term, times in terms_of(case, of).items())
+        entry = {of.key: None if missing else total, "kind": of.kind}
+        found[of.keys[1]] = entry | ({"why": {of.key: f"{missing[0]} has no value"}} if missing else {})
+    return found
 
 
 # ------------------------------------------------------------------------------------------------ ledger

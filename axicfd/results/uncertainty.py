@@ -30,6 +30,7 @@ UNDONE, UNDONE_ELSE = 5.0, 300.0
 
 EXTRAPOLATED, FINEST, OSCILLATES, EXACT = "extrapolated", "finest", "oscillates", "exact"
 SPACING = "spacing"  # a place: known to a cell of the finest mesh, or to the stretch where its curve is flat
+TERMS = "sum of terms"  # a combination whose terms are known better than its own sequence tells
 OPPOSED = "r and z opposed"  # added to a rule where the errors of the two directions cancel and widen the half-width
 # Coarsening the medium mesh in one direction changes a value by three of its errors there, twelve of the finest mesh's
 TWELVE = 12.0

@@ -49,3 +49,17 @@ def test_bars_stand_beside_their_values():
 def test_bars_are_differences_in_the_users_unit():
     """0.05 K is 0.09 degF, without the zero point of the scale."""
     assert lines(TEXT.replace('"20 degC"', '"68 degF"'))["stream.syrup.outlet_temperature"].bar == "±0.09 (mesh)"
+
+
+def test_idle_sections_are_left_out_and_own_quantities_and_generated_heat_are_shown():
+    result = made_up()
+    own = {"signal": {"value_K": 3.5, "kind": "temperature_difference"}, "none": {"value_W": None, "kind": "heat"}}
+    ledger = {**result.summary["ledger"], "generated": {"tube": 5.0, "syrup": 0.0}}
+    summary = {**result.summary, "quantity": own, "ledger": ledger}
+    names = {line.name: line for line in headline(summary, shown_units(result.case))}
+    assert "section.lead-in.heat_in" not in names and "section.jacket.heat_in" in names
+    assert names["quantity.signal"].text == "3.5 K" and names["quantity.signal"].owner == "quantity signal"
+    assert "quantity.none" not in names and "ledger.generated.syrup" not in names
+    assert names["ledger.generated.tube"].text == "5 W" and names["ledger.generated.tube"].owner == "tube"
+    everything = {line.name for line in headline(summary, shown_units(result.case), everything=True)}
+    assert {"section.lead-in.heat_in", "quantity.none"} <= everything

@@ -214,6 +214,24 @@ def test_reynolds_along_the_tube():
         assert len(coded(found, "reynolds")) == count
 
 
+def test_a_reynolds_number_above_4000_runs_where_it_is_accepted():
+    """The caution stays, with the reason."""
+    accepted = changed(("reynolds = 100", "reynolds = 5000")) + '[accept]\nreynolds = "a smooth entry"\n'
+    found = only(cautions.before(load(accepted)), "reynolds")
+    assert found["found"] == pytest.approx(5000) and found["accepted"] == "a smooth entry"
+    thin = load(accepted).replace({"stream.liquid.reynolds": 100.0, "fluid.liquid.viscosity": "0.01 mPa s"})
+    _, tube, _, _, solution = solved()
+    assert cautions.refusal(thin, tube, solution) is None
+    refused = cautions.refusal(thin.replace({"accept": None}), tube, solution)
+    assert "Reynolds" in refused and "[accept]" in refused
+
+
+def test_what_is_accepted_does_not_stand():
+    found = after(TUBE + '[accept]\nfree-convection = "seen"\ncopper-kind = "not there"\n')
+    assert only(found, "free-convection")["accepted"] == "seen"
+    assert {c["code"] for c in found} - {c["code"] for c in cautions.standing(found)} == {"free-convection"}
+
+
 def test_reynolds_above_4000_at_the_hot_end_is_refused_after_it():
     case, tube, _, _, solution = solved()
     for exponent, refused in ((0.4, False), (0.5, True)):
