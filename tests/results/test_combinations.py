@@ -80,7 +80,7 @@ def test_a_combination_is_known_no_worse_than_its_terms_tell(sensor):
     bars, rules = (sensor.summary["numerical_uncertainty"][k] for k in ("quantity", "rule"))
     each = [sensor.summary["numerical_uncertainty"]["sensor"][name]["temperature_K"] for name in ("before", "behind")]
     assert 0.0 < bars["signal"]["value_K"] <= sum(each)
-    # here its own sequence says less: the two sensors settle, their difference still turns
+    # here its own sequence says less: its changes do not quite have the ratio of second order, those of its terms do
     assert rules["quantity"]["signal"]["value_K"] == "sum of terms"
 
 
