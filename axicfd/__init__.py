@@ -20,16 +20,30 @@ if TYPE_CHECKING:
     from axicfd.case.model import Case
     from axicfd.case.read import load
     from axicfd.errors import AxicfdError
+    from axicfd.output.comparison import compare
     from axicfd.output.sweep import sweep
     from axicfd.pipeline import solve
     from axicfd.results.result import Result
+    from axicfd.variants.find import find
     from axicfd.variants.matters import what_matters
     from axicfd.variants.spread import spread
     from axicfd.variants.wall import wall_effect
 
 __version__ = VERSION
 
-__all__ = ["AxicfdError", "Case", "Result", "load", "solve", "spread", "sweep", "wall_effect", "what_matters"]
+__all__ = [
+    "AxicfdError",
+    "Case",
+    "Result",
+    "compare",
+    "find",
+    "load",
+    "solve",
+    "spread",
+    "sweep",
+    "wall_effect",
+    "what_matters",
+]
 
 # Public name -> the module that holds it. No module at the top of the package bears one of these names:
 # importing it would put the module where the function should be.
@@ -37,6 +51,8 @@ _HOMES = {
     "AxicfdError": "axicfd.errors",
     "Case": "axicfd.case.model",
     "Result": "axicfd.results.result",
+    "compare": "axicfd.output.comparison",
+    "find": "axicfd.variants.find",
     "load": "axicfd.case.read",
     "solve": "axicfd.pipeline",
     "spread": "axicfd.variants.spread",
@@ -63,6 +79,8 @@ _SHOWN = {
     "Result": ("axicfd.results.result", "Result", "axicfd.output.notebook", "html"),
     "solve": ("axicfd.results.result", "Result", "axicfd.output.notebook", "html"),
     "spread": ("axicfd.variants.spread", "Spread", "axicfd.output.spread", "html"),
+    "compare": ("axicfd.output.comparison", "Comparison", "axicfd.output.comparison", "html"),
+    "find": ("axicfd.variants.find", "Found", "axicfd.output.finding", "html"),
     "wall_effect": ("axicfd.variants.wall", "WallEffect", "axicfd.output.effects", "wall_html"),
     "what_matters": ("axicfd.variants.matters", "Assumptions", "axicfd.output.effects", "assumption_html"),
 }

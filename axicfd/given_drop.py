@@ -8,8 +8,6 @@ import math
 from collections.abc import Callable
 from dataclasses import replace
 
-from scipy.optimize import brentq
-
 from axicfd import units
 from axicfd.case.model import Case
 from axicfd.errors import RefusedModel
@@ -89,6 +87,8 @@ class GivenDrop:
 
     def _search(self, grid: Grid, on_check: OnCheck | None) -> tuple[float, Solution | None]:
         """The logarithm of the flow, and a solution near it, from hand numbers."""
+        from scipy.optimize import brentq
+
         tried: dict[float, float] = {}
         solved: dict[float, Solution] = {}
 

@@ -10,13 +10,15 @@ from typing import Any
 
 from axicfd.case.layout import layout
 from axicfd.case.model import Case
+from axicfd.errors import RefusedModel
 from axicfd.given_drop import GivenDrop
 from axicfd.mesh.build import LEVELS, NEST, Family, family
 from axicfd.mesh.grid import Grid
 from axicfd.results import accuracy, cautions
 from axicfd.results.accuracy import Verdict
-from axicfd.results.axial import stream_view
+from axicfd.results.axial import stream_view, stream_views
 from axicfd.results.result import Result, make_result, tree_with_bars, with_accuracy
+from axicfd.results.summary import summary
 from axicfd.solver.solve import OnCheck, solve_on
 from axicfd.solver.state import Solution
 from axicfd.solver.warm_up import warm_up
@@ -24,6 +26,7 @@ from axicfd.version import VERSION
 
 START_BELOW = 1e-5  # residual at which a coarse mesh that only gives a start hands over to the next one
 NESTED = 4  # finest meshes that are solved in full, for the mesh error
+LOOK_BELOW = 1e-6  # residual for a look on a coarse mesh
 REFINED_TO = 400_000  # cells up to which a mesh is refined for an accuracy, where the case does not say
 SOLVES = 10  # meshes tried for an accuracy
 
@@ -72,6 +75,21 @@ def solve(
     if like is not None:
         return climb.on(meshes.like(like))
     return climb.on(meshes) if case.solve.accuracy is None else _accurate(case, meshes, climb)
+
+
+def look(case: Case, like: Family) -> dict[str, Any]:
+    """The headline tree of a case on one coarse mesh, to a few per cent: where to search, at a fifteenth of a solve.
+
+    Raises `RefusedModel` where `solve` would, and where its answer would be refused or no solution is found.
+    """
+    cautions.before(case)
+    warm_up()
+    meshes = family(case, layout(case)).like(like)
+    solution = _solver(case, meshes)(meshes.grid(meshes.rough_level), None, LOOK_BELOW, None)
+    refused = cautions.refusal(case, meshes.layout, solution)
+    if refused or not solution.converged:
+        raise RefusedModel(refused or "The solve on a coarse mesh did not converge.")
+    return summary(case, meshes.layout, solution, stream_views(case, solution))
 
 
 class _Climb:

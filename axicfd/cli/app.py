@@ -11,7 +11,7 @@ from typing import NoReturn
 
 from axicfd import __version__
 from axicfd.cli import exits
-from axicfd.cli.commands import check, draw, keys, materials, matters, new, solve, spread, sweep, wall
+from axicfd.cli.commands import check, compare, draw, find, keys, materials, matters, new, solve, spread, sweep, wall
 from axicfd.errors import AxicfdError
 
 COMMANDS = {
@@ -22,11 +22,13 @@ COMMANDS = {
     "wall": wall,
     "matters": matters,
     "spread": spread,
+    "find": find,
+    "compare": compare,
     "draw": draw,
     "materials": materials,
     "keys": keys,
 }
-LATER = ("find", "compare", "report", "schema")
+LATER = ("report", "schema")
 
 DESCRIPTION = """\
 Laminar flow and heat transfer in tubes and their walls: outlet temperature, pressure drop, hottest wall,

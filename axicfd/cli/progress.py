@@ -9,7 +9,7 @@ import sys
 import time
 from typing import Any, TextIO
 
-from axicfd.output.headline import amount
+from axicfd.output.headline import amount, number
 
 PLAIN_EVERY = 5.0  # seconds between plain lines within one mesh
 REWRITE_EVERY = 0.05  # seconds between two writes of the same line
@@ -80,6 +80,46 @@ class VariantProgress(Progress):
 
     def __exit__(self, *_: Any) -> None:
         self.close()
+
+
+class SearchProgress:
+    """Of a search for an input: one line that is rewritten; for use in a `with`."""
+
+    def __init__(self, stream: TextIO | None = None) -> None:
+        self._out = sys.stderr if stream is None else stream
+        self._in_place = self._out.isatty()
+        self._written = -PLAIN_EVERY
+        self._open = False
+
+    def __call__(self, step: Any, inputs: Any, targets: Any) -> None:
+        line = self.line(step, inputs, targets)
+        now = time.monotonic()
+        if self._in_place:
+            self._out.write(f"\r\x1b[K{line}")
+            self._open = True
+        elif not step.is_look or now - self._written > PLAIN_EVERY:
+            self._out.write(f"{line}\n")
+            self._written = now
+        self._out.flush()
+
+    def line(self, step: Any, inputs: Any, targets: Any) -> str:
+        """`look 7   section.heater.length 0.23 m   stream.oil.outlet_temperature 41.2 degC`."""
+        parts = [f"{'look' if step.is_look else 'solve'} {step.number}"]
+        parts += [f"{i.path} {number(i.shown(v))} {i.unit}".rstrip() for i, v in zip(inputs, step.inputs, strict=True)]
+        if step.quantities is None:
+            parts.append("no answer there")
+        else:
+            reached = zip(targets, step.quantities, strict=True)
+            parts += [f"{t.quantity.path} {number(t.shown(v), 6)} {t.unit}".rstrip() for t, v in reached]
+        return "   ".join(parts)
+
+    def __enter__(self) -> SearchProgress:
+        return self
+
+    def __exit__(self, *_: Any) -> None:
+        if self._open:
+            self._out.write("\n")
+            self._out.flush()
 
 
 def say_if_cold() -> None:

@@ -10,7 +10,6 @@ from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike
-from scipy.optimize import brentq
 
 DARCY_F_RE = 64.0
 """f Re of developed flow in a tube. Source: Hagen-Poiseuille, exact."""
@@ -60,6 +59,8 @@ def developed_mean_velocity(drop: float, viscosity: float, length: float, diamet
 
 def entrance_mean_velocity(drop: float, density: float, viscosity: float, length: float, diameter: float) -> float:
     """Mean velocity [m/s] from a flat inlet that a pressure drop [Pa] drives: `entrance_pressure_drop` inverted."""
+    from scipy.optimize import brentq
+
     highest = developed_mean_velocity(drop, viscosity, length, diameter)  # the entrance costs something on top
     if entrance_pressure_drop(density, viscosity, highest, length, diameter) <= drop:
         return highest  # it costs less than round-off
