@@ -15,6 +15,8 @@ from numpy.typing import NDArray
 
 # Beyond this ratio round-off of the map would show in the smallest cells.
 LARGEST_STRETCH = 1e8
+# Cells that grow faster than this from one to the next resolve nothing, and nothing converges on them.
+LARGEST_GROWTH = 4.0
 PRECISION = 1e-7  # of the logarithm of a stretch
 
 
@@ -55,7 +57,7 @@ def stretch_for_end_cell(cells: int, length: float, end_cell: float, at_start: b
     cells    : number of cells on the line
     length   : length of the line [m]
     end_cell : wanted size of the first cell [m]
-    Returns 1 where uniform cells are already as small as wanted.
+    Returns 1 where uniform cells are already as small as wanted; too few cells leave a larger one.
     """
     if not (at_start or at_end) or length / cells <= end_cell:
         return 1.0
@@ -66,9 +68,11 @@ def stretch_for_end_cell(cells: int, length: float, end_cell: float, at_start: b
         )
         return float(np.log(length * min(x[1] - x[0], x[3] - x[2]) / end_cell))
 
-    high = float(np.log(LARGEST_STRETCH))
+    # beside a graded end the slope of the map grows by (4 stretch)^(1/n) from one of n cells to the next
+    per_end = cells / 2 if at_start and at_end else cells
+    high = min(float(np.log(LARGEST_STRETCH)), per_end * float(np.log(LARGEST_GROWTH)) - float(np.log(4.0)))
     if excess(high) > 0.0:
-        return LARGEST_STRETCH
+        return float(np.exp(high))
     low = 0.0
     while high - low > PRECISION:  # by halves: it happens once per line, and a root finder takes long to import
         middle = 0.5 * (low + high)

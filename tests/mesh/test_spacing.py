@@ -5,7 +5,7 @@ from itertools import pairwise
 import numpy as np
 import pytest
 
-from axicfd.mesh.spacing import LARGEST_STRETCH, graded_map, length_weight, stretch_for_end_cell
+from axicfd.mesh.spacing import LARGEST_GROWTH, LARGEST_STRETCH, graded_map, length_weight, stretch_for_end_cell
 
 ENDS = [(True, False), (False, True), (True, True)]
 
@@ -66,7 +66,14 @@ def test_no_stretch_where_uniform_cells_are_small_enough():
 
 
 def test_stretch_has_a_limit():
-    assert stretch_for_end_cell(8, 1e6, 1e-9, True, False) == LARGEST_STRETCH
+    assert stretch_for_end_cell(40, 1e6, 1e-9, True, False) == pytest.approx(LARGEST_STRETCH)
+
+
+@pytest.mark.parametrize("ends", ENDS)
+def test_few_cells_do_not_grow_out_of_all_proportion(ends):
+    size = np.diff(graded_map(stretch_for_end_cell(8, 1.0, 1e-6, *ends), *ends)(np.arange(9) / 8))
+    growth = size[1:] / size[:-1]
+    assert 2.0 < max(growth.max(), 1.0 / growth.min()) <= LARGEST_GROWTH
 
 
 def test_longer_lines_and_graded_ends_deserve_more_cells():
