@@ -17,6 +17,7 @@ from axicfd.variants.wall import IN_FULL, NO_WALL, WallEffect
 
 # Quantities whose being left alone is worth saying beside what is changed, the most telling first.
 _WORTH_SAYING = "outlet_temperature_K", "hottest_wetted_wall_K", "heat_gain_W"
+NOTHING = 1e-5  # share of a scale below which a change is shown as none
 # Columns of the table of assumptions.
 _ASSUMPTION_KEYS = "outlet_temperature_K", "pressure_drop_Pa", "heat_gain_W", "hottest_wetted_wall_K"
 
@@ -31,10 +32,16 @@ def change_text(d: Difference, shown: Shown, signed: bool = True) -> str:
 
 
 def _with_bar(value: float, half: float | None, scale: float, signed: bool = True) -> str:
-    """A change and its half-width, to no more than a hundred-thousandth of a scale."""
+    """A change and its half-width, to a hundred-thousandth of a scale, or two digits of the value where it is less."""
+    nothing = NOTHING * scale
+    if abs(value) <= nothing and (half or 0.0) <= nothing:
+        return "0"
     text, bar = number(value), ""
     if half:
-        text, width = with_bar(value, half, math.floor(math.log10(scale)) - 4 if scale > 0.0 else None)
+        finest = math.floor(math.log10(scale)) - 4 if scale > 0.0 else 0
+        if abs(value) > nothing:
+            finest = min(finest, math.floor(math.log10(abs(value))) - 1)
+        text, width = with_bar(value, half, finest)
         bar = f" ±{width}"
     if float(text) == 0.0:
         return text.lstrip("-") + bar
@@ -63,8 +70,8 @@ def sentence(effect: Effect, shown: Shown) -> str:
     if effect.verdict == YES:
         return f"{name} {moves} of {_size(d, d.scale, shown)}: keep it.{_left_alone(effect, shown)}"
     if effect.verdict == NO:
-        if d.change.value == 0.0:
-            return f"{name} may be left out: it changes nothing that was compared."
+        if abs(d.change.value) <= NOTHING * d.scale:
+            return f"{name} may be left out: it changes nothing by more than {100 * NOTHING:g} % of its scale."
         return f"{name} may be left out: by most, it {moves}, and {from_where}."
     return f"Cannot tell whether {effect.name} matters: it {moves}, and {from_where}. {_what_would_decide(d)}"
 

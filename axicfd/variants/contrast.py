@@ -4,8 +4,10 @@ The difference of a quantity is formed on each of the nested meshes and then ext
 that both results share cancel, so its half-width is far smaller than the sum of the two.
 """
 
+from __future__ import annotations
+
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any, Protocol
 
 import numpy as np
@@ -173,6 +175,11 @@ class Effect:
     def decisive(self) -> Difference | None:
         """The quantity the verdict rests on: the one that weighs most among those of the same verdict."""
         return next((d for d in self.differences if d.verdict == self.verdict), None)
+
+    def judged(self, care: Care) -> Effect:
+        """The same effect for another opinion of what matters."""
+        again = [replace(d, care=care.of(d.of.kind_of_difference, d.scale)) for d in self.differences]
+        return replace(self, differences=tuple(sorted(again, key=lambda d: -d.weight)))
 
     @property
     def weight(self) -> float:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Any
 
 from axicfd.case.model import AlongAcross, Case, FileProfile, Law, UsedFluid
@@ -41,6 +41,12 @@ class Assumptions:
     @property
     def converged(self) -> bool:
         return all(result.converged for result in self.results.values())
+
+    def judged(self, care: str | Sequence[str] | Care) -> Assumptions:
+        """The same for another opinion of what matters; nothing is solved again."""
+        cared = read_care(care)
+        effects = sorted((effect.judged(cared) for effect in self.effects), key=lambda effect: -effect.weight)
+        return replace(self, care=cared, effects=tuple(effects))
 
     def __repr__(self) -> str:
         return (

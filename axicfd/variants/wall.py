@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Any
 
 from axicfd.case.keys import ZTable
@@ -67,6 +67,12 @@ class WallEffect:
     @property
     def converged(self) -> bool:
         return all(result.converged for result in self.results.values())
+
+    def judged(self, care: str | Sequence[str] | Care) -> WallEffect:
+        """The same for another opinion of what matters; nothing is solved again."""
+        cared = read_care(care)
+        radial = None if self.radial is None else self.radial.judged(cared)
+        return replace(self, care=cared, axial=self.axial.judged(cared), radial=radial)
 
     def __repr__(self) -> str:
         verdicts = "; ".join(f"{effect.name}: {effect.verdict}" for effect in self.effects)
@@ -189,11 +195,19 @@ def _free_name(name: str, case: Case) -> str:
 
 
 def _without_end(case: Case, end: str, layer: str | None) -> dict[str, Any]:
-    """The end faces with those of a layer, or of all, insulated."""
+    """The end faces with those of a layer, or of all, insulated; the other layers keep their heat."""
     if layer is None:
         return {"insulated": True}
-    faces = {name: plain(face) for name, face in getattr(case.ends, end).items()}
-    return {**faces, layer: {"insulated": True}}
+    solids = [p for p in layout(case).sections[0 if end == "first" else -1].layers if p.kind == "solid"]
+    faces = getattr(case.ends, end)
+    area = sum(p.area for p in solids if p.name not in faces)
+    found: dict[str, Any] = {}
+    for p in solids:
+        face = plain(case.ends.of(end, p.name))
+        if p.name not in faces and face.get("heat") is not None:  # one heat that the faces share by area
+            face["heat_flux"] = face.pop("heat") / area
+        found[p.name] = {"insulated": True} if p.name == layer else face
+    return found or {"insulated": True}
 
 
 def without_wall(case: Case) -> Case:

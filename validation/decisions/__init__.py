@@ -1,0 +1,1 @@
+"""Whether the right assumptions are found to matter."""
