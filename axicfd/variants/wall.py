@@ -21,7 +21,6 @@ from axicfd.glossary import Reported
 from axicfd.materials.laws import Constant
 from axicfd.pipeline import solve
 from axicfd.results.result import Result
-from axicfd.solver.boundary import mass_flow
 from axicfd.theory import groups
 from axicfd.variants import contrast
 from axicfd.variants.care import Care, read_care
@@ -149,7 +148,7 @@ def wall_effect(
     radial = None
     if layer is None:
         radial = contrast.effect(RADIAL, across, results[NO_WALL], asked, cared, full, COLUMNS)
-    return WallEffect(case, cared, layer, results, axial, radial, conduction_number(case, tube, layer))
+    return WallEffect(case, cared, layer, results, axial, radial, conduction_number(case, tube, _flow(full), layer))
 
 
 # ------------------------------------------------------------------------------------------------ the variants
@@ -369,8 +368,14 @@ def _values(value: float | ZTable | None) -> tuple[float, ...]:
     return () if value is None else value.value if isinstance(value, ZTable) else (value,)
 
 
-def conduction_number(case: Case, tube: Layout, layer: str | None = None) -> float | None:
+def _flow(full: Result) -> float:
+    return float(next(iter(full.summary["stream"].values()))["mass_flow_kg_s"])
+
+
+def conduction_number(case: Case, tube: Layout, mass_flow: float, layer: str | None = None) -> float | None:
     """M = (k_w A_w / L) / (m cp) with the heated length L and the mean of k_w A_w over it, at the inlet temperature.
+
+    mass_flow : of the first stream [kg/s]
 
     None where nothing is heated. Source: Maranzana, Perry & Maillet 2004 (see `theory.groups`).
     """
@@ -386,5 +391,5 @@ def conduction_number(case: Case, tube: Layout, layer: str | None = None) -> flo
         for p in s.layers
         if p.kind == "solid" and layer in (None, p.name)
     )
-    capacity = mass_flow(case, tube, name) * float(case.fluid_of(name).specific_heat(t_in))
+    capacity = mass_flow * float(case.fluid_of(name).specific_heat(t_in))
     return groups.axial_conduction_number(conducted / length, 1.0, length, capacity)

@@ -161,7 +161,7 @@ def test_against_the_stream_the_mirror_image_gives_the_same():
 def test_the_axial_conduction_number_of_the_heated_length():
     """M = (k_w A_w / L) / (m cp): 100 W/m/K x pi (1.4^2 - 1) mm2 / 20 mm over 1e-2 m/s x pi mm2 x 1e6 J/m3/K."""
     want = 100.0 * (1.4**2 - 1.0) / 0.02 / (1e-2 * 1e6)
-    assert conduction_number(tube(), layout(tube())) == pytest.approx(want)
+    assert conduction_number(tube(), layout(tube()), 1e-2 * math.pi * 1e-6 * 1000.0) == pytest.approx(want)
     assert effect().number == pytest.approx(want) and effect().predicted == YES
 
 
@@ -180,6 +180,14 @@ def test_shows_itself_and_converts_to_plain_data():
     entry = tree["axial_conduction"]["difference"]["stream.liquid.hottest_wetted_wall"]
     assert entry["difference"] == pytest.approx(entry["with"] - entry["without"], abs=1e-3)
     assert tree["axial_conduction_number"]["predicts"] == YES and tree["converged"]
+
+
+def test_a_given_pressure_drop_gives_the_same_as_the_flow_it_drives():
+    drop = effect().results[IN_FULL]["stream.liquid.pressure_drop_Pa"]
+    found = wall_effect(tube().replace({"stream.liquid.pressure_drop": drop}))
+    for path in ("stream.liquid.hottest_wetted_wall", "stream.liquid.heat_upstream"):
+        assert of(found.axial, path).change.value == pytest.approx(of(effect().axial, path).change.value, rel=1e-4)
+    assert found.number == pytest.approx(effect().number, rel=1e-4)
 
 
 @pytest.mark.parametrize(
