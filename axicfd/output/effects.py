@@ -108,11 +108,7 @@ def _what_would_decide(d: Difference) -> str:
 
 def care_text(care: Care, shown: Shown) -> str:
     """What counts as a change that matters."""
-    kinds = {"temperature_difference": "temperature"}
-    parts = []
-    for kind, si in care.amounts.items():
-        unit_of = kinds.get(kind, kind)
-        parts.append(f"{number(float(shown.difference(unit_of, si)), 3)} {shown.difference_unit(unit_of)}")
+    parts = [f"{number(float(shown.value(kind, si)), 3)} {shown.unit(kind)}" for kind, si in care.amounts.items()]
     if care.per_cent is not None:
         parts.append(f"{care.per_cent:g} % of the scale{'' if care.amounts else ' of each quantity'}")
     only = "" if care.per_cent is not None else "; other quantities decide nothing"

@@ -7,10 +7,11 @@ from dataclasses import dataclass, field
 from typing import Any
 
 from axicfd import units
+from axicfd.case.quantities import difference_of
 from axicfd.errors import AxicfdError
 
 DEFAULT_PER_CENT = 2.0  # of the scale: common practice, no source; film coefficients are rarely known better
-KINDS = "temperature_difference", "heat", "pressure"  # of which an amount may be cared for
+KINDS = "temperature_difference", "heat", "pressure_difference"  # of which an amount may be cared for
 
 
 @dataclass(frozen=True)
@@ -26,6 +27,7 @@ class Care:
 
     def of(self, kind: str, scale: float) -> float | None:
         """The amount that matters of a kind of quantity with a scale, SI; None where it decides nothing."""
+        kind = difference_of(kind)
         if kind in self.amounts:
             return self.amounts[kind]
         return None if self.per_cent is None or scale <= 0.0 else self.per_cent / 100.0 * scale

@@ -12,6 +12,7 @@ from typing import Any, Protocol
 
 import numpy as np
 
+from axicfd.case.quantities import difference_of
 from axicfd.mesh.grid import Array
 from axicfd.pipeline import Progress
 from axicfd.results import accuracy, uncertainty
@@ -226,7 +227,7 @@ def _scale(of: Quantity, scales: dict[str, Any], full: Result) -> float:
         return scales["temperature_K"] if scales["temperature_K"] > accuracy.SMALLEST_TEMPERATURE else 0.0
     if kind == "heat":
         return scales["heat_W"]
-    if kind == "pressure":
+    if difference_of(kind) == "pressure_difference":
         return max(scales["pressure_Pa"].values(), default=0.0)
     if kind == "length":  # a place: it moves by much for nothing
         return 0.0

@@ -29,7 +29,8 @@ from axicfd.variants.contrast import NO, YES, Effect, OnVariant
 IN_FULL, ACROSS_ONLY, NO_WALL = "in full", "radial resistance only", "no wall"
 RADIAL, AXIAL = "radial resistance of the wall", "axial conduction in the wall"
 COLUMNS = "wetted_wall_temperature_K", "wall_heat_flux_W_m2", "nusselt", "bulk_temperature_K"
-WITHOUT_VARIANTS: dict[str, Any] = {"solve.accuracy": None}  # sought by the full case alone, whose meshes all share
+# What a variant leaves to the full case: its accuracy, for they share its meshes, and the judgement of its limits.
+WITHOUT_VARIANTS: dict[str, Any] = {"solve.accuracy": None, "limits": None}
 SAME_TEMPERATURE = 1e-6  # K; a surrounding this close to the inlet temperature drives no heat
 
 
@@ -214,7 +215,8 @@ def without_wall(case: Case) -> Case:
 
     Heat keeps its watts per length, generation in solids included; a film and a contact outside keep their resistance
     per length; a prescribed temperature stays as it is. Resistances between layers go with the wall, and what lies
-    behind a void does not reach the bore. Sensors in or on the wall read the bore.
+    behind a void does not reach the bore. Sensors in or on the wall read the bore; combinations with quantities of a
+    layer are left out.
     """
     tube = layout(case)
     first = case.section[0]
@@ -227,6 +229,9 @@ def without_wall(case: Case) -> Case:
         changes[f"{path}.outside"] = _at_bore(section.outside, placed)
         kept = {name: heat for name, heat in section.generated.items() if name == stream.name}
         changes[f"{path}.generated"] = kept or None
+    for name, combination in case.quantity.items():
+        if any(path.startswith("layer.") for path in (*combination.plus, *combination.minus)):
+            changes[f'quantity."{name}"'] = None
     for name, sensor in case.sensor.items():
         if sensor.at not in ("axis", "bulk"):
             changes[f'sensor."{name}".at'] = "outside"

@@ -81,6 +81,24 @@ def test_what_lies_behind_a_void_does_not_reach_the_bore():
     assert without_wall(case).section[1].outside.heat_per_length == pytest.approx(50.0)
 
 
+def test_limits_are_left_to_the_case_in_full_and_combinations_with_a_layer_to_those_that_have_it():
+    case = tube().replace(
+        {
+            "quantity.above": {"plus": ["layer.tube.hottest"], "minus": ["stream.liquid.inlet_temperature"]},
+            "quantity.warmed": {"plus": ["sensor.skin"], "minus": ["stream.liquid.inlet_temperature"]},
+            "limits": {"quantity.above": {"below": 60.0}},
+        }
+    )
+    bare = without_wall(case)
+    assert list(bare.quantity) == ["warmed"] and not bare.limits and not radial_resistance_only(case).limits
+    found = wall_effect(case)
+    assert of(found.axial, "quantity.warmed").change.value == pytest.approx(
+        of(found.axial, "sensor.skin.temperature").change.value
+    )
+    assert of(found.axial, "quantity.above").of.label == "above"
+    assert "quantity.above" not in [d.of.path for d in found.radial.differences]
+
+
 def test_the_variants_stand_alone_as_case_files():
     for variant in (radial_resistance_only(tube()), without_wall(tube())):
         assert load(to_toml(variant)) == variant
