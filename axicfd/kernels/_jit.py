@@ -12,7 +12,6 @@ an edit anywhere starts an empty one, and kernels may call each other across fil
 """
 
 import hashlib
-import sys
 from pathlib import Path
 
 import numba
@@ -34,24 +33,6 @@ def _fingerprint() -> str:
 CACHE_FOLDER = cache.folder(_fingerprint())
 if CACHE_FOLDER is not None:
     setattr(numba.config, "CACHE_DIR", str(CACHE_FOLDER))  # noqa: B010  not among its typed names
-
-
-def _start_quickly() -> None:
-    """Let the compiler load what it needs without importing the linear algebra of scipy, of which it only wants to know
-    whether it is there: 0.15 s at every start, and no kernel uses it.
-    """
-    wanted = "scipy.linalg.cython_blas"
-    if wanted in sys.modules or "numba.np.arraymath" in sys.modules:
-        return
-    sys.modules[wanted] = None  # type: ignore[assignment]  # an import of it now fails at once
-    try:
-        from numba.np import arraymath
-    finally:
-        del sys.modules[wanted]
-    arraymath._HAVE_BLAS = True  # scipy is always installed with this package; kernels of others may use it
-
-
-_start_quickly()
 
 
 def kernel(function):

@@ -1,15 +1,9 @@
-"""The fields as a rectilinear grid that VTK readers open: x = z, y = r, all as cell data in SI units.
-
-Written by hand in the published XML format: the library that could do it takes a second to import.
-"""
+"""The fields as a rectilinear grid that VTK readers open: x = z, y = r, all as cell data in SI units."""
 
 from __future__ import annotations
 
-import struct
-import zlib
 from pathlib import Path
 from typing import Any
-from xml.sax.saxutils import quoteattr
 
 import numpy as np
 
@@ -51,34 +45,24 @@ def cell_arrays(fields: dict[str, Any], outlet_pressure: dict[str, float]) -> di
 
 def write_fields(path: Path, fields: dict[str, Any], outlet_pressure: dict[str, float]) -> None:
     """Write `cell_arrays` of the fields to a .vtr file."""
-    arrays = []
+    # the writer alone, without the rest of its library, which takes a second longer to import
+    from vtkmodules.util.numpy_support import numpy_to_vtk
+    from vtkmodules.vtkCommonDataModel import vtkRectilinearGrid
+    from vtkmodules.vtkIOXML import vtkXMLRectilinearGridWriter
+
+    nodes = np.asarray(fields["z_faces"], float), np.asarray(fields["r_faces"], float), np.zeros(1)
+    grid = vtkRectilinearGrid()
+    grid.SetDimensions(*(len(along) for along in nodes))
+    for put, along in zip((grid.SetXCoordinates, grid.SetYCoordinates, grid.SetZCoordinates), nodes, strict=True):
+        put(numpy_to_vtk(along, deep=True))
     for name, values in cell_arrays(fields, outlet_pressure).items():
-        # readers count cells with the first axis running fastest; ours has the radius running fastest
-        arrays.append((name, values.transpose(1, 0, 2) if values.ndim == 3 else values.T))
-    nodes = [np.asarray(fields["z_faces"], float), np.asarray(fields["r_faces"], float), np.zeros(1)]
-    blocks: list[bytes] = []
-    cells = "".join(_array(name, values, values.ndim == 3, blocks) for name, values in arrays)
-    places = "".join(_array(name, values, False, blocks) for name, values in zip("xyz", nodes, strict=True))
-    extent = f"0 {len(nodes[0]) - 1} 0 {len(nodes[1]) - 1} 0 0"
-    head = (
-        '<?xml version="1.0"?>\n'
-        '<VTKFile type="RectilinearGrid" version="1.0" byte_order="LittleEndian" header_type="UInt64" '
-        'compressor="vtkZLibDataCompressor">\n'
-        f'<RectilinearGrid WholeExtent="{extent}">\n<Piece Extent="{extent}">\n'
-        f"<CellData>\n{cells}</CellData>\n<Coordinates>\n{places}</Coordinates>\n"
-        '</Piece>\n</RectilinearGrid>\n<AppendedData encoding="raw">\n_'
-    )
-    path.write_bytes(head.encode() + b"".join(blocks) + b"\n</AppendedData>\n</VTKFile>\n")
-
-
-def _array(name: str, values: np.ndarray, is_vector: bool, blocks: list[bytes]) -> str:
-    """The element of one array; its numbers are appended to `blocks`, as one compressed block behind its sizes."""
-    whole = values.dtype.kind in "iu"
-    data = np.ascontiguousarray(values, "<i8" if whole else "<f8").tobytes()
-    packed = zlib.compress(data, 1)
-    offset = sum(len(block) for block in blocks)
-    blocks.append(struct.pack("<4Q", 1, len(data), 0, len(packed)) + packed)
-    return (
-        f'<DataArray type="{"Int64" if whole else "Float64"}" Name={quoteattr(name)} '
-        f'NumberOfComponents="{3 if is_vector else 1}" format="appended" offset="{offset}"/>\n'
-    )
+        # VTK counts cells with the first axis running fastest; ours has the radius running fastest.
+        flat = values.transpose(1, 0, 2).reshape(-1, 3) if values.ndim == 3 else values.T.reshape(-1)
+        array = numpy_to_vtk(np.ascontiguousarray(flat), deep=True)
+        array.SetName(name)
+        grid.GetCellData().AddArray(array)
+    writer = vtkXMLRectilinearGridWriter()
+    writer.SetFileName(str(path))
+    writer.SetInputData(grid)
+    if not writer.Write():
+        raise OSError(f"{path} could not be written")
