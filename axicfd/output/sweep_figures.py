@@ -21,6 +21,7 @@ from axicfd.output.figures import CURVE_INKS, INK, SOFT_INK, WIDTH, colour_map, 
 from axicfd.output.headline import number
 from axicfd.output.sweep import BAR, SOLVED, Sweep
 from axicfd.output.sweep_lines import (
+    LIMIT,
     Axis,
     as_text,
     header_and_lines,
@@ -30,6 +31,7 @@ from axicfd.output.sweep_lines import (
     varied_axes,
     verdict,
 )
+from axicfd.results.limits import FAIL, PASS
 
 MOST_PANELS = 8
 ACROSS = 2  # panels beside each other
@@ -52,7 +54,7 @@ def draw_all(table: Sweep, folder: Path, suffix: str = ".png") -> list[Path]:
     written[-1].write_text(as_text(*header_and_lines(table)), encoding="utf-8")
     limits = limited(table)
     if limits:
-        passing = [row for row in sorted_rows(table) if verdict(row, limits) == "pass"]
+        passing = [row for row in sorted_rows(table) if verdict(row, limits) == PASS]
         written.append(folder / "passing.csv")
         csv.write_columns(written[-1], {name: [row[name] for row in passing] for name in table.columns})
     return written
@@ -292,8 +294,4 @@ def _is_sample(table: Sweep, varied: Sequence[Axis]) -> bool:
 
 
 def _fails(row: dict[str, Any], axis: Axis) -> bool:
-    return any(
-        row[name] == "fail" and axis.name.startswith(name.removeprefix("limits.").replace('"', ""))
-        for name in row
-        if name.startswith("limits.")
-    )
+    return row.get(f"{LIMIT}{axis.path}") == FAIL

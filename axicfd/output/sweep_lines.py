@@ -8,42 +8,40 @@ from typing import Any
 
 from axicfd import units
 from axicfd.case.paths import steps_of
-from axicfd.case.quantities import ResultQuantity, quantities
+from axicfd.case.quantities import quantities
 from axicfd.output.headline import FINEST_TEMPERATURE, number, with_bar
 from axicfd.output.shown import Shown, shown_units
 from axicfd.output.sweep import BAR, SOLVED, Sweep
+from axicfd.results.limits import FAIL, PASS, TOO_CLOSE
 from axicfd.variants.plan import kind_of
 
 LIMIT = "limits."
-VERDICTS = ("pass", "too close to call", "fail")  # the best first
+VERDICTS = (PASS, TOO_CLOSE, FAIL)  # the best first
 SHORT = ("outlet_temperature_K", "pressure_drop_Pa", "hottest_wetted_wall_K")  # of each stream, where space is short
 
 
 @dataclass(frozen=True)
 class Axis:
-    """A column of numbers as it is shown. unit : of its values        difference : unit of a distance of two"""
+    """A column of numbers as it is shown. name : of the column        path : of the key or quantity"""
 
     name: str
+    path: str
     label: str
     kind: str
-    unit: str
+    shown: Shown
 
     @property
     def title(self) -> str:
-        return f"{self.label}, {self.pretty}" if self.unit else self.label
-
-    @property
-    def pretty(self) -> str:
-        """The unit as written for people."""
-        return self.unit.replace("^2", "²").replace("^3", "³")
+        unit = self.shown.unit(self.kind)
+        return f"{self.label}, {unit}" if unit else self.label
 
     def value(self, si: Any) -> Any:
         """SI numbers in the shown unit."""
-        return units.convert(si, self.unit, self.kind) if self.kind else si
+        return self.shown.value(self.kind, si)
 
     def difference(self, si: Any) -> Any:
         """The same for a half-width."""
-        return self.value(si) - self.value(0.0)
+        return self.shown.difference(self.kind, si)
 
 
 def varied_axes(table: Sweep) -> list[Axis]:
@@ -58,8 +56,19 @@ def varied_axes(table: Sweep) -> list[Axis]:
 def quantity_axes(table: Sweep) -> list[Axis]:
     """One per headline quantity that has a value in some row."""
     shown = shown_units(table.base)
-    found = {".".join(of.keys): of for of in quantities(table.base, headline_only=True)}
-    return [_axis(found[name], shown) for name in table.quantities if name in found and any(_known(table[name]))]
+    known = {".".join(of.keys): of for of in quantities(table.base)}
+    several = len(table.base.stream) > 1
+    return [
+        Axis(
+            name,
+            of.path,
+            f"{of.keys[1]}: {of.label}" if several and of.keys[0] == "stream" else of.label,
+            of.kind,
+            shown,
+        )
+        for name in table.quantities
+        if (of := known.get(name)) is not None and any(value is not None for value in table[name])
+    ]
 
 
 def limited(table: Sweep) -> list[str]:
@@ -89,7 +98,7 @@ def sorted_rows(table: Sweep) -> list[dict[str, Any]]:
 def header_and_lines(table: Sweep, everything: bool = True) -> tuple[list[str], list[list[str]]]:
     """The table as text, sorted; only a few quantities where not everything is asked for."""
     varied, limits = varied_axes(table), limited(table)
-    measured = [axis for axis in quantity_axes(table) if everything or _is_short(axis.name, limits)]
+    measured = [axis for axis in quantity_axes(table) if everything or _is_short(axis, limits)]
     header = ["row", *(axis.title for axis in varied), *(axis.title for axis in measured)]
     header += [*(["limits"] if limits else []), "status"]
     lines = []
@@ -121,23 +130,12 @@ def _label(key: str) -> str:
 def _varied(table: Sweep, key: str, column: str, label: str) -> Axis:
     kind = kind_of(table.base._tree, key)
     unit = (table.units[key] or ("degC" if kind == "temperature" else units.KINDS[kind].si)) if kind else ""
-    return Axis(column, label, kind, unit)
+    return Axis(column, key, label, kind, Shown({kind: unit}))
 
 
-def _axis(of: ResultQuantity, shown: Shown) -> Axis:
-    name, kind = ".".join(of.keys), of.row.kind
-    owner = " ".join(of.keys[1:2]) if of.keys[0] in ("stream", "layer") else f"{of.keys[0]} {of.keys[1]}"
-    parsed = "length" if kind == "diameter" else kind
-    return Axis(name, f"{owner}: {of.row.label}", parsed, shown.units.get(kind, of.row.unit))
-
-
-def _is_short(name: str, limits: Iterable[str]) -> bool:
-    steps = steps_of(name)
-    return (steps[0] == "stream" and steps[-1] in SHORT) or any(name.startswith(x.removeprefix(LIMIT)) for x in limits)
-
-
-def _known(values: Iterable[Any]) -> Iterable[bool]:
-    return (value is not None for value in values)
+def _is_short(axis: Axis, limits: Iterable[str]) -> bool:
+    steps = steps_of(axis.name)
+    return (steps[0] == "stream" and steps[-1] in SHORT) or f"{LIMIT}{axis.path}" in limits
 
 
 def _plain(axis: Axis, value: Any) -> str:
@@ -151,5 +149,5 @@ def _with_bar(axis: Axis, value: float | None, half_width: float | None) -> str:
         return ""
     if not half_width:
         return number(float(axis.value(value)), 6)
-    finest = FINEST_TEMPERATURE if axis.kind == "temperature" else None
+    finest = FINEST_TEMPERATURE if axis.kind.startswith("temperature") else None
     return " ±".join(with_bar(float(axis.value(value)), float(axis.difference(half_width)), finest))

@@ -225,7 +225,7 @@ class _Lane:
 
     def end(self) -> None:
         if self._executor is not None:
-            self._executor.shutdown(wait=self.own, cancel_futures=True)
+            self._executor.shutdown(wait=self.own)  # an executor of a cluster then gives up what still runs there
             self._executor = None
 
     def _wait_until_ready(self) -> None:

@@ -14,11 +14,12 @@ from typing import Any, Protocol
 
 from axicfd.case.layout import layout
 from axicfd.case.model import Case
-from axicfd.case.quantities import quantities
+from axicfd.case.quantities import quantities, quantity
 from axicfd.case.write import canonical
 from axicfd.errors import RefusedModel
 from axicfd.mesh.build import Family, Segment, family
 from axicfd.mesh.spacing import Map
+from axicfd.results.cautions import standing
 from axicfd.results.result import Result
 from axicfd.variants.plan import Plan, Row
 from axicfd.variants.runner import SOLVED, Job, Outcome, run
@@ -30,7 +31,7 @@ class Record:
     """What came of a row.
 
     key         : of the row, see `row_key`
-    values      : headline quantities by their dotted name with unit suffix, SI; only of a solved row
+    values      : headline and limited quantities by their dotted name with unit suffix, SI; only of a solved row
     half_widths : of their mesh errors, same names        limits : path -> verdict
     cautions    : codes of those that stand               cells  : of the finest mesh; None where nothing was solved
     fields      : whether the whole result was kept; None where nobody asked for it
@@ -185,17 +186,17 @@ def tabulated(result: Result) -> dict[str, Any]:
     values: dict[str, float | None] = {}
     half_widths: dict[str, float | None] = {}
     if result.converged and not summary.get("refused"):
-        for of in quantities(result.case, headline_only=True):
+        case = result.case
+        for of in (*quantities(case, headline_only=True), *(quantity(case, path) for path in case.limits)):
             name = ".".join(of.keys)
             values[name] = of.of(summary)
             half_widths[name] = of.of(summary.get("numerical_uncertainty"))
     limits = {path: str(found["verdict"]) for path, found in (summary.get("limits") or {}).items()}
-    standing = [caution for caution in summary["cautions"] if not caution.get("accepted")]
     return {
         "values": values,
         "half_widths": half_widths,
         "limits": limits if values else {},
-        "cautions": tuple(dict.fromkeys(str(caution["code"]) for caution in standing)),
+        "cautions": tuple(dict.fromkeys(str(caution["code"]) for caution in standing(summary["cautions"]))),
         "cells": int(summary["cells"]),
     }
 
