@@ -14,7 +14,7 @@ import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 from matplotlib.patches import Rectangle
-from matplotlib.ticker import MaxNLocator, NullLocator
+from matplotlib.ticker import LogLocator, MaxNLocator, NullLocator
 
 from axicfd.output import csv
 from axicfd.output.figures import CURVE_INKS, INK, SOFT_INK, WIDTH, colour_map, new_figure, plain_numbers, save
@@ -34,8 +34,10 @@ from axicfd.output.sweep_lines import (
 from axicfd.results.limits import FAIL, PASS
 
 MOST_PANELS = 8
+MOST_OVER_EACH = 5  # quantities where each is drawn over every key
+FIRST = ("quantity", "stream", "sensor", "layer", "section")  # after the limited ones
 ACROSS = 2  # panels beside each other
-PANEL, GAP_ACROSS, GAP_DOWN, ABOVE, BELOW = 2.5, 1.05, 0.95, 0.75, 0.65  # inches
+PANEL, GAP_ACROSS, GAP_DOWN, ABOVE, BELOW = 2.5, 1.05, 0.95, 0.9, 0.65  # inches
 NUMBERED = 60  # blocks of a map up to which the value stands in each
 MARKED = 9  # values up to which each has its own mark on an axis
 CHANGES = 1e-9  # of its size by which a quantity must change to get a panel
@@ -63,25 +65,29 @@ def draw_all(table: Sweep, folder: Path, suffix: str = ".png") -> list[Path]:
 def picture(table: Sweep) -> Figure | None:
     """The panels of a sweep; None where nothing that varies is a number or nothing was solved."""
     varied = [axis for axis in varied_axes(table) if _is_numeric(table[axis.name])]
-    panels = [axis for axis in quantity_axes(table) if _changes(table[axis.name])][:MOST_PANELS]
+    panels = sorted((axis for axis in quantity_axes(table) if _changes(table[axis.name])), key=_rank(table))
     if not varied or not panels:
         return None
     if len(varied) == 1 or _step_together(table, varied):
-        return _curves(table, varied[0], panels)
+        return _curves(table, varied[0], panels[:MOST_PANELS])
     if len(varied) == 2:
-        return _maps(table, varied[0], varied[1], panels)
-    return _points(table, varied, panels)
+        return _maps(table, varied[0], varied[1], panels[:MOST_PANELS])
+    return _points(table, varied, panels[:MOST_OVER_EACH])
 
 
 # --- curves ---------------------------------------------------------------------------------------------------
 
 
 def _curves(table: Sweep, over: Axis, panels: Sequence[Axis]) -> Figure:
-    figure, axes = _paper(table, len(panels), f"over {over.title}; bars: mesh errors")
+    figure, axes = _paper(table, len(panels), f"over {over.title}; bars: mesh errors{_red(table)}")
     for place, axis in zip(axes, panels, strict=True):
         _bars(table, place, over, axis)
         place.set_xlabel(over.title, fontsize=10, color=INK)
     return figure
+
+
+def _red(table: Sweep) -> str:
+    return "; red: fails its limit" if limited(table) else ""
 
 
 def _bars(table: Sweep, axes: Axes, over: Axis, axis: Axis, line: bool = True) -> None:
@@ -98,7 +104,7 @@ def _bars(table: Sweep, axes: Axes, over: Axis, axis: Axis, line: bool = True) -
         axes.errorbar(
             x[chosen], y[chosen], half[chosen], fmt="o", markersize=4, color=ink, elinewidth=1.2, capsize=3, zorder=3
         )
-    _dress(axes, axis.title + (", red: fails its limit" if fails.any() else ""))
+    _dress(axes, axis.title)
     _along(axes.xaxis, over, x, axes.set_xscale)
     axes.yaxis.set_major_formatter(plain_numbers())
     axes.yaxis.set_major_locator(MaxNLocator(nbins=5, steps=[1, 2, 2.5, 5, 10]))
@@ -162,13 +168,15 @@ def _write_block(
     if not numbered:
         return
     shown = axis.value(value) if value is not None else 0.0
-    is_dark = value is not None and shown < span[0] + 0.45 * (span[1] - span[0])
+    share = (shown - span[0]) / (span[1] - span[0])
+    ground = colour_map()(share) if value is not None else REFUSED_GREY
     axes.text(
         _middle(x),
         _middle(y),
         number(float(shown)) if value is not None else str(row["status"] or "not yet"),
         fontsize=8,
-        color="white" if is_dark else INK,
+        color="white" if value is not None and share < 0.45 else INK,
+        bbox={"facecolor": ground, "edgecolor": "none", "pad": 1.5},  # keeps the hatching off the number
         ha="center",
         va="center",
         zorder=3,
@@ -188,7 +196,9 @@ def _legend(table: Sweep) -> str:
 def _points(table: Sweep, varied: Sequence[Axis], panels: Sequence[Axis]) -> Figure:
     """A row of panels per quantity, one over each key: which input it follows shows as a narrow band."""
     places = [(axis, over) for axis in panels for over in varied]
-    figure, axes = _paper(table, len(places), "each quantity over each key; bars: mesh errors", len(varied))
+    figure, axes = _paper(
+        table, len(places), f"each quantity over each key; bars: mesh errors{_red(table)}", len(varied)
+    )
     for place, (axis, over) in zip(axes, places, strict=True):
         _bars(table, place, over, axis, line=False)
         place.set_xlabel(over.title, fontsize=10, color=INK)
@@ -235,8 +245,11 @@ def _along(mpl_axis: Any, axis: Axis, values: np.ndarray, set_scale: Callable[[s
     if len(values) <= MARKED:
         mpl_axis.set_ticks(values, [number(float(value)) for value in values])
         mpl_axis.set_minor_locator(NullLocator())
-    elif not _steps_by_factor(values):
-        mpl_axis.set_major_formatter(plain_numbers())
+        return
+    if _steps_by_factor(values):
+        mpl_axis.set_major_locator(LogLocator(subs=(1.0, 2.0, 5.0)))
+        mpl_axis.set_minor_locator(NullLocator())
+    mpl_axis.set_major_formatter(plain_numbers())
 
 
 def _steps_by_factor(values: np.ndarray) -> bool:
@@ -270,6 +283,12 @@ def _middle(ends: np.ndarray) -> float:
 
 def _is_numeric(values: Sequence[Any]) -> bool:
     return all(isinstance(value, int | float) for value in values) and len(set(values)) > 1
+
+
+def _rank(table: Sweep) -> Callable[[Axis], int]:
+    """What a reader asks for first: what has a limit, then what got a name of its own."""
+    limits = limited(table)
+    return lambda axis: -1 if f"{LIMIT}{axis.path}" in limits else FIRST.index(axis.path.partition(".")[0])
 
 
 def _changes(values: Sequence[Any]) -> bool:

@@ -30,7 +30,7 @@ from axicfd.pipeline import solve
 from axicfd.results.result import Result
 from axicfd.solver.solve import solve_on
 from validation.robustness.cases import HOT, band, flow_cases, heated
-from validation.timing import flows, heats
+from validation.timing import flows, heats, sweeps
 
 HERE = Path(__file__).parent
 REPEATS = 5
@@ -281,6 +281,28 @@ def part_start() -> list[str]:
     ]
 
 
+def part_sweep() -> list[str]:
+    """Many variants: what handing out, keeping and starting processes cost."""
+    case = sized(conjugate(), 10_000)
+    with tempfile.TemporaryDirectory() as folder:
+        found = sweeps.rates(sweeps.plan_of(case, "section.band.outside.heat", "5 W", "40 W", Path(folder)))
+    rows = []
+    for name, turns in found.items():
+        wall, processor = (statistics.median(turn[i] for turn in turns) for i in range(2))
+        rows.append(f"| {name} | {wall:.1f} | {processor:.1f} | {sweeps.ROWS / wall:.2f} |")
+    one, two, plain = (statistics.median(turn[0] for turn in turns) for turns in found.values())
+    return [
+        f"{sweeps.ROWS} variants of the conjugate problem on 10 000 cells, each in full with its mesh errors, start of "
+        f"the processes included; medians of {sweeps.TURNS} turns of two workers and of two plain processes, by turns.",
+        "",
+        "| run | s | processor s | rows per s |",
+        "|---|---|---|---|",
+        *rows,
+        "",
+        f"Rate of two workers over that of one: {one / two:.2f}; over that of two plain processes: {plain / two:.2f}.",
+    ]
+
+
 PARTS: dict[str, tuple[str, Callable[[], list[str]]]] = {
     "flow": ("Flow: cost against cells", part_flow),
     "rivals": ("Flow: against other ways", part_rivals),
@@ -288,6 +310,7 @@ PARTS: dict[str, tuple[str, Callable[[], list[str]]]] = {
     "memory": ("Memory", part_memory),
     "accuracy": ("Time to accuracy", part_accuracy),
     "start": ("Start", part_start),
+    "sweep": ("Many variants", part_sweep),
 }
 
 
