@@ -10,12 +10,16 @@ import numpy as np
 from axicfd.case.model import Case
 from axicfd.case.read import load
 from axicfd.pipeline import solve
-from axicfd.results.result import Result
+from axicfd.results.axial import stream_views
+from axicfd.results.result import Result, least_widths
+from axicfd.results.uncertainty import PLACE
+from validation.bars.study import leaves
 from validation.common import Row
 from validation.robustness.cases import coupled_cases, flow_cases
 
 SHIPPED = Path(__file__).parents[3] / "cases"
 ALLOWED = 1e-6
+LOOSER, FEWER, TIGHT = (1e-3, 1e-5, 1e-7, 1e-8), 10_000, 1e-10  # residuals and cells of the rows about the half-widths
 # residual of the second solve: 1e-12 doubles the iterations, where round-off allows it; good conductors allow 1e-10
 FURTHER = {
     "flow, Re 1000, L/D 20": 1e-12,
@@ -75,6 +79,24 @@ def changes(name: str) -> tuple[list[tuple[str, float]], Result, Result]:
     return sorted(found, key=lambda pair: -pair[1]), first, second
 
 
+@lru_cache
+def over_floor(name: str) -> tuple[float, str]:
+    """(largest, quantity) change from stopping at the residuals LOOSER, over the half-width that covers it."""
+    coarser = case(name).replace({"mesh.at_most": FEWER})
+    tight = solve(coarser.replace({"solve.stop_below": TIGHT}))
+    views = stream_views(tight.case, tight.solution)
+    found = []
+    for residual in LOOSER:
+        loose = solve(coarser.replace({"solve.stop_below": residual}))
+        least = least_widths(loose.case, loose.summary, loose.solution, views)
+        after = dict(leaves(loose.summary))
+        for path, value in leaves(tight.summary):
+            floor = least.floor(tuple(path.split(".")), value)
+            if not path.endswith(PLACE) and floor > 0.0:
+                found.append((abs(after[path] - value) / floor, f"{path}, residual {residual:.0e}"))
+    return max(found)
+
+
 def check() -> list[Row]:
     rows = []
     for name, stop_below in FURTHER.items():
@@ -93,6 +115,10 @@ def check() -> list[Row]:
                 note=f"it is {path}; {iterations}, {ended}",
             )
         )
+    for name in FURTHER:
+        largest, path = over_floor(name)
+        what = f"largest change over the least half-width, {FEWER} cells, residuals from 1e-3 to 1e-8; {name}"
+        rows.append(Row(what, largest, 0.0, 1.0, "none", scale=1.0, note=f"it is {path}"))
     return rows
 
 
