@@ -19,7 +19,7 @@ SECOND, ALLOWED = 2.0, 0.1  # order, and the share of it by which kept orders ma
 STEP = "a prescribed temperature beside insulation: flux ~ s^-1/2, temperature ~ s^1/2 at distance s from the joint"
 KINK = "the curve at the joint itself is the mean of two sides that differ"
 CORNER = "flat inlet: pressure and shear are singular in the wall corner"
-LAYER = "heated up to the outlet plane, where nothing is conducted along: a layer thinner than the cells"
+LAYER = "heated up to the outlet plane, where nothing is conducted along: a layer that only finer cells resolve"
 
 
 @dataclass(frozen=True)
