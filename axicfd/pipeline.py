@@ -126,7 +126,10 @@ class _Climb:
             history.append((number, grid.cells, solution.iterations, solution.residual))
             self._shown = _headline(case, solution)
             tell(solution.residual, True)
-            solutions = [*solutions, solution][-NESTED:] if solution.converged else [solution]
+            if solution.converged:  # mesh errors come from the finest meshes in a row that converged
+                solutions = [*(s for s in solutions if s.converged), solution][-NESTED:]
+            else:
+                solutions = [solution]
             start = None if solution.stop_reason == "diverged" else solution
         halves = self._halves(solve_one, meshes, solutions)
         seconds = time.perf_counter() - self.begun

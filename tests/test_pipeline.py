@@ -190,6 +190,21 @@ def test_without_convergence_the_fields_are_kept_and_marked(monkeypatch):
     assert "not converged" in repr(found)
 
 
+def test_a_coarse_mesh_that_does_not_converge_leaves_the_mesh_errors_of_the_three_finest(monkeypatch):
+    from axicfd import pipeline
+
+    solve_on, solved = pipeline.solve_on, []
+
+    def stalls_on_the_second(*arguments, **more):
+        solved.append(solve_on(*arguments, **more))
+        return dataclasses.replace(solved[-1], stop_reason="no further progress") if len(solved) == 2 else solved[-1]
+
+    monkeypatch.setattr(pipeline, "solve_on", stalls_on_the_second)
+    found = solve(axicfd.load(tubes.text(rest=MESH)))
+    assert found.converged and len(found.nested) == 3
+    assert "numerical_uncertainty" in found.summary
+
+
 @pytest.mark.parametrize("mesh", ["at_most = 1000", "radial = 8\naxial = 8"])
 def test_the_smallest_meshes_get_through(mesh):
     """Their coarsest ones have one cell along z, or diverge; that used to stop the climb, or end in an IndexError."""

@@ -137,8 +137,8 @@ def write_table() -> None:
     lines = [
         "# Mesh errors of random cases",
         "",
-        f"{len(cases)} cases drawn with seed {SEED}; {good} converged on every mesh, two further halvings included "
-        "(the tool prints no mesh error where a mesh does not converge). "
+        f"{len(cases)} cases drawn with seed {SEED}; {good} converged on their finest three meshes and two "
+        "further halvings (the tool prints no mesh error without those three). "
         f"{len(of)} of {len(all_rows)} values judged: the others do not change between meshes, or their limit is not "
         f"known to {study.SHARP:.0%} of the bar. Written by `python -m validation.bars.random_cases`.",
         "",
@@ -150,7 +150,7 @@ def write_table() -> None:
     lines += ["", "## Limits outside", "", *study.misses(of)]
     bad = [row for row in cases if row["ended"] != "converged"]
     if bad:
-        lines += ["", "## Cases without mesh errors", ""]
+        lines += ["", "## Cases without a limit", ""]
         lines += [f"- {row['case']}: {row['ended']}" for row in bad]
     TABLE.write_text("\n".join(lines) + "\n", encoding="utf-8")
 

@@ -88,7 +88,7 @@ def climb(case: Case, more: int = 0) -> Climb:
         counts = level < NESTED
         below = case.solve.stop_below if counts else max(START_BELOW, case.solve.stop_below)
         solution = solve_on(case, meshes.grid(level), solution, below, not_for_ever)
-        if not counts:
+        if not counts or (level == NESTED - 1 and not solution.converged):  # three meshes are enough for mesh errors
             solution = None if solution.stop_reason == "diverged" else solution
             continue
         if not solution.converged:
@@ -97,7 +97,8 @@ def climb(case: Case, more: int = 0) -> Climb:
         trees.append(summary.summary(case, place, solution, views))
         if level == 0:
             least = least_widths(case, trees[-1], solution, views)
-    judged, finer = trees[:NESTED], trees[NESTED:]
+    own = len(trees) - more
+    judged, finer = trees[:own], trees[own:]
     return Climb(meshes.cells, judged, finer, least, time.perf_counter() - begun)
 
 
