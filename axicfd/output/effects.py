@@ -132,7 +132,13 @@ def wall_sentences(found: WallEffect) -> list[str]:
             f"(Maranzana, Perry and Maillet 2004), it {found.predicted}: "
             f"{computed.get(found.axial.verdict, 'against what is computed here')}."
         )
-    return said
+    return said + _refusals(found.results)
+
+
+def _refusals(results: dict[str, Any]) -> list[str]:
+    """Where a case left its model: its numbers, and differences from it, are no better than the laws held there."""
+    left = {name: result.summary.get("refused") for name, result in results.items()}
+    return [f"Mind, {name}: {why}" for name, why in left.items() if why]
 
 
 def wall_rows(found: WallEffect) -> tuple[list[str], list[list[str]]]:
@@ -184,7 +190,9 @@ def assumption_sentences(found: Assumptions) -> list[str]:
     """The verdicts, largest effect first, then what was not solved and why."""
     shown = shown_units(found.case)
     said = [sentence(effect, shown) for effect in found.effects]
-    return said + [f"{name[0].upper()}{name[1:]}: {why}." for name, why in found.left_out.items()]
+    said += [f"{name[0].upper()}{name[1:]}: {why}." for name, why in found.left_out.items()]
+    without = {name if name == IN_FULL else f"without {name}": result for name, result in found.results.items()}
+    return said + _refusals(without)
 
 
 def assumption_rows(found: Assumptions) -> tuple[list[str], list[list[str]]]:

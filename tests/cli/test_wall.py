@@ -5,7 +5,7 @@ import json
 import pytest
 
 from axicfd.cli import app, exits
-from tests.variants.tubes import TEXT
+from tests.variants.tubes import TEXT, effect
 
 
 @pytest.fixture
@@ -64,3 +64,33 @@ def test_progress_names_the_variant(here, capsys):
     app.main(["wall", "tube.toml"])
     lines = capsys.readouterr().err.splitlines()
     assert [line.split("   ")[0] for line in lines] == ["in full", "radial resistance only", "no wall"]
+
+
+def test_without_convergence_there_is_no_verdict(here, capsys, monkeypatch):
+    from dataclasses import replace
+
+    from axicfd.variants import wall
+
+    def broken(case, on_progress=None, **more):
+        result = solve(case, on_progress, **more)
+        return replace(result, summary=result.summary | {"converged": False})
+
+    solve = wall.solve
+    monkeypatch.setattr(wall, "solve", broken)
+    assert app.main(["wall", "tube.toml"]) == exits.NOT_CONVERGED
+    out = " ".join(capsys.readouterr().out.split())
+    assert "cannot tell, since the solve of" in out and "keep it" not in out
+
+
+def test_a_variant_beyond_its_properties_is_said_and_a_case_beyond_them_is_unusable(here, capsys):
+    """A table of viscosity to 26 degC: the wall in full stays below it, with radial resistance only it does not."""
+    hot = [layer["hottest_K"] for layer in (r.summary["layer"]["tube"] for r in list(effect().results.values())[:2])]
+    assert hot[1] > hot[0] + 0.2
+    for limit, status, words in (
+        ((hot[0] + hot[1]) / 2, exits.SOLVED, "Mind, radial resistance only:"),
+        (hot[0] - 0.5, exits.UNUSABLE, "Mind, in full:"),
+    ):
+        law = f'viscosity = {{ temperature = ["280 K", "{limit} K"], value = ["50 mPa s", "50 mPa s"] }}'
+        (here / "tube.toml").write_text(TEXT.replace('viscosity     = "50 mPa s"', law), encoding="utf-8")
+        assert app.main(["wall", "tube.toml", "--replace"]) == status
+        assert words in " ".join(capsys.readouterr().out.split())

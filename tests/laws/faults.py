@@ -27,6 +27,7 @@ class Fault:
 PROPERTIES, BOUNDARY, ENERGY, SOLVE = (f"solver/{name}.py" for name in ("properties", "boundary", "energy", "solve"))
 MOMENTUM, KERNEL_ENERGY = "kernels/momentum.py", "kernels/energy.py"
 AXIAL, SUMMARY = "results/axial.py", "results/summary.py"
+VARIANT_WALL, VARIANT_TESTS = "variants/wall.py", "tests/variants/test_wall.py"
 LUMPED, EXACT = "tests/laws/test_lumped.py", "tests/laws/test_wall_exact.py"
 MECHANICAL = "tests/laws/test_mechanical_energy.py"
 CORNER = "tests/laws/test_inlet_corner.py"
@@ -272,5 +273,35 @@ FAULTS = (
         '{"up": 1.0, "down": -1.0}',
         '{"up": -1.0, "down": 1.0}',
         "tests/results/test_summary.py::test_weight_of_the_column",
+    ),
+    # ------------------------------------------------------------------ variants
+    Fault(
+        "variants: a tube without its wall keeps the film per area of the outside",
+        VARIANT_WALL,
+        '_times(outside.film_coefficient, ratio), "ambient"',
+        'outside.film_coefficient, "ambient"',
+        f"{VARIANT_TESTS}::test_the_bore_gets_the_watts_and_resistances_per_length_of_the_outside",
+    ),
+    Fault(
+        "variants: heat made in the wall is lost with it",
+        VARIANT_WALL,
+        "heat = _plus(_heat_per_length(outside, placed), made)",
+        "heat = _heat_per_length(outside, placed)",
+        f"{VARIANT_TESTS}::test_heat_made_in_the_wall_comes_to_the_bore",
+    ),
+    Fault(
+        "variants: the case with radial resistance only resists nothing across",
+        VARIANT_WALL,
+        "AlongAcross(used.conductivity_r, Constant(0.0))",
+        "AlongAcross(Constant(1e3), Constant(0.0))",
+        f"{VARIANT_TESTS}::test_across_the_wall_the_difference_is_that_of_a_hollow_cylinder",
+    ),
+    Fault(
+        "variants: the stream conducts along z although it is switched off",
+        PROPERTIES,
+        "conducts &= grid.kind != STREAM",
+        "conducts &= grid.kind != NOTHING",
+        "tests/solver/test_properties.py::"
+        "test_without_axial_conduction_in_streams_low_peclet_numbers_give_the_graetz_series",
     ),
 )

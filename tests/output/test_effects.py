@@ -96,3 +96,10 @@ def test_the_folder_holds_verdicts_curves_cases_and_a_picture(tmp_path):
 def test_one_layer_alone_has_neither_the_bare_case_nor_its_column():
     header, _ = effects.wall_rows(wall_effect(tube(), layer="tube"))
     assert header == ["quantity", "radial only", "in full", "by axial conduction"]
+
+
+def test_the_python_calls_give_answers_that_show_themselves():
+    import axicfd
+
+    assert axicfd.wall_effect is wall_effect and callable(axicfd.what_matters)
+    assert "hottest wetted wall" in solved()._repr_html_()

@@ -6,9 +6,8 @@ import argparse
 import sys
 from pathlib import Path
 
-from axicfd.cli import exits
 from axicfd.cli.commands._sets import chosen
-from axicfd.cli.commands.wall import add_contrast, place
+from axicfd.cli.commands.wall import add_contrast, ended, place
 
 SUMMARY = "tell which effects matter: variable properties, viscous heating, the inlet, conduction along the fluid"
 
@@ -48,4 +47,4 @@ def run(arguments: argparse.Namespace) -> int:
         out.print()
         out.print(effects.care_text(found.care, shown))
         out.print(f"The cases without each effect in {where}")
-    return exits.SOLVED if found.converged else exits.NOT_CONVERGED
+    return ended(found.results["in full"], found.converged)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import argparse
 import sys
 from pathlib import Path
+from typing import Any
 
 from axicfd.cli import exits
 from axicfd.cli.commands._sets import add_set, chosen
@@ -66,7 +67,16 @@ def run(arguments: argparse.Namespace) -> int:
         render.rows(out, ["", "", "", ""], effects.along_rows(found.effects, shown))
         out.print(effects.care_text(found.care, shown))
         out.print(f"Cases, curves and a picture in {where}")
-    return exits.SOLVED if found.converged else exits.NOT_CONVERGED
+    return ended(found.results["in full"], found.converged)
+
+
+def ended(full: Any, converged: bool) -> int:
+    """The exit status: of a case that left its model, of solves that did not converge, or of an answer."""
+    left = full.summary.get("refused")
+    if left:
+        print(f"error: {left}", file=sys.stderr)
+        return exits.UNUSABLE
+    return exits.SOLVED if converged else exits.NOT_CONVERGED
 
 
 def place(arguments: argparse.Namespace, word: str) -> Path:
