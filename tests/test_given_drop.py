@@ -153,3 +153,21 @@ def test_the_hand_estimate_has_a_flow_too():
 def test_bad_drops_are_refused(flow, words):
     with pytest.raises(InputError, match=words):
         tube(flow=flow)
+
+
+def test_a_stream_that_a_given_heat_cools_may_have_two_flows():
+    """A fixed heat cools it the further the slower it flows, without a limit: the drop falls with the flow, then rises.
+
+    Energy balance: 120 W from 2 g/s of 2000 J/(kg K) are 30 K, over which the viscosity grows by exp(2.1).
+    """
+    cooled = {"viscosity": COOLED["viscosity"], "outside": 'heat = "-120 W"', "profile": "developed", "length": "2 m"}
+    drop = solve(tube(flow='mass_flow = "2 g/s"', **cooled))["stream.oil.pressure_drop_Pa"]
+    with pytest.raises(RefusedModel, match=r"Several flows of oil .* about 2(\.\d+)? g/s and \d"):
+        solve(tube(flow=f'pressure_drop = "{drop} Pa"', **cooled))
+
+
+def test_coarsest_meshes_do_not_decide_what_is_out_of_reach():
+    """On a mesh of one cell across a drop comes out six times too small; here that is the coarsest one."""
+    given = solve(tube(flow="reynolds = 1000", length="0.05 m"))
+    result = solve(given.case.replace({"stream.oil.pressure_drop": given["stream.oil.pressure_drop_Pa"]}))
+    assert result["stream.oil.reynolds"] == pytest.approx(1000.0, rel=0.01)

@@ -229,6 +229,11 @@ class Ahead:
         return self.t_in + low + cooled, self.t_in + high + heated
 
     @property
+    def heat_is_taken_out(self) -> bool:
+        """Whether a given heat cools the stream, the further the less flows."""
+        return any(_heat(section) < 0.0 for section in self.layout.sections)
+
+    @property
     def is_heated(self) -> bool:
         """Whether anything warms or cools the tube."""
         return any(_acts(section, self.t_in) for section in self.layout.sections)

@@ -149,7 +149,7 @@ class Energy:
             return before
         try:
             change = self._correction(drop)
-        except RuntimeError:  # a singular system: what led here has diverged
+        except (RuntimeError, np.linalg.LinAlgError):  # singular or overflowing: what led here has diverged
             return float("nan")
         self.t = self.t + change
         after = self.error()

@@ -147,6 +147,8 @@ class HeatCycle:
         triangle = np.zeros((len(columns), len(columns)))
         for k, column in enumerate(columns):
             triangle[: k + 1, k] = column[: k + 1]
+        if not np.isfinite(triangle).all():  # LAPACK would say so on the terminal
+            raise np.linalg.LinAlgError("the heat system overflows")
         u = np.zeros_like(r)
         for factor, v in zip(np.linalg.lstsq(triangle, g[:-1], rcond=None)[0], basis[:-1], strict=True):
             krylov.add(factor, v, u)
