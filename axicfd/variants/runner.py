@@ -26,6 +26,7 @@ SOLVED, NOT_CONVERGED, REFUSED, FAILED = STATUSES = "solved", "not converged", "
 ONE_THREAD = ("OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS", "NUMBA_NUM_THREADS")
 AT_ONCE_ELSEWHERE = 500  # cases handed to an executor at a time: enough to keep a cluster busy
 STARTS = 3  # of a process that dies before it has begun
+GUARD = 'A script puts its statements under `if __name__ == "__main__":`.'
 LOOK_EVERY = 1.0  # seconds; waiting without an end could not be interrupted on every system
 
 
@@ -128,7 +129,7 @@ def refuse_within_a_worker() -> None:
     if parent_process() is not None:
         raise AxicfdError(
             "many cases are solved on processes of their own, and this script would start them again within each. "
-            'Put its statements under `if __name__ == "__main__":`.'
+            + GUARD
         )
 
 
@@ -237,7 +238,7 @@ class _Lane:
                 return
             except BrokenExecutor as why:
                 if attempt == STARTS - 1:
-                    raise AxicfdError(f"no process to solve on could be started ({why}).") from None
+                    raise AxicfdError(f"no process to solve on could be started: {why} {GUARD}") from None
             self.mend()
 
 

@@ -14,7 +14,7 @@ from axicfd.case.write import to_toml
 from axicfd.output.sweep import sweep
 
 ROWS = 200
-TURNS = 3  # of two workers and of two plain processes, by turns
+TURNS = 2  # of two workers and of two plain processes, by turns
 
 # Every second row from the one named, each on the meshes of the base case; nothing is kept.
 PLAIN = """
