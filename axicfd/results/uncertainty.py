@@ -20,8 +20,7 @@ SECOND_ORDER = 3.2, 5.0  # ratio of successive changes that counts as second ord
 SAFE, CAREFUL = 1.25, 3.0  # Roache's safety factors
 LEAST_OF_CORRECTION = 0.1  # the half-width of an extrapolated value is at least this share of the correction
 LEAST_OF_COARSER = 0.05  # and of the half-width that one mesh less would have given
-SETTLED = 3.4, 4.8  # the ratio on coarser meshes that, with it on the finest, makes four meshes agree on second order
-LEAST_OF_SETTLED = 0.05  # share of the correction where they do
+LEAST_OF_SETTLED = 0.04  # share of the correction where all four meshes agree on second order
 ROUND_OFF = 1e-11  # changes below this share of the value are round-off
 # What the iteration may leave undone, as a multiple of the residual at which solves stop: a share of the scale of
 # temperatures, heats and pressures; a share of the value for all else. Residuals are sums over the whole tube, so what
@@ -118,7 +117,7 @@ def _of_second_order(values: Array, older: Array, last: Array) -> tuple[Array, A
     coarser = np.nan_to_num(estimates(values[:-1]).half_width, nan=0.0)
     left = _left(before - (4.0 * coarse - coarsest) / 3.0, moved)
     settled = SAFE * np.maximum(left, LEAST_OF_SETTLED * correction)
-    agree = _is_within(SETTLED, coarse - coarsest, older)
+    agree = _is_within(SECOND_ORDER, coarse - coarsest, older)
     return value, np.where(agree, settled, np.maximum(half, LEAST_OF_COARSER * coarser))
 
 

@@ -129,14 +129,14 @@ def test_four_meshes_of_second_order_tell_what_is_left():
     values = [LIMIT + h**2 + h**4 / 8 for h in (1.0, 0.5, 0.25, 0.125)]
     value, before = (4.0 * values[3] - values[2]) / 3.0, (4.0 * values[2] - values[1]) / 3.0
     left = 1.25 * abs(value - before) / 3.0
-    correction = 1.25 * 0.05 * abs(value - values[3])
+    correction = 1.25 * 0.04 * abs(value - values[3])
     assert estimate(values).half_width == pytest.approx(max(left, correction))
     assert abs(value - LIMIT) < estimate(values).half_width < 0.5 * estimate(values[1:]).half_width
 
 
 def test_four_meshes_that_agree_less_keep_the_bar_of_three():
-    """A ratio of 3.3 on the coarser meshes may be a first order that has not shown yet."""
-    values = [1.0, 1.070, 1.0912, 1.0975]
+    """A ratio of 3 on the coarser meshes may be a first order that has not shown yet."""
+    values = [1.0064, 1.070, 1.0912, 1.0975]
     assert estimate(values).half_width >= estimate(values[1:]).half_width
 
 

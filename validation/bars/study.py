@@ -224,6 +224,7 @@ class Judged:
         return self.error <= self.bar
 
 
+SAME_CHANGES = 1e-4  # relative difference of changes between meshes below which two quantities are one
 NOTHING = 1e-7  # shares of the scale below which error and bar are those of the iteration: a balance fixes the value
 
 
@@ -248,6 +249,22 @@ def against(t: Triple, value: float, bar: float, rule: str) -> Judged | None:
     if t.scale == 0.0 or max(one.bar, one.error) <= NOTHING * t.scale:
         return None
     return one if t.known_to <= SHARP * one.bar or one.error > one.bar + t.known_to else None
+
+
+def distinct(of: list[Judged]) -> list[Judged]:
+    """Without those that are another quantity of their case in other units, as the heat is to the outlet temperature:
+    their changes from mesh to mesh are in proportion, and they would count one error several times.
+    """
+    kept: list[Judged] = []
+    seen: dict[tuple[str, int], list[np.ndarray]] = {}
+    for j in of:
+        changes = np.diff(j.triple.values)
+        shape = changes / changes[-1] if changes[-1] else changes
+        others = seen.setdefault((j.triple.case, j.triple.mesh), [])
+        if not any(len(shape) == len(one) and np.allclose(shape, one, rtol=SAME_CHANGES) for one in others):
+            others.append(shape)
+            kept.append(j)
+    return kept
 
 
 @dataclass(frozen=True)

@@ -40,7 +40,7 @@ def judged() -> list[study.Judged]:
                 one = study.against(t, _number(result, t.quantity), bars[t.quantity], rule)
                 if one is not None:
                     found.append(one)
-    return found
+    return study.distinct(found)
 
 
 def _number(result: Result, quantity: str) -> float:
