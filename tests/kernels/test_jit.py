@@ -61,7 +61,9 @@ def test_a_kernel_sees_what_is_not_a_number():
 @pytest.mark.skipif("NUMBA_DISABLE_JIT" in os.environ, reason="this is the run without the compiler")
 def test_kernels_without_the_compiler():
     """Plain Python raises where an index leaves its array; compiled code reads on in silence."""
-    command = [sys.executable, "-m", "pytest", "-q", "-p", "no:cacheprovider", str(Path(__file__).parent)]
+    # one solved tube touches every index that the others do, and takes long enough in plain Python
+    others = "not few_cycles_for_any_tube and not plain_iteration_solves_it"
+    command = [sys.executable, "-m", "pytest", "-q", "-p", "no:cacheprovider", "-k", others, str(Path(__file__).parent)]
     done = subprocess.run(
         command, capture_output=True, text=True, cwd=ROOT, env={**os.environ, "NUMBA_DISABLE_JIT": "1"}
     )
