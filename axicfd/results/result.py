@@ -43,6 +43,7 @@ class Result:
     solution: everything the solver left on the finest mesh
     nested  : headline quantities and curves on each mesh that mesh errors come from, coarsest first; differences of
               two results are formed on each mesh before they are extrapolated
+    floor   : least half-widths of what depends on the mesh
     meshes  : the family of these meshes; variants of the case are solved on the same counts and maps
     """
 
@@ -58,6 +59,7 @@ class Result:
     history: list[tuple[int, int, int, float]]
     solution: Solution
     nested: tuple[Nested, ...]
+    floor: uncertainty.Floor
     meshes: Family
 
     @property
@@ -143,7 +145,7 @@ def make_result(
             },
         }
         tree = {**tree, **values}
-        half_widths = {name: _curve_half_widths(name, curves, least) for name in curves[-1]}
+        half_widths = {name: _curve_half_widths(name, curves, least.floor) for name in curves[-1]}
         for name, columns in curves[-1].items():
             _blank_where_unknown(columns, half_widths[name])
     found = cautions.after(case, layout, {**head, **tree}, curves[-1], solution)
@@ -157,7 +159,20 @@ def make_result(
     fields = _fields(case, solution)
     radial = axial.radial_profiles(case, solution)
     return Result(
-        case, layout, version, full, curves[-1], half_widths, outside, radial, fields, history, solution, nested, meshes
+        case,
+        layout,
+        version,
+        full,
+        curves[-1],
+        half_widths,
+        outside,
+        radial,
+        fields,
+        history,
+        solution,
+        nested,
+        floor_of(case, trees[-1], solution),
+        meshes,
     )
 
 
@@ -168,14 +183,19 @@ def with_accuracy(result: Result, found: dict[str, Any], seconds: float) -> Resu
     return replace(result, summary=full)
 
 
+def floor_of(case: Case, tree: dict[str, Any], solution: Solution) -> uncertainty.Floor:
+    """The least half-widths, from the finest mesh and its tree."""
+    scales = accuracy.scales(tree, solution)
+    of = {"K": scales["temperature_K"], "W": scales["heat_W"], "Pa": max(scales["pressure_Pa"].values(), default=0.0)}
+    return uncertainty.Floor(of, case.solve.stop_below)
+
+
 def least_widths(
     case: Case, tree: dict[str, Any], solution: Solution, views: dict[str, axial.StreamView]
 ) -> uncertainty.LeastWidths:
     """What mesh errors need of the finest mesh besides its tree."""
-    scales = accuracy.scales(tree, solution)
-    of = {"K": scales["temperature_K"], "W": scales["heat_W"], "Pa": max(scales["pressure_Pa"].values(), default=0.0)}
     curves = summary.curves_of_places(solution, views)
-    return uncertainty.LeastWidths(solution.grid.z, curves, of, case.solve.stop_below)
+    return uncertainty.LeastWidths(solution.grid.z, curves, floor_of(case, tree, solution))
 
 
 def _told_apart(
@@ -251,7 +271,7 @@ def _blank_where_unknown(columns: dict[str, np.ndarray], half_widths: dict[str, 
 
 
 def _curve_half_widths(
-    name: str, curves: list[dict[str, dict[str, np.ndarray]]], least: uncertainty.LeastWidths
+    name: str, curves: list[dict[str, dict[str, np.ndarray]]], floor: uncertainty.Floor
 ) -> dict[str, np.ndarray]:
     z = [c[name]["z_m"] for c in curves]
     widths = {}
@@ -261,9 +281,8 @@ def _curve_half_widths(
         elif column == "reverse":
             widths[column] = np.full(len(values), np.nan)  # a flag has no mesh error
         else:
-            largest = float(np.abs(values).max(where=np.isfinite(values), initial=0.0))
-            floor = least.floor((column,), largest)
-            widths[column] = uncertainty.curve_half_widths(z, [c[name][column] for c in curves], floor)
+            least = floor.of_curve(column, values)
+            widths[column] = uncertainty.curve_half_widths(z, [c[name][column] for c in curves], least)
     return widths
 
 

@@ -196,23 +196,37 @@ PLACE = "_z_m"  # end of the name of a place; "_K" in its stead is the extreme t
 
 
 @dataclass(frozen=True)
-class LeastWidths:
-    """What the mesh errors of a tree need besides the values.
+class Floor:
+    """The least half-widths in a solved case: what further iterations might change.
 
-    z        : (nz + 1,) [m] axial faces of the finest mesh
-    curves   : names of each place, joined by dots -> (z, values) of the curve whose largest value lies there
     scales   : "K", "W", "Pa" -> what shares of temperatures, heats and pressures are counted of
     residual : at which the solves stop
     """
 
-    z: Array
-    curves: dict[str, tuple[Array, Array]]
     scales: dict[str, float]
     residual: float
 
-    def floor(self, path: tuple[str, ...], value: float) -> float:
-        """The least half-width of a quantity: what further iterations might change."""
+    def of(self, path: tuple[str, ...], value: float) -> float:
+        """Of a quantity, in its unit. path : its names in the tree, or the one that carries the unit"""
         return (UNDONE if unit(path) else UNDONE_ELSE) * self.residual * scale(path, value, self.scales)
+
+    def of_curve(self, column: str, values: Array) -> float:
+        """Of a whole curve, by its largest value."""
+        return self.of((column,), float(np.abs(values).max(where=np.isfinite(values), initial=0.0)))
+
+
+@dataclass(frozen=True)
+class LeastWidths:
+    """What the mesh errors of a tree need besides the values.
+
+    z      : (nz + 1,) [m] axial faces of the finest mesh
+    curves : names of each place, joined by dots -> (z, values) of the curve whose largest value lies there
+    floor  : of every half-width
+    """
+
+    z: Array
+    curves: dict[str, tuple[Array, Array]]
+    floor: Floor
 
     def known_to(self, path: tuple[str, ...], places: list[float], extremes: list[float]) -> float:
         """[m] half-width of a place, from the places and the extremes there on the last meshes.
@@ -226,7 +240,7 @@ class LeastWidths:
         if ".".join(path) not in self.curves:
             return least
         found = estimate(extremes)
-        floor = self.floor((*path[:-1], _extreme(path[-1])), extremes[-1])
+        floor = self.floor.of((*path[:-1], _extreme(path[-1])), extremes[-1])
         margin = max(found.half_width or 0.0, floor) + abs(found.value - extremes[-1])
         z, values = self.curves[".".join(path)]
         return max(least, float(np.abs(z[values >= values.max() - margin] - place).max()))
@@ -254,7 +268,7 @@ def estimate_tree(trees: list[Any], least: LeastWidths, path: tuple[str, ...] = 
                 width = least.known_to(here, numbers, [float(value) for value in extremes if _is_number(value)])
                 how = {"observed_order": None, "rule": SPACING}
             else:
-                found = estimate(numbers, least.floor(here, numbers[-1]))
+                found = estimate(numbers, least.floor.of(here, numbers[-1]))
                 values[key], width = found.value, found.half_width
                 how = {"observed_order": found.order, "rule": found.rule}
         if width is not None and width != {}:

@@ -1,7 +1,8 @@
 """What changes between two results that were solved on one family of meshes, with the mesh error of the difference.
 
 The difference of a quantity is formed on each of the nested meshes and then extrapolated like any quantity. Errors
-that both results share cancel, so its half-width is far smaller than the sum of the two.
+that both results share cancel, so its half-width is far smaller than the sum of the two. What their iterations leave
+undone does not cancel: no half-width is less than the sum of both floors.
 """
 
 from __future__ import annotations
@@ -18,6 +19,7 @@ from axicfd.pipeline import Progress
 from axicfd.results import accuracy, uncertainty
 from axicfd.results.result import Nested, Result
 from axicfd.variants.care import Care
+from axicfd.variants.runner import Answer
 
 YES, NO, OPEN = "matters", "does not matter", "cannot tell"
 
@@ -60,7 +62,7 @@ class Change:
         return abs(self.value) > amount
 
 
-def change(of: Quantity, then: Result, base: Result) -> Change | None:
+def change(of: Quantity, then: Result | Answer, base: Result | Answer) -> Change | None:
     """The quantity in `then` minus that in `base`; None where one of them has no value.
 
     Without three nested meshes in both, which no mesh error can be told from, the difference of the finest.
@@ -73,8 +75,9 @@ def change(of: Quantity, then: Result, base: Result) -> Change | None:
     if len(known) < 3 or None in values[-3:]:
         return Change(values[-1], None)
     if of.key.endswith("_z_m"):
-        return Change(values[-1], _sum(*(of.of(r.summary.get("numerical_uncertainty")) for r in (then, base))))
-    found = uncertainty.estimate(known)
+        return Change(values[-1], sum_of_widths(*(of.of(r.summary.get("numerical_uncertainty")) for r in (then, base))))
+    floor = sum(r.floor.of((of.key,), of.of(mesh.tree) or 0.0) for r, mesh in zip((then, base), pairs[-1], strict=True))
+    found = uncertainty.estimate(known, floor)
     return Change(found.value, found.half_width)
 
 
@@ -88,7 +91,9 @@ def curve_change(then: Result, base: Result, stream: str, column: str) -> tuple[
     differences = [a.curves[stream][column] - b.curves[stream][column] for a, b in pairs]
     if len(pairs) < 3:
         return z[-1], differences[-1], np.full(len(z[-1]), np.nan)
-    return z[-1], differences[-1], uncertainty.curve_half_widths(z, differences)
+    finest = zip((then, base), pairs[-1], strict=True)
+    floor = sum(result.floor.of_curve(column, mesh.curves[stream][column]) for result, mesh in finest)
+    return z[-1], differences[-1], uncertainty.curve_half_widths(z, differences, floor)
 
 
 @dataclass(frozen=True)
@@ -239,7 +244,7 @@ def _largest(then: Result, base: Result, stream: str, column: str) -> float:
     return float(np.nanmax(np.abs(both))) if np.isfinite(both).any() else 0.0
 
 
-def _pairs(then: Result, base: Result) -> list[tuple[Nested, Nested]]:
+def _pairs(then: Result | Answer, base: Result | Answer) -> list[tuple[Nested, Nested]]:
     """The nested meshes of both, the finest last; only as many as both have."""
     n = min(len(then.nested), len(base.nested))
     return list(zip(then.nested[-n:], base.nested[-n:], strict=True))
@@ -249,7 +254,8 @@ def _minus(a: float | None, b: float | None) -> float | None:
     return None if a is None or b is None else a - b
 
 
-def _sum(a: float | None, b: float | None) -> float | None:
+def sum_of_widths(a: float | None, b: float | None) -> float | None:
+    """The sum of two half-widths; None where one is unknown."""
     return None if a is None or b is None else a + b
 
 

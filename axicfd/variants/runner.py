@@ -19,6 +19,7 @@ from axicfd.case.model import Case
 from axicfd.errors import AxicfdError
 from axicfd.mesh.build import Family
 from axicfd.results.result import Nested, Result
+from axicfd.results.uncertainty import Floor
 
 SOLVED, NOT_CONVERGED, REFUSED, FAILED = STATUSES = "solved", "not converged", "refused", "failed"
 
@@ -61,11 +62,12 @@ class Answer:
 
     summary: dict[str, Any]
     nested: tuple[Nested, ...]
+    floor: Floor
 
 
 def headline(result: Result) -> Answer:
     """The default of `keep`: curves and fields stay behind."""
-    return Answer(result.summary, tuple(Nested(nested.tree, {}) for nested in result.nested))
+    return Answer(result.summary, tuple(Nested(nested.tree, {}) for nested in result.nested), result.floor)
 
 
 def run(

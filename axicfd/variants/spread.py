@@ -34,7 +34,7 @@ from axicfd.mesh.grid import Array
 from axicfd.pipeline import solve
 from axicfd.results.result import Result
 from axicfd.variants import runner
-from axicfd.variants.contrast import Change, change
+from axicfd.variants.contrast import Change, change, sum_of_widths
 from axicfd.variants.runner import SOLVED, Job, Outcome
 from axicfd.variants.sample import latin_hypercube
 from axicfd.variants.sweep import Progress
@@ -438,7 +438,7 @@ def _quick(q: ResultQuantity, inputs: dict[str, InputTolerance], answers: Answer
         slope, above, below = change(q, up, down), change(q, up, base), change(q, down, base)
         if slope is None or above is None or below is None:
             return None
-        bend = Change((above.value + below.value) / 2.0, _half(_sum(above.half_width, below.half_width)))
+        bend = Change((above.value + below.value) / 2.0, _half(sum_of_widths(above.half_width, below.half_width)))
         found.append((path, Change(slope.value / 2.0, _half(slope.half_width)), bend))
     std = hypot(*(by_std.value for _, by_std, _ in found))
     of_std = None  # mesh error of the standard deviation
@@ -453,10 +453,6 @@ def _quick(q: ResultQuantity, inputs: dict[str, InputTolerance], answers: Answer
 
 def _half(width: float | None) -> float | None:
     return None if width is None else width / 2.0
-
-
-def _sum(a: float | None, b: float | None) -> float | None:
-    return None if a is None or b is None else a + b
 
 
 def _half_range(effects: list[tuple[InputTolerance, float]]) -> float:

@@ -10,6 +10,7 @@ import pytest
 
 from axicfd.results import uncertainty
 from axicfd.results.uncertainty import (
+    Floor,
     LeastWidths,
     curve_half_widths,
     estimate,
@@ -233,7 +234,7 @@ def leaves(temperature: float, place: float, entry: float | None) -> dict:
 
 
 def least_at(faces, curves=None, residual=0.0) -> LeastWidths:
-    return LeastWidths(np.array(faces), curves or {}, {"K": 40.0, "W": 5.0, "Pa": 7.0}, residual)
+    return LeastWidths(np.array(faces), curves or {}, Floor({"K": 40.0, "W": 5.0, "Pa": 7.0}, residual))
 
 
 FACES = [0.0, 0.3, 0.3225, 0.32575, 1.0]  # the place of `walked` lies in a cell of 3.25 mm

@@ -7,6 +7,7 @@ import pytest
 
 from axicfd.case.quantities import ResultQuantity
 from axicfd.results.result import Nested
+from axicfd.results.uncertainty import UNDONE, Floor
 from axicfd.variants.contrast import Change, change, curve_change
 
 OUTLET = ResultQuantity("stream.water.outlet_temperature", ("stream", "water", "outlet_temperature_K"))
@@ -16,6 +17,7 @@ OUTLET = ResultQuantity("stream.water.outlet_temperature", ("stream", "water", "
 class Made:
     nested: tuple
     summary: dict
+    floor: Floor = Floor({"K": 40.0, "W": 5.0, "Pa": 7.0}, 1e-8)
 
 
 def made(limit: float, shared: float, own: float, levels: int = 4) -> Made:
@@ -33,6 +35,19 @@ def test_errors_that_both_share_cancel():
     found = change(OUTLET, made(301.0, 0.5, 0.001), made(300.0, 0.5, 0.0))
     assert found.value == pytest.approx(1.0, abs=1e-9)
     assert found.half_width < 0.01  # each result alone is off by 0.5 on its finest mesh
+
+
+def test_no_bar_is_sharper_than_what_both_iterations_leave_undone():
+    """Each temperature may be off by UNDONE times the residual 1e-8 of the 40 K it is a share of."""
+    then, base = made(301.0, 0.5, 1e-9), made(300.0, 0.5, 0.0)
+    assert change(OUTLET, then, base).half_width == pytest.approx(2 * UNDONE * 1e-8 * 40.0)
+    _, _, half_width = curve_change(then, base, "water", "bulk_temperature_K")
+    assert half_width == pytest.approx(np.full(9, 2 * UNDONE * 1e-8 * 40.0), rel=0.01)
+
+
+def test_what_no_mesh_acts_on_has_no_floor():
+    found = change(OUTLET, made(301.0, 0.0, 0.0), made(300.0, 0.0, 0.0))
+    assert found == Change(1.0, 0.0)
 
 
 def test_without_three_meshes_the_difference_has_no_half_width():

@@ -136,7 +136,7 @@ def limit(values: list[float]) -> tuple[float, float]:
 
 def triples(group: str, name: str, mesh: int, found: Climb, limits: dict[str, tuple[float, float]]) -> list[Triple]:
     """Every quantity of a climb that has a known limit and a value on all of its meshes."""
-    of, flat = found.least.scales, [dict(leaves(tree)) for tree in found.judged]
+    of, flat = found.least.floor.scales, [dict(leaves(tree)) for tree in found.judged]
     _, widths, _ = uncertainty.estimate_tree(
         [{key: tree[key] for key in WITH_BARS} for tree in found.judged], found.least
     )

@@ -10,8 +10,7 @@ import numpy as np
 from axicfd.case.model import Case
 from axicfd.case.read import load
 from axicfd.pipeline import solve
-from axicfd.results.axial import stream_views
-from axicfd.results.result import Result, least_widths
+from axicfd.results.result import Result
 from axicfd.results.uncertainty import PLACE
 from validation.bars.study import leaves
 from validation.common import Row
@@ -84,14 +83,12 @@ def over_floor(name: str) -> tuple[float, str]:
     """(largest, quantity) change from stopping at the residuals LOOSER, over the half-width that covers it."""
     coarser = case(name).replace({"mesh.at_most": FEWER})
     tight = solve(coarser.replace({"solve.stop_below": TIGHT}))
-    views = stream_views(tight.case, tight.solution)
     found = []
     for residual in LOOSER:
         loose = solve(coarser.replace({"solve.stop_below": residual}))
-        least = least_widths(loose.case, loose.summary, loose.solution, views)
         after = dict(leaves(loose.summary))
         for path, value in leaves(tight.summary):
-            floor = least.floor(tuple(path.split(".")), value)
+            floor = loose.floor.of(tuple(path.split(".")), value)
             if not path.endswith(PLACE) and floor > 0.0:
                 found.append((abs(after[path] - value) / floor, f"{path}, residual {residual:.0e}"))
     return max(found)
