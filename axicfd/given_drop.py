@@ -6,6 +6,7 @@ flow has a sequence of values, and with it a mesh error, like every other quanti
 
 import math
 from collections.abc import Callable
+from contextlib import suppress
 from dataclasses import replace
 
 from axicfd import units
@@ -64,7 +65,8 @@ class GivenDrop:
             start = solution if solution.stop_reason != "diverged" else start
             seconds, iterations = seconds + solution.seconds, iterations + solution.iterations
             miss = self._miss(solution)
-            if not math.isfinite(miss) or (solution.converged and below == stop_below and abs(miss) <= close):
+            reached = solution.converged and below == stop_below and abs(miss) <= close
+            if reached or not math.isfinite(miss):
                 break
             if last is not None and abs(x - last[0]) > 1e3 * close:
                 self.exponent = (miss - last[1]) / (x - last[0]) or 1.0
@@ -72,7 +74,6 @@ class GivenDrop:
             if abs(miss) < ROUGH * CLOSE_TO_RESIDUAL**2:
                 below = stop_below
             x -= min(max(miss / self.exponent, -LONGEST_STEP), LONGEST_STEP)
-        reached = abs(miss) <= close
         if reached:
             self.latest = x
         reason = solution.stop_reason if reached or not solution.converged else "no further progress"
@@ -122,7 +123,11 @@ class GivenDrop:
         pairs = list(zip(places[:-1], places[1:], strict=True))
         brackets = [(a, b) for a, b in pairs if miss(a) <= 0.0 < miss(b) or miss(a) > 0.0 >= miss(b)]
         brackets = [pair for pair in brackets if all(math.isfinite(miss(place)) for place in pair)]
-        roots = sorted(brentq(miss, a, b, xtol=SEARCH) for a, b in brackets)
+        roots = []
+        for a, b in brackets:
+            with suppress(ValueError):  # a flow in between has no drop
+                roots.append(brentq(miss, a, b, xtol=SEARCH))
+        roots.sort()
         if len(roots) > 1:  # where the model does not hold is no answer, if there is another
             roots = [root for root in roots if not self._refused(root, solved)] or roots
         if not roots:
@@ -132,7 +137,7 @@ class GivenDrop:
             )
         if len(roots) > 1:
             raise self._several(roots)
-        near = sorted(tried, key=lambda x: abs(x - roots[0]))[:2]
+        near = sorted((x for x in tried if math.isfinite(tried[x])), key=lambda x: abs(x - roots[0]))[:2]
         self.exponent = (tried[near[0]] - tried[near[1]]) / (near[0] - near[1]) or 1.0
         return roots[0], solved.get(near[0])
 

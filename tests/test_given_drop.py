@@ -117,6 +117,18 @@ def test_a_drop_beyond_laminar_flow_is_refused():
         solve(tube(flow='pressure_drop = "1 bar"'))
 
 
+def test_flows_without_a_drop_in_between_are_no_answer(monkeypatch):
+    known = given_drop.GivenDrop._miss
+
+    def gap(self, solution):
+        miss = known(self, solution)
+        return miss if abs(miss) > 0.02 else math.nan
+
+    monkeypatch.setattr(given_drop.GivenDrop, "_miss", gap)
+    with pytest.raises(RefusedModel, match="No flow of oil was found"):
+        solve(tube(flow='pressure_drop = "0.15 bar"', **COOLED))
+
+
 def test_it_costs_few_solves(monkeypatch):
     """Work is cells times iterations; a flow that is given costs one solve on each mesh."""
     work = []
