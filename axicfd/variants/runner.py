@@ -206,11 +206,22 @@ class _Lane:
             self._ready = self._executor.submit(_ready) if self.own else None
 
     def submit(self, *work: Any) -> Future:
+        """Hand out work; a process that died with nothing to do is replaced."""
+        future = self._submitted(*work)
+        self.running += 1
+        return future
+
+    def _submitted(self, *work: Any) -> Future:
         if self._ready is not None:
             self._wait_until_ready()
         assert self._executor is not None
-        self.running += 1
-        return self._executor.submit(*work)
+        try:
+            return self._executor.submit(*work)
+        except BrokenExecutor:
+            if not self.own:
+                raise
+            self.mend()
+            return self._submitted(*work)
 
     def mend(self) -> None:
         """Another process in place of a dead one."""

@@ -106,6 +106,20 @@ def test_a_killed_process_costs_its_own_case_only(tmp_path):
 
 
 @pytest.mark.slow
+@pytest.mark.skipif(sys.platform == "win32", reason="no kill -9 there")
+def test_a_process_killed_with_nothing_to_do_is_replaced():
+    lane = runner._Lane(runner._own_process, 1)
+    lane.begin()
+    try:
+        first = lane.submit(os.getpid).result()
+        os.kill(first, signal.SIGKILL)
+        time.sleep(1.0)  # until its executor knows
+        assert lane.submit(os.getpid).result() != first
+    finally:
+        lane.end()
+
+
+@pytest.mark.slow
 def test_an_answer_that_cannot_travel_fails_alone():
     found = gathered([titled("one")], keep=cannot_travel, workers=1)
     assert found["one"].status == FAILED
