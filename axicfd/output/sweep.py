@@ -233,11 +233,12 @@ def _prepare(folder: Path, base: Case, replace: bool) -> None:
             raise ResultsFolderError(
                 f"the folder {folder} holds other files and no {NAME}. Give another place with --out."
             )
-        with SweepStore(folder / NAME) as store:
-            facts = store.facts()
         if replace:
             _empty(folder)
-        elif facts.get("base", canonical(base)) != canonical(base):
+            return
+        with SweepStore(folder / NAME) as store:
+            facts = store.facts()
+        if facts.get("base", canonical(base)) != canonical(base):
             title = load(facts["case"]).title or "untitled"
             raise ResultsFolderError(
                 f'the folder {folder} holds a sweep of another base case ("{title}" with other values). '

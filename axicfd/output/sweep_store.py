@@ -29,7 +29,10 @@ create table if not exists plan (number integer primary key, key text not null, 
 
 
 class SweepStore:
-    """Records by their key, and the plan that was run last. Without a path it lives in memory."""
+    """Records by their key, and the plan that was run last; for use in a `with`. Without a path it lives in memory.
+
+    Raises `ResultsFolderError` where the file cannot be read or written.
+    """
 
     def __init__(self, path: Path | None) -> None:
         self.path = path
@@ -42,13 +45,17 @@ class SweepStore:
         except sqlite3.Error as why:
             raise self._broken(why) from None
         if layout != LAYOUT:
-            raise ResultsFolderError(f"{path} was written by another version. Give another place with --out.")
+            raise ResultsFolderError(
+                f"{path} was written by another version. Give another place with --out, or begin anew with --replace."
+            )
 
     def __enter__(self) -> SweepStore:
         return self
 
-    def __exit__(self, *error: object) -> None:
+    def __exit__(self, kind: Any, error: BaseException | None, trace: Any) -> None:
         self._connection.close()
+        if isinstance(error, sqlite3.Error):
+            raise self._broken(error) from None
 
     def facts(self) -> dict[str, str]:
         """What holds for the whole sweep: its base case, its meshes, what varies."""
@@ -89,13 +96,8 @@ class SweepStore:
             record = replace(record, fields=None)
         plain = asdict(record)
         head = [plain.pop(name) for name in ("key", "status", "message", "seconds")]
-        try:
-            with self._connection:
-                self._connection.execute(
-                    "insert or replace into record values (?, ?, ?, ?, ?)", [*head, json.dumps(plain)]
-                )
-        except sqlite3.Error as why:
-            raise self._broken(why) from None
+        with self._connection:
+            self._connection.execute("insert or replace into record values (?, ?, ?, ?, ?)", [*head, json.dumps(plain)])
 
     def _broken(self, why: Exception) -> ResultsFolderError:
         return ResultsFolderError(f"cannot use {self.path}: {why}. Move it away, or give another place with --out.")

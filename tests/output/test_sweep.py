@@ -17,6 +17,7 @@ import axicfd
 from axicfd.errors import AxicfdError, ResultsFolderError
 from axicfd.output import folder, sweep_figures, sweep_lines
 from axicfd.output.sweep import read_sweep, sweep
+from axicfd.output.sweep_store import SweepStore
 from axicfd.variants import runner
 from tests.variants.test_runner import BASE
 
@@ -88,10 +89,19 @@ def test_places_that_cannot_be_used_are_told(tmp_path):
     (tmp_path / "broken" / "sweep.sqlite").write_text("this is no data base, and long enough to be read as one" * 30)
     with pytest.raises(ResultsFolderError, match="sweep.sqlite"):
         sweep(plan, tmp_path / "broken", **THREAD)
+    assert len(sweep(plan, tmp_path / "broken", replace=True, **THREAD)) == 3
     with pytest.raises(ResultsFolderError, match="holds no sweep"):
         read_sweep(tmp_path)
     with pytest.raises(AxicfdError, match="needs a folder"):
         sweep(plan, keep_fields=True, **THREAD)
+
+
+def test_a_store_that_breaks_meanwhile_is_told(tmp_path):
+    with pytest.raises(ResultsFolderError, match="cannot use .*sweep.sqlite"):
+        with SweepStore(tmp_path / "sweep.sqlite") as store:
+            with sqlite3.connect(tmp_path / "sweep.sqlite") as other:
+                other.execute("drop table plan")
+            store.plan()
 
 
 def test_an_interrupted_sweep_keeps_its_rows_and_its_table(tmp_path):
