@@ -76,19 +76,20 @@ def _numbers(o: OutputSpread, shown: Shown) -> tuple[str, str, str]:
     row = o.quantity.row
     unit = shown.unit(row.kind) if row.kind else row.unit
     value = float(shown.value(row.kind, o.value))
-    below, above = (float(shown.difference(row.kind, abs(end - o.value))) for end in o.range)
+    low, high = (float(shown.difference(row.kind, end - o.value)) for end in o.range)
+    widest = max(abs(low), abs(high))
     mesh = ""
     if o.half_width is not None:
         finest = FINEST_TEMPERATURE if row.kind == "temperature" else None
         half = float(shown.difference(row.kind, o.half_width))
         mesh = f"±{with_bar(value, half, finest)[1] if half > 0.0 else 0}"
-    if max(below, above) <= 1e-9 * abs(value):
+    if widest <= 1e-9 * abs(value):
         return amount(shown, row.kind, o.value, row.unit), "±0", mesh
-    text, wide = with_bar(value, max(below, above))
+    text, wide = with_bar(value, widest)
     if o.sampled is None:
         return f"{text} {unit}".rstrip(), f"±{wide}", mesh
     decimals = len(wide.partition(".")[2])
-    return f"{text} {unit}".rstrip(), f"-{below:.{decimals}f} +{above:.{decimals}f}", mesh
+    return f"{text} {unit}".rstrip(), f"{low:+.{decimals}f} {high:+.{decimals}f}", mesh
 
 
 def notes(spread: Spread) -> list[str]:
@@ -96,7 +97,9 @@ def notes(spread: Spread) -> list[str]:
     shown, said = shown_units(spread.case), []
     for o in spread.outputs:
         name = o.quantity.label
-        if o.sampled is None and o.is_bent:
+        if spread.samples is not None and o.sampled is None:
+            said.append(f"{_begun(name)}: too few samples have a value; the quick answer alone is given.")
+        elif o.sampled is None and o.is_bent:
             said.append(
                 f"{_begun(name)}: not in a straight line with its inputs; its mean moves by about "
                 f"{_size(o, o.shift, shown, True)} and its range is not even. --full gives the range."
@@ -104,7 +107,7 @@ def notes(spread: Spread) -> list[str]:
         elif o.differences:
             parts = ", ".join(_difference(o, d, shown) for d in o.differences)
             said.append(f"{_begun(name)}: the quick answer does not hold here: {parts}.")
-    if spread.samples is not None and not any(o.differences for o in spread.outputs):
+    if any(o.sampled is not None for o in spread.outputs) and not any(o.differences for o in spread.outputs):
         said.append("Quick and full answer agree, within a tenth or within what so few samples can tell.")
     for name, verdicts in spread.limits.items():
         total = sum(verdicts.values())
@@ -201,17 +204,11 @@ def sample_columns(spread: Spread) -> dict[str, Any]:
     assert spread.samples is not None
     columns: dict[str, Any] = {"sample": list(range(1, len(spread.samples) + 1))}
     for i, (path, t) in enumerate(spread.inputs.items()):
-        columns[f"{path}{_suffix(t.kind)}"] = spread.samples[:, i]
+        columns[f"{path}_{units.in_name(t.kind)}"] = spread.samples[:, i]
     for o in spread.outputs:
         if o.sampled is not None:
             columns[".".join(o.quantity.keys)] = o.sampled.values
     return columns
-
-
-def _suffix(kind: str) -> str:
-    """Unit of an input's column: "W/m^2/K" -> "_W_m2K"."""
-    over, _, under = units.KINDS[kind].si.replace("^", "").partition("/")
-    return f"_{over.replace(' ', '')}" + (f"_{under.replace('/', '').replace(' ', '')}" if under else "")
 
 
 # ------------------------------------------------------------------------------------------------ the picture

@@ -2,6 +2,7 @@
 
 import csv
 import json
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -9,6 +10,7 @@ import pytest
 from axicfd.errors import ResultsFolderError
 from axicfd.output import spread as words
 from axicfd.output.csv import read_columns
+from axicfd.output.sweep import column_of
 from tests.variants.test_spread import DROP, bore, heat_balance
 
 
@@ -77,9 +79,28 @@ def test_another_folder_is_not_replaced(tmp_path):
     assert (tmp_path / "mine" / "letter.txt").exists()
 
 
-@pytest.mark.parametrize("kind, suffix", [("mass_flow", "_kg_s"), ("film_coefficient", "_W_m2K"), ("length", "_m")])
-def test_columns_of_inputs_carry_units_as_those_of_results_do(kind, suffix):
-    assert words._suffix(kind) == suffix
+def test_columns_of_inputs_carry_units_as_those_of_a_sweep_do():
+    assert list(words.sample_columns(bore()))[:2] == ["sample", column_of(bore().case, "layer.oil.diameter")]
+
+
+def with_drop(**changes):
+    """The answer on the bore, with other samples of the pressure drop."""
+    found = bore()
+    drop = found[DROP]
+    sampled = replace(drop.sampled, **changes) if changes else None
+    return replace(found, outputs=(replace(drop, sampled=sampled),))
+
+
+def test_a_range_on_one_side_of_the_value_is_shown_there():
+    value = bore()[DROP].value
+    ((_, _, shown, _, _),) = words.output_rows(with_drop(low=1.1 * value, high=1.3 * value))
+    low, high = (float(word) for word in shown.split())
+    assert 0.0 < low < high and high / low == pytest.approx(3.0, rel=0.1)
+
+
+def test_quick_and_full_agree_only_where_there_is_a_full_answer():
+    (note,) = words.notes(with_drop())
+    assert note == "Pressure drop: too few samples have a value; the quick answer alone is given."
 
 
 def test_it_shows_itself_in_notebooks():
