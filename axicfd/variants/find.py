@@ -467,6 +467,8 @@ def _range(search: _Search, between: Sequence[Any] | None) -> list[float]:
     """The SI values to look at, rising."""
     (one,) = search.inputs
     if between is not None:
+        if isinstance(between, str) or len(between) != 2:
+            raise bad_input("between", between, "must be two values", 'Write ["0.5 m", "5 m"].')
         low, high = sorted(_limit(one, value) for value in between)
         if low == high:
             raise bad_input("between", None, "names the same value twice", "Give the lowest and the highest.")

@@ -128,9 +128,8 @@ class _Reading:
     # ------------------------------------------------------------------ mistakes
 
     def _wrong(self, place: Place, value: object, allowed: str, instead: str = "") -> None:
-        line = next((self.lines[place[:n]] for n in range(len(place), 0, -1) if place[:n] in self.lines), None)
         key = ".".join(str(step) for step in place if isinstance(step, str))
-        self.mistakes.append(Mistake(self.file, line, key, value, allowed, instead))
+        self.mistakes.append(Mistake(self.file, self._line(place), key, value, allowed, instead))
 
     def _stop_if_wrong(self) -> None:
         if self.mistakes:

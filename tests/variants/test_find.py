@@ -215,6 +215,7 @@ def test_steps_are_told():
         ("section.all.length", f"{OUTLET} = 35 degC", ("0 m", "1 m"), "greater than 0"),
         ("section.all.length", f"{OUTLET} = 35 degC", ("1 m", "1 m"), "twice"),
         ("section.all.length", f"{OUTLET} = 35 degC", ("1 K", "1 m"), "must be a length"),
+        ("section.all.length", f"{OUTLET} = 35 degC", ("1 m",), "must be two values"),
         ("stream.oil.reynolds", f"{OUTLET} = 35 degC", None, "has no value in the case"),
         ("stream.oil.inlet_profile", f"{OUTLET} = 35 degC", None, "no input"),
         ("mesh.radial", f"{OUTLET} = 35 degC", None, "no input"),

@@ -38,12 +38,10 @@ def run(arguments: argparse.Namespace) -> int:
     where = Path(arguments.out) if arguments.out else Path(f"{Path(arguments.plan).stem}-results")
 
     from axicfd.cli import render
-    from axicfd.cli.progress import Rows
+    from axicfd.cli.progress import Rows, say_if_cold
     from axicfd.output.sweep import sweep
-    from axicfd.solver.warm_up import is_cold
 
-    if is_cold():
-        print("compiling the numerical kernels, once on this machine: half a minute or so", file=sys.stderr, flush=True)
+    say_if_cold()
     with _executor(arguments) as executor:
         progress = Rows()
         try:
