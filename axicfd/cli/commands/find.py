@@ -8,7 +8,7 @@ from pathlib import Path
 from typing import Any
 
 from axicfd.cli import exits
-from axicfd.cli.commands._sets import add_set, chosen
+from axicfd.cli.commands._answers import add_answer, prepared
 
 SUMMARY = "find the input for which a quantity has a wanted value"
 
@@ -35,27 +35,16 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         metavar=("LOW", "HIGH"),
         help="limits of one input (default: a 32nd to 32 times its own value; of a temperature 150 K either way)",
     )
-    parser.add_argument("--out", metavar="DIR", help="folder of the answer (default: ./NAME-find)")
-    parser.add_argument("--replace", action="store_true", help="replace that folder if it exists")
-    add_set(parser)
-    parser.add_argument("--json", action="store_true", help="print find.json alone on standard output")
+    add_answer(parser, "find")
 
 
 def run(arguments: argparse.Namespace) -> int:
-    from axicfd.output import folder
+    where, case = prepared(arguments, "find")
 
-    where = Path(arguments.out) if arguments.out else Path(f"{Path(arguments.case).stem}-find")
-    folder.refuse_unusable(where, arguments.replace, "find.json")
-
-    from axicfd.case.read import load
-    from axicfd.cli.progress import SearchProgress, say_if_cold
-
-    case = load(Path(arguments.case), set=chosen(arguments))
-
+    from axicfd.cli.progress import SearchProgress
     from axicfd.output import finding
     from axicfd.variants.find import find
 
-    say_if_cold()
     with SearchProgress() as progress:
         found = find(case, arguments.change, arguments.until, arguments.between, progress)
     finding.write(found, where, arguments.replace)

@@ -4,10 +4,9 @@ from __future__ import annotations
 
 import argparse
 import sys
-from pathlib import Path
 
-from axicfd.cli.commands._sets import chosen
-from axicfd.cli.commands.wall import add_contrast, ended, place
+from axicfd.cli.commands._answers import prepared
+from axicfd.cli.commands.wall import add_contrast, ended
 
 SUMMARY = "tell which effects matter: variable properties, viscous heating, the inlet, conduction along the fluid"
 
@@ -17,21 +16,13 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 
 
 def run(arguments: argparse.Namespace) -> int:
-    from axicfd.output import folder
+    where, case = prepared(arguments, "matters")
 
-    where = place(arguments, "matters")
-    folder.refuse_unusable(where, arguments.replace, "matters.json")
-
-    from axicfd.case.read import load
-    from axicfd.cli.progress import VariantProgress, say_if_cold
-    from axicfd.output.shown import shown_units
-
-    case = load(Path(arguments.case), set=chosen(arguments))
-
+    from axicfd.cli.progress import VariantProgress
     from axicfd.output import effects, variants
+    from axicfd.output.shown import shown_units
     from axicfd.variants.matters import what_matters
 
-    say_if_cold()
     shown = shown_units(case)
     with VariantProgress(shown) as progress:
         found = what_matters(case, arguments.care, progress)

@@ -8,7 +8,7 @@ from pathlib import Path
 from typing import Any
 
 from axicfd.cli import exits
-from axicfd.cli.commands._sets import add_set, chosen
+from axicfd.cli.commands._answers import add_answer, prepared
 
 SUMMARY = "input tolerances to output spread, and which input is to blame"
 
@@ -20,16 +20,11 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--seed", type=int, default=1, metavar="N", help="another seed gives other samples (default 1)")
     parser.add_argument("--of", action="append", default=[], metavar="QUANTITY", help="a quantity beside the headline")
     parser.add_argument("--workers", type=int, metavar="N", help="processes (default: one per core)")
-    parser.add_argument("--out", metavar="DIR", help="folder of the answer (default: ./NAME-spread)")
-    parser.add_argument("--replace", action="store_true", help="replace the folder if it exists")
-    add_set(parser)
-    parser.add_argument("--json", action="store_true", help="print spread.json alone on standard output")
+    add_answer(parser, "spread")
 
 
 def run(arguments: argparse.Namespace) -> int:
     from axicfd.errors import AxicfdError
-    from axicfd.output import folder
-    from axicfd.output import spread as shown_spread
 
     for name, least in (("count", 1), ("workers", 1), ("seed", 0)):
         given = getattr(arguments, name)
@@ -37,16 +32,13 @@ def run(arguments: argparse.Namespace) -> int:
             raise AxicfdError(f"`--{name} {given}` must be at least {least}.")
     if arguments.count is not None and not arguments.full:
         raise AxicfdError("`--count` is for the full answer. Add --full.")
-    where = Path(arguments.out) if arguments.out else Path(f"{Path(arguments.case).stem}-spread")
-    folder.refuse_unusable(where, arguments.replace, shown_spread.NAME)
+    where, case = prepared(arguments, "spread")
 
-    from axicfd.case.read import load
-    from axicfd.cli.progress import Progress, Rows, say_if_cold
+    from axicfd.cli.progress import Progress, Rows
+    from axicfd.output import spread as shown_spread
     from axicfd.output.shown import shown_units
     from axicfd.variants.spread import COUNT, spread
 
-    case = load(Path(arguments.case), set=chosen(arguments))
-    say_if_cold()
     of_base, of_variants = Progress(shown_units(case)), Rows(of="variants")
     try:
         found = spread(

@@ -4,11 +4,10 @@ from __future__ import annotations
 
 import argparse
 import sys
-from pathlib import Path
 from typing import Any
 
 from axicfd.cli import exits
-from axicfd.cli.commands._sets import add_set, chosen
+from axicfd.cli.commands._answers import add_answer, prepared
 
 SUMMARY = "tell whether the wall matters: in full, with radial resistance only, and without it"
 
@@ -19,7 +18,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 
 
 def add_contrast(parser: argparse.ArgumentParser, word: str) -> None:
-    """Arguments of every command that solves a case in several ways and writes the folder NAME-word."""
+    """Arguments of every command that solves a case in several ways and judges the differences."""
     parser.add_argument("case", metavar="CASE", help="a case file in TOML")
     parser.add_argument(
         "--care",
@@ -28,28 +27,17 @@ def add_contrast(parser: argparse.ArgumentParser, word: str) -> None:
         help='from where on a change matters: "1 K", "0.5 W", or per cent of each scale; may be given several times '
         "(default: 2 %%)",
     )
-    parser.add_argument("--out", metavar="DIR", help=f"folder of the answer (default: ./NAME-{word})")
-    parser.add_argument("--replace", action="store_true", help="replace that folder if it exists")
-    add_set(parser)
-    parser.add_argument("--json", action="store_true", help=f"print {word}.json alone on standard output")
+    add_answer(parser, word)
 
 
 def run(arguments: argparse.Namespace) -> int:
-    from axicfd.output import folder
+    where, case = prepared(arguments, "wall")
 
-    where = place(arguments, "wall")
-    folder.refuse_unusable(where, arguments.replace, "wall.json")
-
-    from axicfd.case.read import load
-    from axicfd.cli.progress import VariantProgress, say_if_cold
-    from axicfd.output.shown import shown_units
-
-    case = load(Path(arguments.case), set=chosen(arguments))
-
+    from axicfd.cli.progress import VariantProgress
     from axicfd.output import effects, variants
+    from axicfd.output.shown import shown_units
     from axicfd.variants.wall import wall_effect
 
-    say_if_cold()
     shown = shown_units(case)
     with VariantProgress(shown) as progress:
         found = wall_effect(case, arguments.care, arguments.layer, progress)
@@ -77,8 +65,3 @@ def ended(full: Any, converged: bool) -> int:
         print(f"error: {left}", file=sys.stderr)
         return exits.UNUSABLE
     return exits.SOLVED if converged else exits.NOT_CONVERGED
-
-
-def place(arguments: argparse.Namespace, word: str) -> Path:
-    """The folder asked for, or ./NAME-word."""
-    return Path(arguments.out) if arguments.out else Path(f"{Path(arguments.case).stem}-{word}")
