@@ -10,7 +10,15 @@ import threading
 import time
 from collections import deque
 from collections.abc import Callable, Hashable, Iterable, Iterator
-from concurrent.futures import FIRST_COMPLETED, BrokenExecutor, Executor, Future, ProcessPoolExecutor, wait
+from concurrent.futures import (
+    FIRST_COMPLETED,
+    BrokenExecutor,
+    CancelledError,
+    Executor,
+    Future,
+    ProcessPoolExecutor,
+    wait,
+)
 from contextlib import contextmanager, nullcontext
 from dataclasses import dataclass
 from typing import Any
@@ -285,7 +293,7 @@ def _work(
         for future in ended:
             lane, job = running.pop(future)
             lane.running -= 1
-            why = future.exception()  # of the process or of the way there and back: a solve itself raises nothing
+            why = _fault(future)
             if why is None:
                 outcomes.append(future.result())
             else:
@@ -294,6 +302,17 @@ def _work(
         hand_out()  # before the outcomes are told: nobody waits for the caller
         for outcome in outcomes:
             on_done(outcome)
+
+
+def _fault(future: Future) -> BaseException | None:
+    """Of the process or of the way there and back: a solve itself raises nothing."""
+    try:
+        return future.exception()
+    except CancelledError:  # never asked for here
+        raise AxicfdError(
+            "what solves the cases gave up: the cluster may be gone. What it solved until then is kept; run again to "
+            "go on."
+        ) from None
 
 
 def _dead(job: Job, why: BaseException) -> Outcome:

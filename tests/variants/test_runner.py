@@ -5,7 +5,7 @@ import pickle
 import signal
 import sys
 import time
-from concurrent.futures import ThreadPoolExecutor
+from concurrent.futures import Executor, Future, ThreadPoolExecutor
 
 import pytest
 
@@ -140,6 +140,18 @@ def test_an_unguarded_script_is_told_what_to_write(monkeypatch):
     monkeypatch.setattr("multiprocessing.parent_process", lambda: object())
     with pytest.raises(AxicfdError, match="__main__"):
         runner.run([titled("one")], print)
+
+
+def test_an_executor_that_gives_up_is_told():
+    class Lost(Executor):
+        def submit(self, *work):
+            future = Future()
+            future.cancel()
+            future.set_running_or_notify_cancel()
+            return future
+
+    with pytest.raises(AxicfdError, match="the cluster may be gone"):
+        gathered([titled("one")], executor=Lost)
 
 
 def test_nothing_to_do_starts_nothing(monkeypatch):
