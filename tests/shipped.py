@@ -1,4 +1,4 @@
-"""The cases that come with the project, solved once per session on a coarse mesh or on their own."""
+"""The cases that come with the project, solved once in a run of the tests, on a coarse mesh or on their own."""
 
 from functools import lru_cache
 from pathlib import Path
