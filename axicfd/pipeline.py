@@ -19,6 +19,7 @@ from axicfd.results.accuracy import Verdict
 from axicfd.results.axial import stream_view, stream_views
 from axicfd.results.result import Result, make_result, tree_with_bars, with_accuracy
 from axicfd.results.summary import summary
+from axicfd.results.uncertainty import estimate
 from axicfd.solver.solve import OnCheck, solve_on
 from axicfd.solver.state import Solution
 from axicfd.solver.warm_up import warm_up
@@ -36,7 +37,8 @@ class Progress:
     """How far a solve has come.
 
     level of levels : mesh, 1 is the coarsest        cells : of that mesh
-    outlet_temperature [K], pressure_drop [Pa] : of the last finished mesh, None before it or without flow
+    outlet_temperature [K], pressure_drop [Pa] : as the finished meshes tell them, None before one or without flow
+    outlet_half_width [K], drop_half_width [Pa] : of their mesh errors, None where fewer than three meshes tell them
     seconds : since the start        residual : the last seen        done : this mesh is finished
     refinements : how often the whole family of meshes was made finer for the accuracy asked for
     """
@@ -50,6 +52,8 @@ class Progress:
     residual: float
     done: bool
     refinements: int = 0
+    outlet_half_width: float | None = None
+    drop_half_width: float | None = None
 
 
 OnProgress = Callable[[Progress], Any]
@@ -98,7 +102,7 @@ class _Climb:
     def __init__(self, case: Case, on_progress: OnProgress | None, halvings: int):
         self.case, self.on_progress, self.halvings = case, on_progress, halvings
         self.begun = time.perf_counter()
-        self._shown: tuple[float | None, float | None] = (None, None)
+        self._headlines: list[tuple[float, float]] = []  # of the meshes that mesh errors come from, coarsest first
 
     def on(self, meshes: Family, refinements: int = 0) -> Result:
         """Solve on the meshes of a family, each starting from the one before, and interpret them."""
@@ -107,14 +111,27 @@ class _Climb:
         start: Solution | None = None  # nothing is taken from a mesh too coarse to converge on
         solutions: list[Solution] = []
         history = []
-        self._shown = None, None
+        self._headlines = []
         for number, level in enumerate(range(LEVELS - 1, -1 - self.halvings, -1), start=1):
             grid = meshes.grid(level)
 
             def tell(residual: float, done: bool, number: int = number, cells: int = grid.cells) -> None:
                 if self.on_progress is not None:
                     seconds = time.perf_counter() - self.begun
-                    event = Progress(number, levels, cells, *self._shown, seconds, residual, done, refinements)
+                    (outlet, outlet_half), (drop, drop_half) = self._so_far()
+                    event = Progress(
+                        number,
+                        levels,
+                        cells,
+                        outlet,
+                        drop,
+                        seconds,
+                        residual,
+                        done,
+                        refinements,
+                        outlet_half,
+                        drop_half,
+                    )
                     self.on_progress(event)
 
             def looked(_: int, residual: float, tell: Callable[[float, bool], None] = tell) -> None:
@@ -124,7 +141,10 @@ class _Climb:
             below = case.solve.stop_below if counts else max(START_BELOW, case.solve.stop_below)
             solution = solve_one(grid, start, below, looked)
             history.append((number, grid.cells, solution.iterations, solution.residual))
-            self._shown = _headline(case, solution)
+            headline = _headline(case, solution)
+            if headline is not None:
+                go_on = number > levels - NESTED + 1 and solution.converged
+                self._headlines = [*(self._headlines if go_on else []), headline]
             tell(solution.residual, True)
             if solution.converged:  # mesh errors come from the finest meshes in a row that converged
                 solutions = [*(s for s in solutions if s.converged), solution][-NESTED:]
@@ -134,6 +154,15 @@ class _Climb:
         halves = self._halves(solve_one, meshes, solutions)
         seconds = time.perf_counter() - self.begun
         return make_result(case, meshes, solutions, history, seconds, VERSION, halves)
+
+    def _so_far(self) -> list[tuple[float | None, float | None]]:
+        """(value, half-width) of the outlet temperature and of the pressure drop."""
+        if not self._headlines:
+            return [(None, None)] * 2
+        if len(self._headlines) < 3:
+            return [(value, None) for value in self._headlines[-1]]
+        found = [estimate(list(values)) for values in zip(*self._headlines, strict=True)]
+        return [(one.value, one.half_width) for one in found]
 
     def _halves(
         self, solve_one: SolveOne, meshes: Family, solutions: list[Solution]
@@ -229,9 +258,9 @@ def _solver(case: Case, meshes: Family) -> SolveOne:
     return lambda grid, start, below, looked: solve_on(case, grid, start, below, looked)
 
 
-def _headline(case: Case, solution: Solution) -> tuple[float | None, float | None]:
-    """Outlet temperature [K] and pressure drop [Pa] of the first stream, for the progress line."""
+def _headline(case: Case, solution: Solution) -> tuple[float, float] | None:
+    """Outlet temperature [K] and pressure drop [Pa] of the first stream, for the progress line; None without flow."""
     view = stream_view(case, solution, next(iter(solution.grid.streams)))
     if view.mass_flow == 0.0:
-        return None, None
+        return None
     return float(view.bulk[-1]) + view.t_in, view.axis_pressure_at_inlet()

@@ -37,9 +37,11 @@ def test_meshes_are_climbed_from_coarse_to_fine(result, told):
 
 def test_progress_tells_headline_quantities_once_known(result, told):
     assert told[0].outlet_temperature is None and told[0].pressure_drop is None
-    stream = result.summary["finest_mesh"]["stream"]["water"]
+    stream = result.summary["stream"]["water"]  # extrapolated once three meshes tell how
     assert told[-1].outlet_temperature == stream["outlet_temperature_K"]
     assert told[-1].pressure_drop == stream["pressure_drop_Pa"]
+    bars = [event.drop_half_width for event in told if event.done]
+    assert bars[:3] == [None] * 3 and bars[3] > bars[4] > 0.0
     assert told[-1].residual < 1e-8
 
 

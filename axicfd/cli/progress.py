@@ -9,7 +9,7 @@ import sys
 import time
 from typing import Any, TextIO
 
-from axicfd.output.headline import amount, number
+from axicfd.output.headline import amount_with_bar, number
 
 PLAIN_EVERY = 5.0  # seconds between plain lines within one mesh
 REWRITE_EVERY = 0.05  # seconds between two writes of the same line
@@ -49,14 +49,16 @@ class Progress:
             self._open = False
 
     def line(self, event: Any) -> str:
-        """`mesh 4 of 5   40 960 cells   outlet 41.3 degC   drop 0.182 bar   1.1 s`."""
+        """`mesh 4 of 5   40 960 cells   outlet 41.30 ±0.05 degC   drop 0.1820 ±0.0013 bar   1.1 s`."""
         parts = [f"mesh {event.level} of {event.levels}", f"{grouped(event.cells)} cells"]
         if event.refinements:
             parts.insert(0, f"refinement {event.refinements}")
         if event.outlet_temperature is not None:
-            parts.append(f"outlet {amount(self._shown, 'temperature', event.outlet_temperature)}")
+            outlet = event.outlet_temperature, event.outlet_half_width
+            parts.append(f"outlet {amount_with_bar(self._shown, 'temperature', *outlet)}")
         if event.pressure_drop is not None:
-            parts.append(f"drop {amount(self._shown, 'pressure', event.pressure_drop)}")
+            drop = event.pressure_drop, event.drop_half_width
+            parts.append(f"drop {amount_with_bar(self._shown, 'pressure', *drop)}")
         parts.append(f"{event.seconds:.1f} s")
         return "   ".join(parts)
 

@@ -142,6 +142,15 @@ def with_bar(value: float, half_width: float, finest: int | None = None) -> tupl
     return f"{round(value, -last if last > 0 else decimals):.{decimals}f}", bar_text
 
 
+def amount_with_bar(shown: Shown, kind: str, value: float, half_width: float | None) -> str:
+    """`41.30 ±0.05 degC`; as `amount` where there is no half-width."""
+    if not half_width:
+        return amount(shown, kind, value)
+    finest = FINEST_TEMPERATURE if kind == "temperature" else None
+    texts = with_bar(float(shown.value(kind, value)), float(shown.difference(kind, half_width)), finest)
+    return f"{' ±'.join(texts)} {shown.unit(kind)}"
+
+
 def _decade(value: float) -> int:
     return math.floor(math.log10(abs(value)))
 

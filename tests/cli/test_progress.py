@@ -12,7 +12,7 @@ class Terminal(io.StringIO):
         return True
 
 
-def event(level, done, cells=40960, outlet=314.45, refinements=0):
+def event(level, done, cells=40960, outlet=314.45, refinements=0, half_widths=(None, None)):
     return SimpleNamespace(
         level=level,
         levels=5,
@@ -23,6 +23,8 @@ def event(level, done, cells=40960, outlet=314.45, refinements=0):
         residual=1e-9,
         done=done,
         refinements=refinements,
+        outlet_half_width=half_widths[0],
+        drop_half_width=half_widths[1],
     )
 
 
@@ -45,6 +47,11 @@ def test_plain_lines_elsewhere():
     progress.close()
     assert "\x1b" not in out.getvalue() and "\r" not in out.getvalue()
     assert sum("mesh 2 of 5" in line for line in out.getvalue().splitlines()) == 1
+
+
+def test_three_meshes_tell_the_mesh_error_so_far():
+    line = Progress(shown_units(load(TEXT)), io.StringIO()).line(event(4, True, half_widths=(0.05, 131.0)))
+    assert line == "mesh 4 of 5   40 960 cells   outlet 41.30 ±0.05 degC   drop 18200 ±140 Pa   1.1 s"
 
 
 def test_a_refined_family_of_meshes_is_told_apart():
