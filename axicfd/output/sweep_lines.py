@@ -12,11 +12,11 @@ from axicfd.case.quantities import quantities
 from axicfd.output.headline import FINEST_TEMPERATURE, number, with_bar
 from axicfd.output.shown import Shown, shown_units
 from axicfd.output.sweep import BAR, SOLVED, Sweep
-from axicfd.results.limits import FAIL, PASS, TOO_CLOSE
+from axicfd.results.limits import FAIL, NOT_JUDGED, PASS, TOO_CLOSE
 from axicfd.variants.plan import kind_of
 
 LIMIT = "limits."
-VERDICTS = (PASS, TOO_CLOSE, FAIL)  # the best first
+VERDICTS = (PASS, TOO_CLOSE, NOT_JUDGED, FAIL)  # the best first
 SHORT = ("outlet_temperature_K", "pressure_drop_Pa", "hottest_wetted_wall_K")  # of each stream, where space is short
 
 
@@ -85,7 +85,7 @@ def verdict(row: dict[str, Any], limits: Iterable[str]) -> str:
 
 
 def sorted_rows(table: Sweep) -> list[dict[str, Any]]:
-    """Rows that pass all limits first, then those too close to call, those that fail, those not solved."""
+    """Rows that pass all limits first, then those not settled, those that fail, those not solved."""
     limits, order = limited(table), ("", *VERDICTS)
 
     def rank(row: dict[str, Any]) -> int:

@@ -173,6 +173,12 @@ def test_rows_within_their_limits_come_first(grid):
     assert "±" in text and "refused: " in text
 
 
+def test_a_limit_that_is_not_judged_is_not_passed():
+    row = {"status": "solved", "limits.a": "pass", "limits.b": "not judged"}
+    assert sweep_lines.verdict(row, ["limits.a", "limits.b"]) == "not judged"
+    assert sweep_lines.verdict(row | {"limits.a": "fail"}, ["limits.a", "limits.b"]) == "fail"
+
+
 def test_pictures_and_tables_are_written(grid, tmp_path):
     written = {path.name for path in sweep_figures.draw_all(with_limits(grid), tmp_path, ".svg")}
     assert written == {"sweep.svg", "table.txt", "passing.csv"}
