@@ -244,11 +244,11 @@ def _accurate(case: Case, meshes: Family, climb: _Climb) -> Result:
         finer_z = climb.factors(meshes, result, excess_z, "axial")
         refined = meshes.refined(finer_r, finer_z, limit)
         if refined is None:
-            break
+            why = f"a finer mesh would have more than {limit} cells. Give a larger at_most in [mesh], or ask for less."
+            return climb.ended(best, "cells", why, solves)
         meshes = refined
     assert best is not None
-    why = f"a finer mesh would have more than {limit} cells. Give a larger at_most in [mesh], or ask for less."
-    return climb.ended(best, "cells", why, solves)
+    return climb.ended(best, "solves", f"{SOLVES} meshes were tried. Ask for less.", SOLVES)
 
 
 def _solver(case: Case, meshes: Family) -> SolveOne:

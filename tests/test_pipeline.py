@@ -348,6 +348,12 @@ def test_a_hopeless_accuracy_says_what_stopped_it(coarse):
     assert caution["place"] == "stream.water.pressure_drop_Pa" and caution["found"] > caution["limit"]
 
 
+def test_an_accuracy_is_sought_on_so_many_meshes_only(coarse, monkeypatch):
+    monkeypatch.setattr("axicfd.pipeline.SOLVES", 1)
+    said = solve(axicfd.load(tubes.text(rest='[solve]\naccuracy = { pressure_drop = "1e-7 %" }\n'))).summary["accuracy"]
+    assert not said["reached"] and said["stopped_by"] == "solves" and "1 meshes were tried" in said["text"]
+
+
 def test_counts_given_by_the_case_fix_the_mesh():
     found = solve(axicfd.load(tubes.text(rest=MESH + '[solve]\naccuracy = { pressure_drop = "1e-7 %" }\n')))
     assert found.summary["accuracy"]["stopped_by"] == "mesh" and found.summary["accuracy"]["solves"] == 1

@@ -149,7 +149,7 @@ def factors(excess: dict[str, float], cells: list[int], changes: list[dict[str, 
 def as_summary(verdict: Verdict, stopped_by: str | None, why: str, solves: int) -> dict[str, Any]:
     """The entry `accuracy` of the summary.
 
-    stopped_by : None, "cells", "memory", "mesh" (counts fixed by the case), "convergence" or "model"
+    stopped_by : None, "cells", "memory", "mesh" (counts fixed by the case), "solves" (too many), "convergence", "model"
     why        : the sentence about what stopped it
     """
     if verdict.reached and stopped_by is None:
