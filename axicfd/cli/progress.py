@@ -7,7 +7,7 @@ from __future__ import annotations
 
 import sys
 import time
-from typing import Any, TextIO
+from typing import Any, Self, TextIO
 
 from axicfd.output.headline import amount_with_bar, number
 
@@ -15,31 +15,22 @@ PLAIN_EVERY = 5.0  # seconds between plain lines within one mesh
 REWRITE_EVERY = 0.05  # seconds between two writes of the same line
 
 
-class Progress:
-    """Called with each event of a solve; `close` ends the last line."""
+class _Line:
+    """One line that is rewritten on a terminal, or plain lines elsewhere; for use in a `with`, or until `close`."""
 
-    def __init__(self, shown: Any, stream: TextIO | None = None) -> None:
-        self._shown = shown
+    def __init__(self, stream: TextIO | None = None) -> None:
         self._out = sys.stderr if stream is None else stream
         self._in_place = self._out.isatty()
-        self._level: int | None = None
-        self._written = 0.0
+        self._written = -PLAIN_EVERY
         self._open = False
 
-    def __call__(self, event: Any) -> None:
-        now = time.monotonic()
-        if self._in_place:
-            if self._level is not None and event.level != self._level:
-                self.close()
-            if event.done or event.level != self._level or now - self._written > REWRITE_EVERY:
-                self._out.write("\r\x1b[K" + self.line(event))
-                self._out.flush()
-                self._open, self._written = True, now
-        elif event.done or now - self._written > PLAIN_EVERY:
-            self._out.write(self.line(event) + "\n")
-            self._out.flush()
-            self._written = now
-        self._level = event.level
+    def _is_older_than(self, seconds: float) -> bool:
+        return time.monotonic() - self._written > seconds
+
+    def _write(self, text: str) -> None:
+        self._out.write(f"\r\x1b[K{text}" if self._in_place else f"{text}\n")
+        self._out.flush()
+        self._open, self._written = self._in_place, time.monotonic()
 
     def close(self) -> None:
         """End the line that stands open on a terminal."""
@@ -47,6 +38,31 @@ class Progress:
             self._out.write("\n")
             self._out.flush()
             self._open = False
+
+    def __enter__(self) -> Self:
+        return self
+
+    def __exit__(self, *_: Any) -> None:
+        self.close()
+
+
+class Progress(_Line):
+    """Called with each event of a solve."""
+
+    def __init__(self, shown: Any, stream: TextIO | None = None) -> None:
+        super().__init__(stream)
+        self._shown = shown
+        self._level: int | None = None
+
+    def __call__(self, event: Any) -> None:
+        if self._in_place:
+            if self._level is not None and event.level != self._level:
+                self.close()
+            if event.done or event.level != self._level or self._is_older_than(REWRITE_EVERY):
+                self._write(self.line(event))
+        elif event.done or self._is_older_than(PLAIN_EVERY):
+            self._write(self.line(event))
+        self._level = event.level
 
     def line(self, event: Any) -> str:
         """`mesh 4 of 5   40 960 cells   outlet 41.30 ±0.05 degC   drop 0.1820 ±0.0013 bar   1.1 s`."""
@@ -64,45 +80,20 @@ class Progress:
 
 
 class VariantProgress(Progress):
-    """Of several solves one after the other, all on one line that names the variant; for use in a `with`."""
+    """Of several solves one after the other, all on one line that names the variant."""
 
     def __call__(self, name: str, event: Any) -> None:  # type: ignore[override]
-        now = time.monotonic()
-        if self._in_place:
-            if event.done or now - self._written > REWRITE_EVERY:
-                self._out.write(f"\r\x1b[K{name}   {self.line(event)}")
-                self._out.flush()
-                self._open, self._written = True, now
-        elif event.done and event.level == event.levels:
-            self._out.write(f"{name}   {self.line(event)}\n")
-            self._out.flush()
-
-    def __enter__(self) -> VariantProgress:
-        return self
-
-    def __exit__(self, *_: Any) -> None:
-        self.close()
+        ended = event.done and (self._in_place or event.level == event.levels)
+        if ended or (self._in_place and self._is_older_than(REWRITE_EVERY)):
+            self._write(f"{name}   {self.line(event)}")
 
 
-class SearchProgress:
-    """Of a search for an input: one line that is rewritten; for use in a `with`."""
-
-    def __init__(self, stream: TextIO | None = None) -> None:
-        self._out = sys.stderr if stream is None else stream
-        self._in_place = self._out.isatty()
-        self._written = -PLAIN_EVERY
-        self._open = False
+class SearchProgress(_Line):
+    """Of a search for an input."""
 
     def __call__(self, step: Any, inputs: Any, targets: Any) -> None:
-        line = self.line(step, inputs, targets)
-        now = time.monotonic()
-        if self._in_place:
-            self._out.write(f"\r\x1b[K{line}")
-            self._open = True
-        elif not step.is_look or now - self._written > PLAIN_EVERY:
-            self._out.write(f"{line}\n")
-            self._written = now
-        self._out.flush()
+        if self._in_place or not step.is_look or self._is_older_than(PLAIN_EVERY):
+            self._write(self.line(step, inputs, targets))
 
     def line(self, step: Any, inputs: Any, targets: Any) -> str:
         """`look 7   section.heater.length 0.23 m   stream.oil.outlet_temperature 41.2 degC`."""
@@ -114,14 +105,6 @@ class SearchProgress:
             reached = zip(targets, step.quantities, strict=True)
             parts += [f"{t.quantity.path} {number(t.shown(v), 6)} {t.unit}".rstrip() for t, v in reached]
         return "   ".join(parts)
-
-    def __enter__(self) -> SearchProgress:
-        return self
-
-    def __exit__(self, *_: Any) -> None:
-        if self._open:
-            self._out.write("\n")
-            self._out.flush()
 
 
 def say_if_cold() -> None:
@@ -137,33 +120,16 @@ def grouped(count: int) -> str:
     return f"{count:,}".replace(",", " ")
 
 
-class Rows:
+class Rows(_Line):
     """The same for many cases: one line for all of them, called after each."""
 
     def __init__(self, stream: TextIO | None = None, of: str = "rows") -> None:
+        super().__init__(stream)
         self._of = of
-        self._out = sys.stderr if stream is None else stream
-        self._in_place = self._out.isatty()
-        self._written = -PLAIN_EVERY
-        self._open = False
 
     def __call__(self, event: Any) -> None:
-        now = time.monotonic()
-        last = event.done == event.rows
-        if self._in_place:
-            self._out.write("\r\x1b[K" + self.line(event))
-            self._open = True
-        elif last or now - self._written > PLAIN_EVERY:
-            self._out.write(self.line(event) + "\n")
-            self._written = now
-        self._out.flush()
-
-    def close(self) -> None:
-        """End the line that stands open on a terminal."""
-        if self._open:
-            self._out.write("\n")
-            self._out.flush()
-            self._open = False
+        if self._in_place or event.done == event.rows or self._is_older_than(PLAIN_EVERY):
+            self._write(self.line(event))
 
     def line(self, event: Any) -> str:
         """`12 of 45 rows   1 not solved   2.5 min left`."""
