@@ -76,16 +76,17 @@ class Conductors:
         self._edges = edge_factors(case, grid, t_in)
         self.face_minus = np.zeros((grid.nz, grid.nr + 1))  # temperature on the inner side of each radial face
         self.face_plus = np.zeros((grid.nz, grid.nr + 1))
-        self._last: tuple[Array, Conduction] | None = None  # temperatures and what they gave
+        # temperatures and outside that were last asked for, and what they gave
+        self._last: tuple[Array, boundary.Exchange, Conduction] | None = None
 
     def conduction(self, t: Array, exchange: boundary.Exchange) -> Conduction:
         """Conductances at temperatures t (nz, nr), and the face temperatures that go with them."""
-        if self._last is not None and np.array_equal(t, self._last[0]):
-            return self._last[1]  # viscosity, residual and step ask in turn at the same temperatures
+        if self._last is not None and exchange is self._last[1] and np.array_equal(t, self._last[0]):
+            return self._last[2]  # viscosity, residual and step ask in turn at the same temperatures
         for _ in range(1 if self.is_constant else FACE_PASSES):
-            now = self._last[1] if self._last is not None and self.is_constant else self._conductances(t)
+            now = self._last[2] if self._last is not None and self.is_constant else self._conductances(t)
             self._update_faces(t, now, exchange)
-        self._last = t.copy(), now
+        self._last = t.copy(), exchange, now
         return now
 
     def _k(self, direction: str, t: Array) -> Array:
