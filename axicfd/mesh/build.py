@@ -28,8 +28,8 @@ ACROSS_STREAM = 48  # cells from the axis to the bore's wall in CELLS cells
 ACROSS_SOLID = 8  # cells across a layer up to half as thick as the bore's radius
 STRETCH_TO_WALLS = 4.0  # largest over smallest cell across a layer
 END_CELL = 0.02  # first axial cell at a graded end, in bore radii
-# Where a prescribed temperature begins beside another condition the flux grows like 1 / sqrt(distance). The conductances
-# know that (solver.edges); the finer cells along z let the curves follow it.
+# Where a prescribed temperature begins beside another condition the flux grows like 1 / sqrt(distance). The
+# conductances know that (solver.edges); the finer cells along z let the curves follow it.
 END_CELL_SINGULAR = 0.002
 OUTLET = "outlet"  # a kind of place: cells are graded to it, but the scheme along z stays the same up to there
 SAME_RADIUS = 1e-9  # radii closer than this share of the outer radius are one interface
