@@ -32,7 +32,10 @@ def change_text(d: Difference, shown: Shown, signed: bool = True) -> str:
 
 
 def _with_bar(value: float, half: float | None, scale: float, signed: bool = True) -> str:
-    """A change and its half-width, to a hundred-thousandth of a scale, or two digits of the value where it is less."""
+    """A change and its half-width, to a hundred-thousandth of a scale, or two digits of the value where it is less.
+
+    No more than four digits: the values beside it are written to as many.
+    """
     nothing = NOTHING * scale
     if abs(value) <= nothing and (half or 0.0) <= nothing:
         return "0"
@@ -40,7 +43,8 @@ def _with_bar(value: float, half: float | None, scale: float, signed: bool = Tru
     if half:
         finest = math.floor(math.log10(scale)) - 4 if scale > 0.0 else 0
         if abs(value) > nothing:
-            finest = min(finest, math.floor(math.log10(abs(value))) - 1)
+            decade = math.floor(math.log10(abs(value)))
+            finest = max(min(finest, decade - 1), decade - 3)
         text, width = with_bar(value, half, finest)
         bar = f" ±{width}"
     if float(text) == 0.0:
@@ -65,10 +69,12 @@ def sentence(effect: Effect, shown: Shown) -> str:
         return f"{name}: cannot tell, since {effect.why_open}."
     if d is None or d.care is None:
         return f"{name}: cannot tell, since no compared quantity has a scale to judge it by."
-    moves = f"{_verb(d)} {_the(d)} by {change_text(d, shown, signed=False)}"
+    by = f"by {change_text(d, shown, signed=False)}"
     from_where = f"{_size(d, d.care, shown)} is where that begins to matter"
     if effect.verdict == YES:
-        return f"{name} {moves} of {_size(d, d.scale, shown)}: keep it.{_left_alone(effect, shown)}"
+        base, then = (amount(shown, d.of.kind, value) for value in (d.base, d.then))
+        return f"{name} {_verb(d)} {_the(d)} from {base} to {then}, {by}: keep it.{_left_alone(effect, shown)}"
+    moves = f"{_verb(d)} {_the(d)} {by}"
     if effect.verdict == NO:
         if abs(d.change.value) <= NOTHING * d.scale:
             return f"{name} may be left out: it changes nothing by more than {100 * NOTHING:g} % of its scale."

@@ -27,8 +27,17 @@ def test_what_matters_is_kept_and_what_is_left_alone_is_said():
         (difference("hottest_wetted_wall", -6.1, 0.2), difference("outlet_temperature", 0.01, 0.05)),
     )
     assert effects.sentence(found, SHOWN) == (
-        "Axial conduction in the wall lowers the hottest wetted wall by 6.1 ±0.2 K of 38 K: keep it. "
+        "Axial conduction in the wall lowers the hottest wetted wall from 56.85 degC to 50.75 degC, by 6.1 ±0.2 K: "
+        "keep it. "
         "The outlet temperature is not affected: +0.01 ±0.05 K."
+    )
+
+
+def test_a_change_is_written_to_four_digits_at_most_and_its_half_width_rounded_up_to_the_last_of_them():
+    large = difference("hottest_wetted_wall", -15.807, 0.0003, scale=12.3)
+    assert effects.change_text(large, SHOWN) == "-15.81 ±0.01 K"
+    assert effects.change_text(difference("hottest_wetted_wall", 0.01234, 0.00002, scale=20.0), SHOWN) == (
+        "+0.012 ±0.001 K"
     )
 
 
