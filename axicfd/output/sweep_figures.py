@@ -8,6 +8,7 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Sequence
 from pathlib import Path
+from textwrap import fill
 from typing import Any
 
 import numpy as np
@@ -38,6 +39,7 @@ MOST_OVER_EACH = 5  # quantities where each is drawn over every key
 FIRST = ("quantity", "stream", "sensor", "layer", "section")  # after the limited ones
 ACROSS = 2  # panels beside each other
 PANEL, GAP_ACROSS, GAP_DOWN, ABOVE, BELOW = 2.5, 1.05, 0.95, 0.9, 0.65  # inches
+NOTE_WIDTH = 125  # letters of a line of the note, of which two fit above the panels
 NUMBERED = 60  # blocks of a map up to which the value stands in each
 MARKED = 9  # values up to which each has its own mark on an axis
 CHANGES = 1e-9  # of its size by which a quantity must change to get a panel
@@ -69,7 +71,7 @@ def picture(table: Sweep) -> Figure | None:
     if not varied or not panels:
         return None
     if len(varied) == 1 or _step_together(table, varied):
-        return _curves(table, varied[0], panels[:MOST_PANELS])
+        return _curves(table, varied, panels[:MOST_PANELS])
     if len(varied) == 2:
         return _maps(table, varied[0], varied[1], panels[:MOST_PANELS])
     return _points(table, varied, panels[:MOST_OVER_EACH])
@@ -78,8 +80,11 @@ def picture(table: Sweep) -> Figure | None:
 # --- curves ---------------------------------------------------------------------------------------------------
 
 
-def _curves(table: Sweep, over: Axis, panels: Sequence[Axis]) -> Figure:
-    figure, axes = _paper(table, len(panels), f"over {over.title}; bars: mesh errors{_red(table)}")
+def _curves(table: Sweep, varied: Sequence[Axis], panels: Sequence[Axis]) -> Figure:
+    """Over the first key; the others step with it, and are named."""
+    over, *others = varied
+    step = f", {' and '.join(axis.label for axis in others)} changing with it" if others else ""
+    figure, axes = _paper(table, len(panels), f"over {over.title}{step}; bars: mesh errors{_red(table)}")
     for place, axis in zip(axes, panels, strict=True):
         _bars(table, place, over, axis)
         place.set_xlabel(over.title, fontsize=10, color=INK)
@@ -87,11 +92,11 @@ def _curves(table: Sweep, over: Axis, panels: Sequence[Axis]) -> Figure:
 
 
 def _red(table: Sweep) -> str:
-    return "; red: fails its limit" if limited(table) else ""
+    return "; open and red: fails its limit" if limited(table) else ""
 
 
 def _bars(table: Sweep, axes: Axes, over: Axis, axis: Axis, line: bool = True) -> None:
-    """Values with their mesh errors over a key; rows that fail a limit on the quantity in another ink."""
+    """Values with their mesh errors over a key; rows that fail a limit on the quantity open, in another ink."""
     rows = [row for row in table.rows if row[axis.name] is not None and row[over.name] is not None]
     rows.sort(key=lambda row: row[over.name])
     x = np.array([over.value(row[over.name]) for row in rows])
@@ -100,10 +105,11 @@ def _bars(table: Sweep, axes: Axes, over: Axis, axis: Axis, line: bool = True) -
     if line:
         axes.plot(x, y, color=CURVE_INKS[0], linewidth=1.4, zorder=2)
     fails = np.array([_fails(row, axis) for row in rows], bool)
-    for chosen, ink in ((~fails, CURVE_INKS[0]), (fails, FAILS_INK)):
+    for chosen, ink, face, size in ((~fails, CURVE_INKS[0], CURVE_INKS[0], 4), (fails, FAILS_INK, "white", 6)):
         axes.errorbar(
-            x[chosen], y[chosen], half[chosen], fmt="o", markersize=4, color=ink, elinewidth=1.2, capsize=3, zorder=3
-        )
+            x[chosen], y[chosen], half[chosen],
+            fmt="o", markersize=size, markerfacecolor=face, color=ink, elinewidth=1.2, capsize=3, zorder=3,
+        )  # fmt: skip
     _dress(axes, axis.title)
     _along(axes.xaxis, over, x, axes.set_xscale)
     axes.yaxis.set_major_formatter(plain_numbers())
@@ -115,7 +121,9 @@ def _bars(table: Sweep, axes: Axes, over: Axis, axis: Axis, line: bool = True) -
 
 
 def _maps(table: Sweep, across: Axis, up: Axis, panels: Sequence[Axis]) -> Figure:
-    figure, axes = _paper(table, len(panels), f"{across.label} to the right, {up.label} upwards{_legend(table)}")
+    figure, axes = _paper(
+        table, len(panels), f"{across.label} to the right, {up.label} upwards{_legend(table, across, up)}"
+    )
     for place, axis in zip(axes, panels, strict=True):
         _map(figure, place, table, across, up, axis)
         place.set_xlabel(across.title, fontsize=10, color=INK)
@@ -133,7 +141,7 @@ def _map(figure: Figure, axes: Axes, table: Sweep, across: Axis, up: Axis, axis:
     low, high = float(value[known].min()), float(value[known].max())
     colours = colour_map()
     grid_x, grid_y = np.unique(x), np.unique(y)
-    if len(grid_x) * len(grid_y) == len(set(zip(x.tolist(), y.tolist(), strict=True))):
+    if _is_grid(table, across, up):
         edges = _edges(grid_x), _edges(grid_y)
         block = np.full((len(grid_y), len(grid_x)), math.nan)
         where = np.searchsorted(grid_y, y), np.searchsorted(grid_x, x)
@@ -144,7 +152,12 @@ def _map(figure: Figure, axes: Axes, table: Sweep, across: Axis, up: Axis, axis:
         axes.set_xlim(edges[0][0], edges[0][-1])
         axes.set_ylim(edges[1][0], edges[1][-1])
     else:
-        mesh = axes.scatter(x[known], y[known], c=value[known], cmap=colours, vmin=low, vmax=high, s=36, zorder=3)
+        mesh = axes.scatter(
+            x[known], y[known], c=value[known], cmap=colours, vmin=low, vmax=high,
+            s=40, edgecolors=SOFT_INK, linewidths=0.6, zorder=3,
+        )  # fmt: skip
+        fails = np.array([_fails(row, axis) for row in rows], bool)
+        axes.scatter(x[fails], y[fails], s=150, facecolors="none", edgecolors=FAILS_INK, linewidths=1.4, zorder=2.9)
         axes.plot(x[~known], y[~known], "x", color=SOFT_INK, markersize=5, zorder=3)
     _dress(axes, axis.title)
     _along(axes.xaxis, across, grid_x, axes.set_xscale)
@@ -175,7 +188,7 @@ def _write_block(
         _middle(y),
         number(float(shown)) if value is not None else str(row["status"] or "not yet"),
         fontsize=8,
-        color="white" if value is not None and share < 0.45 else INK,
+        color="white" if value is not None and share < 0.5 else INK,  # there both stand out alike
         bbox={"facecolor": ground, "edgecolor": "none", "pad": 1.5},  # keeps the hatching off the number
         ha="center",
         va="center",
@@ -183,11 +196,16 @@ def _write_block(
     )
 
 
-def _legend(table: Sweep) -> str:
-    words = ""
-    if any(status != SOLVED for status in table["status"]):
-        words += "; grey: not solved"
-    return words + ("; hatched: fails its limit" if limited(table) else "")
+def _is_grid(table: Sweep, across: Axis, up: Axis) -> bool:
+    """Whether every value of one key comes with every value of the other."""
+    pairs = {(row[across.name], row[up.name]) for row in table.rows}
+    return len({x for x, _ in pairs}) * len({y for _, y in pairs}) == len(pairs)
+
+
+def _legend(table: Sweep, across: Axis, up: Axis) -> str:
+    unsolved, fails = ("grey", "hatched") if _is_grid(table, across, up) else ("cross", "ringed")
+    words = f"; {unsolved}: not solved" if any(status != SOLVED for status in table["status"]) else ""
+    return words + (f"; {fails}: fails its limit" if limited(table) else "")
 
 
 # --- points ---------------------------------------------------------------------------------------------------
@@ -224,7 +242,8 @@ def _paper(table: Sweep, panels: int, note: str, across: int = ACROSS) -> tuple[
     title = table.base.title or "untitled case"
     ended = f"{table.counts.get(SOLVED, 0)} of {len(table)} rows solved"
     figure.text(0.02, 1 - 0.1 / height, title, ha="left", va="top", fontsize=13, color=INK)
-    figure.text(0.02, 1 - 0.36 / height, f"{ended}; {note}", ha="left", va="top", fontsize=10, color=SOFT_INK)
+    note = fill(f"{ended}; {note}", NOTE_WIDTH)
+    figure.text(0.02, 1 - 0.36 / height, note, ha="left", va="top", fontsize=10, color=SOFT_INK)
     return figure, axes
 
 

@@ -198,6 +198,31 @@ def test_one_key_gives_curves_and_three_give_points():
     assert titles(flow, FLUX, thickness)[:3] == ["water: reynolds", "all: heat flux, W/m²", "tube: thickness, m"]
 
 
+def test_rows_that_fail_a_limit_can_be_told_in_grey():
+    """Open on a curve, ringed among scattered points; dots keep an edge, since the lightest nearly are the paper."""
+    from dataclasses import replace
+
+    def judged(*vary, **more):
+        table = sweep({"case": BASE, "vary": list(vary), **more}, **THREAD)
+        fails = ("fail", *("pass",) * (len(table) - 1))
+        return replace(table, columns={**table.columns, "limits.stream.water.outlet_temperature": fails})
+
+    curves = sweep_figures.picture(judged(FLOWS | {"values": [40.0, 60.0]}))
+    assert any("open and red" in text.get_text() for text in curves.texts)
+    assert [line.get_markerfacecolor() for line in curves.axes[0].lines if line.get_marker() == "o"][-1] == "white"
+    flow, flux = ({"key": vary["key"], "from": low, "to": 2 * low} for vary, low in ((FLOWS, 40.0), (FLUX, 100.0)))
+    points = sweep_figures.picture(judged(flow, flux, sample={"kind": "latin hypercube", "count": 4, "seed": 1}))
+    assert any("ringed: fails its limit" in text.get_text() for text in points.texts)
+    dots, rings = points.axes[0].collections
+    assert len(dots.get_offsets()) == 4 and len(dots.get_edgecolors()) and len(rings.get_offsets()) == 1
+
+
+def test_a_curve_names_the_keys_that_change_with_its_own():
+    keys = (FLOWS | {"values": [40.0, 60.0], "together": "a"}, FLUX | {"together": "a"})
+    figure = sweep_figures.picture(sweep({"case": BASE, "vary": list(keys)}, **THREAD))
+    assert any("over water: reynolds, all: heat flux changing with it" in text.get_text() for text in figure.texts)
+
+
 def test_axes_step_by_a_factor_where_the_values_do():
     assert sweep_figures._steps_by_factor([1.0, 2.0, 4.0, 8.0])
     assert not sweep_figures._steps_by_factor([1.0, 2.0, 3.0, 4.0])
