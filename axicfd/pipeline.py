@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from axicfd.case.layout import layout
-from axicfd.case.model import Case
+from axicfd.case.model import Case, expect_case
 from axicfd.errors import RefusedModel
 from axicfd.given_drop import GivenDrop
 from axicfd.mesh.build import LEVELS, NEST, Family, family
@@ -72,6 +72,7 @@ def solve(
     Raises `RefusedModel` where the laminar model is known not to hold before anything is solved. A solve that does not
     converge is a Result with `converged` False; an accuracy that is not reached is said in `summary["accuracy"]`.
     """
+    expect_case(case)
     cautions.before(case)  # raises where the model is refused
     warm_up()
     climb = _Climb(case, on_progress, halvings)

@@ -25,6 +25,14 @@ def result(told):
     return solve(axicfd.load(tubes.text(rest=MESH, viscous=True)), told.append)
 
 
+def test_the_name_of_a_file_is_no_case():
+    for take in (axicfd.solve, axicfd.wall_effect, axicfd.what_matters, axicfd.spread):
+        with pytest.raises(axicfd.AxicfdError, match=r'is str, not a Case\. Write axicfd\.load\("tube\.toml"\)'):
+            take("tube.toml")
+    with pytest.raises(axicfd.AxicfdError, match="not a Case"):
+        axicfd.find("tube.toml", "section.all.length", "stream.oil.outlet_temperature = 60 degC")
+
+
 def test_meshes_are_climbed_from_coarse_to_fine(result, told):
     cells = [cells for _, cells, _, _ in result.history]
     assert cells == sorted(cells) and len(set(cells)) > 1

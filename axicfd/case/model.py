@@ -32,6 +32,7 @@ from axicfd.case.keys import (
 )
 from axicfd.case.limits import Accepted, Limit, Limits
 from axicfd.case.tolerance import Accuracy, Tolerance
+from axicfd.errors import bad_input
 from axicfd.materials import laws
 from axicfd.materials.library import FLUIDS, SOLIDS
 
@@ -876,3 +877,10 @@ class Case(Part):
     def layers_of(self, section: Section) -> tuple[Layer, ...]:
         """The stack of a section: its own, or the case's."""
         return self.layer if section.layer is None else section.layer
+
+
+def expect_case(given: object) -> None:
+    """Raise `InputError` where something else was given for a case, most often the name of its file."""
+    if not isinstance(given, Case):
+        known = f'"{given}"' if isinstance(given, str | Path) else '"heater.toml"'
+        raise bad_input("case", None, f"is {type(given).__name__}, not a Case", f"Write axicfd.load({known}).")

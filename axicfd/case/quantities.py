@@ -202,7 +202,9 @@ def quantity(case: Case, path: str) -> ResultQuantity:
 
 
 def _unknown(path: str, steps: str, by_path: dict[str, ResultQuantity]) -> InputError:
-    near = keys.nearest(steps, by_path)
+    # of a name cut short, such as `outlet`, all that begin with it
+    begun = list(dict.fromkeys(of.path for known, of in by_path.items() if known.startswith(f"{steps}_")))
+    near = " or ".join(begun[:3]) or keys.nearest(steps, by_path)
     last = steps.rpartition(".")[2]
     if near is None:
         near = next((known for known in by_path if known.rpartition(".")[2] == last), None)

@@ -53,6 +53,9 @@ def load(case: str | os.PathLike, set: Mapping[str, Any] | None = None) -> Case:
     """
     text, file, directory = text_of(case)
     tree = tables_of(text, file)
+    if "case" in tree and ("vary" in tree or "rows" in tree):
+        sweep = f"`axicfd sweep {file}` solves its rows." if file else "`axicfd.sweep` solves its rows."
+        raise InputError([Mistake(file, None, "", None, "is a plan of variants, not a case", sweep)])
     settings: list[Place] = []
     if set:
         before = tree

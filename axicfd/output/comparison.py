@@ -70,8 +70,9 @@ class Comparison:
 
     def __repr__(self) -> str:
         told = sum(row.told_apart is True for row in self.rows)
+        differ = "1 input differs" if len(self.inputs) == 1 else f"{len(self.inputs)} inputs differ"
         return (
-            f"<Comparison of {self.names[0]} and {self.names[1]}: {len(self.inputs)} inputs differ, {told} of "
+            f"<Comparison of {self.names[0]} and {self.names[1]}: {differ}, {told} of "
             f"{len(self.rows)} quantities are told apart>"
         )
 

@@ -157,7 +157,11 @@ def as_summary(verdict: Verdict, stopped_by: str | None, why: str, solves: int) 
     else:
         worst = f"`{verdict.worst}`" if verdict.worst else "the mesh error"
         judged = verdict.quantity.get(verdict.worst or "")
-        known = "" if judged is None or judged.half_width is None else f", {judged.ratio:.3g} times what is allowed"
+        known = (
+            ""
+            if judged is None or judged.half_width is None
+            else f", {float(f'{judged.ratio:.3g}'):.10g} times what is allowed"
+        )
         text = f"The accuracy asked for is not reached, by most in {worst}{known}: {why}"
     return {
         "reached": verdict.reached and stopped_by is None,

@@ -7,7 +7,7 @@ rule that could not judge says so with `checked = False`. Nothing else in the pa
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import asdict, dataclass, field
 from functools import cached_property
 from typing import Any
@@ -851,10 +851,15 @@ class LeftRange:
         )  # fmt: skip
         verb = "is" if len(self.laws) == 1 else "are"
         return (
-            f"{' and '.join(self.laws).capitalize()} of {self.material} {verb} known {known}, and "
+            f"{_listed(self.laws).capitalize()} of {self.material} {verb} known {known}, and "
             f"{self.layer} is {side}: "
             f"{_temperature(case, self.T)} at z = {_length(case, self.z)}."
         )
+
+
+def _listed(words: Sequence[str]) -> str:
+    """ "density", "density and viscosity", "density, conductivity and viscosity"."""
+    return " and ".join(filter(None, (", ".join(words[:-1]), words[-1])))
 
 
 def _left_ranges(found: Found) -> list[LeftRange]:
@@ -1067,8 +1072,8 @@ def _phase_change(found: Found) -> Iterator[Caution]:
         "phase-change",
         f"Whether there is {what} was not checked (the key for it is not available yet): the wetted wall "
         "comes to "
-        f"{_temperature(found.case, T)} at z = {_length(found.case, z)}. Compare it by hand at the lowest "
-        "pressure there.",
+        f"{_temperature(found.case, T)} at z = {_length(found.case, z)}. Compare it by hand"
+        f"{'' if what == 'freezing' else ' at the lowest pressure there'}.",
         place=f"z = {_length(found.case, z)}",
         found=T,
         source="no criterion applied",

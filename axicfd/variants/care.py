@@ -75,4 +75,5 @@ def _read(text: Any) -> tuple[str, float]:
 
 def _refuse(text: Any, what: str, instead: str = "") -> AxicfdError:
     instead = instead or 'Write an amount such as "1 K" or "0.5 W", or per cent of each scale: "2 %".'
-    return AxicfdError(f"`care = {text!r}` {what}. {instead}")
+    given = f'"{text}"' if isinstance(text, str) else text
+    return AxicfdError(f"`care = {given}` {what}. {instead}")

@@ -19,7 +19,7 @@ from scipy.optimize import brentq
 from axicfd import units
 from axicfd.case import keys, paths, read
 from axicfd.case.layout import layout
-from axicfd.case.model import Case
+from axicfd.case.model import Case, expect_case
 from axicfd.case.quantities import ResultQuantity, quantity
 from axicfd.errors import AxicfdError, bad_input
 from axicfd.materials import laws
@@ -208,11 +208,12 @@ def find(
     on_step : called after each look and solve
     Raises `InputError` for unusable paths and values. No answer is a `Found` without answers that says why.
     """
+    expect_case(case)
     names = (change,) if isinstance(change, str) else tuple(change)
     inputs = tuple(_input(case, name) for name in names)
     targets = tuple(_target(case, path, value) for path, value in _pairs(until))
     if len(inputs) != len(targets):
-        raise bad_input("change", None, f"names {len(inputs)} inputs for {len(targets)} quantities", "Give as many.")
+        raise bad_input("change", None, f"has {len(inputs)} where `until` has {len(targets)}", "Give as many.")
     if len(set(names)) != len(names):
         raise bad_input("change", None, "names an input twice")
     if len(inputs) > 1 and between is not None:
@@ -447,15 +448,15 @@ def _out_of_reach(search: _Search, limits: tuple[float, float]) -> str:
     value, place = max(known) if most else min(known)
     unit = f" {target.unit}".rstrip()
     text = (
-        f"Between {_short(one, limits[0])} and {_short(one, limits[1])} {target.quantity.path} reaches at "
-        f"{'most' if most else 'least'} {target.shown(value):.4g}{unit}, at {_short(one, place)}."
+        f"Between {_short(one, limits[0])} and {_short(one, limits[1])} {target.quantity.path} "
+        f"goes no {'higher' if most else 'lower'} than {target.shown(value):.4g}{unit}, at {_short(one, place)}."
     )
     if any(math.isclose(place, limit) for limit in limits):
         text += " A wider range may hold it."
     refused = sorted((entry.inputs[0], entry.why) for entry in search.looks.values() if entry.quantities is None)
     above, below = [r for r in refused if r[0] > place], [r for r in refused if r[0] < place]
     for nearest, word in ((above[:1], "above"), (below[-1:], "below")):
-        text += "".join(f" From {_short(one, at)} {word} there is no answer: {why}" for at, why in nearest)
+        text += "".join(f" At {_short(one, at)} and {word} there is no answer: {why}" for at, why in nearest)
     return text
 
 

@@ -6,7 +6,7 @@ from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Any
 
-from axicfd.case.model import AlongAcross, Case, FileProfile, Law, UsedFluid
+from axicfd.case.model import AlongAcross, Case, FileProfile, Law, UsedFluid, expect_case
 from axicfd.case.quantities import quantities
 from axicfd.case.read import plain
 from axicfd.errors import AxicfdError
@@ -72,6 +72,7 @@ def what_matters(
     care : from where on a change matters, "1 K", "2 %" of each scale (the default), or several such amounts
     Raises `AxicfdError` where nothing flows, and what `solve` raises.
     """
+    expect_case(case)
     cared = read_care(care)
     if all(stream.is_still for stream in case.stream.values()):
         raise AxicfdError("Nothing flows in this case: none of these effects acts in it. Give a flow.")

@@ -27,7 +27,7 @@ from typing import Any
 import numpy as np
 
 from axicfd.case.keys import NORMAL_REACH, InputTolerance
-from axicfd.case.model import Case
+from axicfd.case.model import Case, expect_case
 from axicfd.case.quantities import ResultQuantity, quantities, quantity
 from axicfd.errors import InputError, Mistake, RefusedModel, bad_input
 from axicfd.mesh.grid import Array
@@ -317,6 +317,7 @@ def spread(
     Raises `InputError` where no input has a tolerance, or a tolerance reaches a case that cannot be, before anything
     is solved; `RefusedModel` where the model does not cover the case itself.
     """
+    expect_case(case)
     inputs = case.tolerances
     if not inputs:
         raise bad_input(

@@ -13,7 +13,7 @@ from typing import Any
 
 from axicfd.case.keys import ZTable
 from axicfd.case.layout import Layout, PlacedSection, layout
-from axicfd.case.model import AlongAcross, Case, Layer, Outside
+from axicfd.case.model import AlongAcross, Case, Layer, Outside, expect_case
 from axicfd.case.quantities import ResultQuantity, quantities, quantity
 from axicfd.case.read import plain
 from axicfd.errors import AxicfdError
@@ -120,13 +120,14 @@ def wall_effect(
     layer : take the conduction along z out of this solid layer only; the case without wall is then left out
     Raises `AxicfdError` where there is no wall, no such layer or no flow, and what `solve` raises.
     """
+    expect_case(case)
     cared = read_care(care)
     tube = layout(case)
     names = list(dict.fromkeys(p.name for s in tube.sections for p in s.layers if p.kind == "solid"))
     if not names:
         raise AxicfdError("This case has no wall: no section has a solid layer. There is nothing to take out.")
     if layer is not None and layer not in names:
-        raise AxicfdError(f"`layer = {layer!r}` names no solid layer of the case. There are: {', '.join(names)}.")
+        raise AxicfdError(f'`layer = "{layer}"` names no solid layer of the case. There are: {", ".join(names)}.')
     if all(stream.is_still for stream in case.stream.values()):
         raise AxicfdError(
             "Nothing flows in this case, so no stream takes up heat that the wall could move. Give a flow."

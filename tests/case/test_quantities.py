@@ -36,6 +36,7 @@ def test_every_quantity_has_a_kind_and_comes_once(case):
         ("stream.water.outlet_temprature", "Write stream.water.outlet_temperature."),
         ("outlet_temperature", "Write stream.water.outlet_temperature."),
         ("layer.water.hottest", "Write layer.tube.hottest."),
+        ("stream.water.outlet", "Write stream.water.outlet_temperature or stream.water.outlet_axis_temperature"),
         ("x", "Write a path such as stream.water.outlet_temperature."),
     ],
 )

@@ -259,6 +259,13 @@ def test_wrong_shapes_are_mistakes_and_no_crash(text):
     mistakes_in(text)
 
 
+def test_a_plan_given_for_a_case_is_led_to_its_command(tmp_path):
+    plan = tmp_path / "plan.toml"
+    plan.write_text('case = "tube.toml"\nrows = "rows.csv"\n')
+    with pytest.raises(InputError, match=r"is a plan of variants, not a case\. `axicfd sweep .*plan\.toml` solves"):
+        load(plan)
+
+
 def test_a_missing_closing_quote_is_said():
     text = BASE.replace('mass_flow         = "4 g/s"', 'mass_flow = "4 g/s  # what the pump gives')
     wanted = 'line 7: is not TOML: a text has no closing quote .* Write mass_flow = "4 g/s"'

@@ -145,7 +145,7 @@ def test_hopeless_targets_say_what_is_reached():
     warm = tube(outside='film_coefficient = "200 W/m^2/K", ambient = "60 degC"', length="1 m")
     found = find(warm, "section.all.length", f"{OUTLET} = 61 degC", between=("0.1 m", "100 m"))
     assert not found.answers
-    assert "Between 0.1 m and 100 m stream.oil.outlet_temperature reaches at most 60" in found.why
+    assert "Between 0.1 m and 100 m stream.oil.outlet_temperature goes no higher than 60" in found.why
     assert finding.sentences(found) == [f"No answer. {found.why}"]
 
 
@@ -153,7 +153,7 @@ def test_what_is_only_neared_is_not_reached():
     """The outlet comes to the surroundings' 60 degC with length, but not to it."""
     warm = tube(outside='film_coefficient = "200 W/m^2/K", ambient = "60 degC"', length="1 m", radial=16, axial=64)
     found = find(warm, "section.all.length", f"{OUTLET} = 60.5 degC", between=("0.1 m", "20 m"))
-    assert not found.answers and "reaches at most 59." in found.why and "at 20 m. A wider range" in found.why
+    assert not found.answers and "goes no higher than 59." in found.why and "at 20 m. A wider range" in found.why
 
 
 def test_where_the_model_is_refused_is_said():
@@ -220,7 +220,7 @@ def test_steps_are_told():
         ("stream.oil.inlet_profile", f"{OUTLET} = 35 degC", None, "no input"),
         ("mesh.radial", f"{OUTLET} = 35 degC", None, "no input"),
         ("section.all", f"{OUTLET} = 35 degC", None, "whole section"),
-        (["section.all.length", "stream.oil.mass_flow"], f"{OUTLET} = 35 degC", None, "2 inputs for 1"),
+        (["section.all.length", "stream.oil.mass_flow"], f"{OUTLET} = 35 degC", None, "has 2 where `until` has 1"),
     ],
 )
 def test_bad_questions_are_refused_before_anything_is_solved(change, until, between, words):
