@@ -18,6 +18,9 @@ from axicfd.variants.wall import IN_FULL, NO_WALL, WallEffect
 # Quantities whose being left alone is worth saying beside what is changed, the most telling first.
 _WORTH_SAYING = "outlet_temperature_K", "hottest_wetted_wall_K", "heat_gain_W"
 NOTHING = 1e-5  # share of a scale below which a change is shown as none
+# Curves without a largest difference that tells anything: a Nusselt number has no limit where wall and bulk are equal.
+_WITH_POLES = ("nusselt",)
+ROUND_OFF = 1e-12  # share of a scale below which a value is 0
 # Columns of the table of assumptions.
 _ASSUMPTION_KEYS = "outlet_temperature_K", "pressure_drop_Pa", "heat_gain_W", "hottest_wetted_wall_K"
 
@@ -52,6 +55,11 @@ def _with_bar(value: float, half: float | None, scale: float, signed: bool = Tru
     return ("+" if signed and value > 0.0 else "") + text + bar
 
 
+def _amount(d: Difference, si: float, shown: Shown) -> str:
+    """A value of a quantity with its unit; 0 where it is nothing but round-off."""
+    return amount(shown, d.of.kind, 0.0 if abs(si) <= ROUND_OFF * d.scale else si)
+
+
 def _unit(d: Difference, shown: Shown) -> str:
     return shown.difference_unit(d.of.kind)
 
@@ -72,7 +80,7 @@ def sentence(effect: Effect, shown: Shown) -> str:
     by = f"by {change_text(d, shown, signed=False)}"
     from_where = f"{_size(d, d.care, shown)} is where that begins to matter"
     if effect.verdict == YES:
-        base, then = (amount(shown, d.of.kind, value) for value in (d.base, d.then))
+        base, then = (_amount(d, value, shown) for value in (d.base, d.then))
         return f"{name} {_verb(d)} {_the(d)} from {base} to {then}, {by}: keep it.{_left_alone(effect, shown)}"
     moves = f"{_verb(d)} {_the(d)} {by}"
     if effect.verdict == NO:
@@ -160,8 +168,8 @@ def wall_rows(found: WallEffect) -> tuple[list[str], list[list[str]]]:
             continue
         row = [d.of.label]
         if found.radial:
-            row.append("" if other is None else amount(shown, d.of.kind, other.base))
-        row += [amount(shown, d.of.kind, d.base), amount(shown, d.of.kind, d.then)]
+            row.append("" if other is None else _amount(other, other.base, shown))
+        row += [_amount(d, d.base, shown), _amount(d, d.then, shown)]
         if found.radial:
             row.append("" if other is None else _judged(other, shown))
         rows.append([*row, _judged(d, shown)])
@@ -178,7 +186,7 @@ def along_rows(effects: Iterable[Effect], shown: Shown) -> list[list[str]]:
     rows = []
     for effect in effects:
         for curve in effect.curves:
-            if curve.at is None or curve.difference[curve.at] == 0.0:
+            if curve.column in _WITH_POLES or curve.at is None or curve.difference[curve.at] == 0.0:
                 continue
             row = curve_row(curve.column)
             value, half = (float(shown.difference(row.kind, x[curve.at])) for x in (curve.difference, curve.half_width))

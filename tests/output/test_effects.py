@@ -41,6 +41,12 @@ def test_a_change_is_written_to_four_digits_at_most_and_its_half_width_rounded_u
     )
 
 
+def test_round_off_is_written_as_0():
+    of = ResultQuantity("stream.oil.heat_gain", ("stream", "oil", "heat_gain_W"))
+    found = Effect("axial conduction in the wall", (Difference(of, 0.39, -8.8e-23, Change(0.39, 0.001), 0.4, 0.01),))
+    assert "from 0 W to 0.39 W, by" in effects.sentence(found, SHOWN)
+
+
 def test_what_does_not_matter_may_be_left_out():
     found = Effect("axial conduction in the wall", (difference("hottest_wetted_wall", 0.5, 0.02),))
     assert effects.sentence(found, SHOWN) == (
@@ -82,6 +88,11 @@ def test_the_table_shows_every_case_beside_the_effects():
     assert wall[1] == wall[2] != wall[3] and wall[5].endswith("*")
     assert any("M = " in text for text in effects.wall_sentences(solved()))
     assert "<script" not in effects.wall_html(solved()) and "hottest wetted wall" in effects.wall_html(solved())
+
+
+def test_a_number_with_poles_has_no_largest_difference():
+    curves = {row[1] for row in effects.along_rows(solved().effects, SHOWN)}
+    assert {"wetted wall", "wall heat flux"} <= curves and "Nusselt number" not in curves
 
 
 def test_the_folder_holds_verdicts_curves_cases_and_a_picture(tmp_path):
