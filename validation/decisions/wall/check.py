@@ -8,6 +8,7 @@ from pathlib import Path
 from axicfd.case.layout import layout
 from axicfd.case.read import load
 from axicfd.output.effects import change_text, wall_sentences
+from axicfd.output.headline import number
 from axicfd.output.shown import shown_units
 from axicfd.variants.care import DEFAULT_PER_CENT, Care
 from axicfd.variants.contrast import NO, YES, Difference, Effect
@@ -140,4 +141,4 @@ def picture(folder: Path) -> None:
 
 
 def _most(d: Difference, answer: WallEffect) -> str:
-    return f"{d.of.label} {change_text(d, shown_units(answer.case))}, {d.weight:.2g} of care"
+    return f"{d.of.label} {change_text(d, shown_units(answer.case))}, {number(d.weight, 2)} of care"
