@@ -80,6 +80,7 @@ _SHOWN = {
     "solve": ("axicfd.results.result", "Result", "axicfd.output.notebook", "html"),
     "spread": ("axicfd.variants.spread", "Spread", "axicfd.output.spread", "html"),
     "compare": ("axicfd.output.comparison", "Comparison", "axicfd.output.comparison", "html"),
+    "sweep": ("axicfd.output.sweep", "Sweep", "axicfd.output.sweep_lines", "html"),
     "find": ("axicfd.variants.find", "Found", "axicfd.output.finding", "html"),
     "wall_effect": ("axicfd.variants.wall", "WallEffect", "axicfd.output.effects", "wall_html"),
     "what_matters": ("axicfd.variants.matters", "Assumptions", "axicfd.output.effects", "assumption_html"),

@@ -11,7 +11,6 @@ import shutil
 from collections.abc import Callable, Iterator, Mapping
 from concurrent.futures import Executor
 from dataclasses import dataclass
-from html import escape
 from pathlib import Path
 from typing import Any
 
@@ -28,7 +27,6 @@ from axicfd.variants.runner import SOLVED
 from axicfd.variants.sweep import Progress, Record, jobs_of, meshes_of, meshes_text, shared_meshes, solve_rows
 
 TABLE = "sweep.csv"
-SHOWN_ROWS = 12  # of a table that shows itself
 BAR = "numerical_uncertainty."  # before the name of a quantity: the half-width of its mesh error
 
 
@@ -101,17 +99,6 @@ class Sweep:
     def __repr__(self) -> str:
         ended = ", ".join(f"{count} {status or 'not solved yet'}" for status, count in self.counts.items())
         return f"<Sweep of {self.base.title!r} over {', '.join(self.varied)}: {ended}>"
-
-    def _repr_html_(self) -> str:
-        """The varied keys, status and quantities of the first rows."""
-        names = ["row", *self.varied.values(), "status", *self.quantities]
-        head = "".join(f"<th>{escape(name)}</th>" for name in names)
-        body = "".join(
-            "<tr>" + "".join(f"<td>{escape(_cell(row[name]))}</td>" for name in names) + "</tr>"
-            for row, _ in zip(self.rows, range(SHOWN_ROWS), strict=False)
-        )
-        more = f"<p>{len(self) - SHOWN_ROWS} more rows</p>" if len(self) > SHOWN_ROWS else ""
-        return f"<p>{escape(repr(self))}</p><table><tr>{head}</tr>{body}</table>{more}"
 
 
 def sweep(
@@ -286,12 +273,6 @@ def _table(store: SweepStore, base: Case, folder: Path | None) -> Sweep:
 def _folder_name(folder: Path, key: str, record: Record | None) -> str | None:
     kept = record is not None and record.fields
     return fields_folder(folder, key).relative_to(folder).as_posix() if kept else None
-
-
-def _cell(value: Any) -> str:
-    if value is None:
-        return ""
-    return f"{value:.6g}" if isinstance(value, float) else str(value)
 
 
 __all__ = ["SOLVED", "Sweep", "column_of", "is_sweep", "read_sweep", "sweep"]

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from html import escape
 from typing import Any
 
 from axicfd import units
@@ -16,6 +17,7 @@ from axicfd.results.limits import FAIL, NOT_JUDGED, PASS, TOO_CLOSE
 from axicfd.variants.plan import kind_of
 
 LIMIT = "limits."
+SHOWN_ROWS = 12  # of a table that shows itself in a notebook
 VERDICTS = (PASS, TOO_CLOSE, NOT_JUDGED, FAIL)  # the best first
 SHORT = ("outlet_temperature_K", "pressure_drop_Pa", "hottest_wetted_wall_K")  # of each stream, where space is short
 
@@ -118,6 +120,20 @@ def as_text(header: Sequence[str], lines: Sequence[Sequence[str]]) -> str:
         "  ".join([*(cell.rjust(width) for cell, width in zip(line, widths, strict=False)), line[-1]]).rstrip() + "\n"
         for line in (header, *lines)
     )
+
+
+def html(table: Sweep) -> str:
+    """How a sweep shows itself in a notebook: its first rows, sorted, in the user's units with their mesh errors."""
+    header, lines = header_and_lines(table)
+
+    def written(cells: Sequence[str], tag: str) -> str:
+        return "<tr>" + "".join(f"<{tag}>{escape(cell)}</{tag}>" for cell in cells) + "</tr>"
+
+    rows = written(header, "th") + "".join(written(line, "td") for line in lines[:SHOWN_ROWS])
+    counts = ", ".join(f"{count} {status}" for status, count in table.counts.items())
+    more = f"<p>{len(lines) - SHOWN_ROWS} more rows</p>" if len(lines) > SHOWN_ROWS else ""
+    title = f"<p><b>{escape(table.base.title or 'untitled')}</b>: {escape(counts)}</p>"
+    return f"{title}<table>{rows}</table>{more}"
 
 
 def _label(key: str) -> str:

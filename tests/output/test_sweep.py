@@ -131,7 +131,8 @@ def test_in_memory_it_leaves_no_files(tmp_path, monkeypatch):
     table = axicfd.sweep({"case": BASE, "vary": [FLOWS]}, **THREAD)
     assert table.folder is None and list(tmp_path.iterdir()) == []
     assert "2 solved, 1 refused" in repr(table)
-    assert "<table>" in table._repr_html_()
+    shown = table._repr_html_()
+    assert "2 solved, 1 refused" in shown and "degC</th>" in shown and "±" in shown and "<td>40</td>" in shown
     assert json.loads(json.dumps(table.as_dict()))["status"] == ["solved", "solved", "refused"]
 
 
