@@ -23,9 +23,9 @@ STANDING = (
     "Errors of properties and film coefficients are usually larger than those of the mesh. "
     "Density is held at its inlet value."
 )
-# From here on heat or pressure can hurt. Common practice, no source: about what a hand bears for a moment on
-# metal, and half a bar above the surroundings.
-HURTS_ABOVE = 333.15  # K
+# From here on heat or pressure can hurt. Heat: 43 degC burns skin that touches it for hours (ISO 13732-1, from memory);
+# cold and pressure, half a bar above the surroundings: common practice, no source.
+HURTS_ABOVE = 316.15  # K
 HURTS_BELOW = 263.15  # K
 HURTS_PRESSURE = 1.5e5  # Pa absolute
 

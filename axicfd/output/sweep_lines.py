@@ -151,7 +151,8 @@ def _varied(table: Sweep, key: str, column: str, label: str) -> Axis:
 
 def _is_short(axis: Axis, limits: Iterable[str]) -> bool:
     steps = steps_of(axis.name)
-    return (steps[0] == "stream" and steps[-1] in SHORT) or f"{LIMIT}{axis.path}" in limits
+    asked_for = steps[0] == "quantity" or f"{LIMIT}{axis.path}" in limits
+    return asked_for or (steps[0] == "stream" and steps[-1] in SHORT)
 
 
 def _plain(axis: Axis, value: Any) -> str:
