@@ -249,6 +249,7 @@ def part_start() -> list[str]:
     rows = []
     with tempfile.TemporaryDirectory() as folder:
         environment = os.environ | {"NUMBA_CACHE_DIR": folder}
+        environment.pop("PYTHONDONTWRITEBYTECODE", None)  # a user's Python keeps its compiled modules
         path = Path(folder) / "conjugate.toml"
         path.write_text(to_toml(sized(conjugate(), 10_000)), encoding="utf-8")
         words = ["solve", str(path), "--replace", "--out", str(Path(folder) / "results")]
