@@ -637,17 +637,17 @@ def _curves(
     unit = shown.unit(row.kind) if row.kind else row.unit
     values = [shown.value(row.kind, curve) for curve in curves.values()]
     styles = ("-", (0, (5, 2)), (0, (1, 1.2)))
+    cut = _set_reach(axes, z, values)
     for number, (label, value) in enumerate(zip(curves, values, strict=True)):
         axes.plot(
             z,
-            value,
+            _without_poles(value, *axes.get_ylim()),
             color=CURVE_INKS[number % len(CURVE_INKS)],
             linestyle=styles[number % len(styles)],
             linewidth=1.6,
             label=label,
             zorder=3,
         )
-    cut = _set_reach(axes, z, values)
     axes.set_facecolor("none")
     for side in ("top", "right"):
         axes.spines[side].set_visible(False)
@@ -663,6 +663,17 @@ def _curves(
     )
     if named and len(curves) > 1:
         axes.legend(fontsize=9, frameon=False, loc="best")
+
+
+def _without_poles(value: np.ndarray, bottom: float, top: float) -> np.ndarray:
+    """The curve with a gap where it leaves the panel at one end and comes back at the other.
+
+    A Nusselt number does where wall and bulk temperature cross; a line through the panel there would look like values.
+    """
+    side = np.where(value > top, 1, np.where(value < bottom, -1, 0))
+    gap = value.astype(float)
+    gap[1:][side[1:] * side[:-1] < 0] = np.nan
+    return gap
 
 
 def _set_reach(axes: Axes, z: np.ndarray, values: list[np.ndarray]) -> bool:

@@ -131,3 +131,10 @@ def test_pressure_is_drawn_from_the_outlet(result):
     pressure = figures.axial_picture(result, "syrup").axes[-1].lines[0].get_ydata()
     assert pressure[-1] == pytest.approx(0.0, abs=1e-6)
     assert pressure[0] == pytest.approx(4000.0)
+
+
+def test_a_pole_leaves_a_gap_and_no_line_through_the_panel():
+    value = np.array([4.0, 6.0, 90.0, -80.0, -2.0, 4.0])
+    drawn = figures._without_poles(value, -5.0, 10.0)
+    assert np.isnan(drawn).tolist() == [False, False, False, True, False, False]
+    assert np.array_equal(figures._without_poles(value, -100.0, 100.0), value)
