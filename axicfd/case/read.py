@@ -70,6 +70,9 @@ def build(tree: Mapping[str, Any], source: Source | None = None, in_file: bool =
     return Case.model_validate(dict(tree), context={"source": source or Source(), keys.IN_FILE: in_file})
 
 
+BEGIN_A_CASE = "`axicfd new NAME` writes a case to start from."
+
+
 def tables_of(text: str, file: str | None) -> dict[str, Any]:
     """The tables of a TOML text. Raises `InputError` with the line where it is none."""
     try:
@@ -78,8 +81,11 @@ def tables_of(text: str, file: str | None) -> dict[str, Any]:
         raise InputError([_syntax_mistake(file, text, str(why))]) from None
 
 
-def text_of(case: str | os.PathLike) -> tuple[str, str | None, Path]:
-    """(text, name of the file, folder that paths in it are relative to)."""
+def text_of(case: str | os.PathLike, to_begin: str = BEGIN_A_CASE) -> tuple[str, str | None, Path]:
+    """(text, name of the file, folder that paths in it are relative to).
+
+    to_begin : what to say where there is no such file nor one of a similar name
+    """
     if isinstance(case, str) and "\n" in case:
         return case, None, Path()
     path = Path(case)
@@ -105,7 +111,7 @@ def text_of(case: str | os.PathLike) -> tuple[str, str | None, Path]:
         folder = path.parent if path.parent.is_dir() else Path()
         found = sorted(other.name for other in folder.glob("*.toml"))
         near = keys.nearest(path.name, found) or keys.nearest(path.name + ".toml", found)
-        hint = f"Did you mean {folder / near}?" if near else "`axicfd new NAME` writes a case to start from."
+        hint = f"Did you mean {folder / near}?" if near else to_begin
         raise InputError([Mistake(str(path), None, "", None, "does not exist", hint)]) from None
     except UnicodeDecodeError:
         raise InputError([Mistake(str(path), None, "", None, "is not UTF-8 text", "Save it as UTF-8.")]) from None

@@ -67,7 +67,7 @@ def read_plan(plan: str | os.PathLike | Mapping[str, Any], set: Mapping[str, Any
     """
     if isinstance(plan, Mapping):
         return _Reading(dict(plan), None, {}, Path(), in_file=False).plan(set)
-    text, file, directory = read.text_of(plan)
+    text, file, directory = read.text_of(plan, 'A plan is a text: case = "CASE.toml", then a [[vary]] for each key.')
     return _Reading(read.tables_of(text, file), file, lines_of(text), directory, in_file=True).plan(set)
 
 
