@@ -13,7 +13,7 @@ from axicfd.case.model import Case
 from axicfd.case.quantities import ResultQuantity, quantities
 from axicfd.case.write import to_toml
 from axicfd.output import csv, folder
-from axicfd.output.headline import amount, number, with_bar
+from axicfd.output.headline import amount_with_bar, number_with_bar
 from axicfd.output.shown import Shown, shown_units
 
 MARK = "compare.json"
@@ -226,13 +226,8 @@ def _columns(found: Comparison) -> dict[str, Any]:
 
 
 def _value(shown: Shown, row: Row, k: int) -> str:
-    value, half, kind = row.values[k], row.half_widths[k], row.of.row.kind
-    if value is None:
-        return "none"
-    if not half:
-        return amount(shown, kind, value, row.of.row.unit)
-    text, bar = with_bar(float(shown.value(kind, value)), float(shown.difference(kind, half)))
-    return f"{text} ±{bar} {shown.unit(kind) if kind else row.of.row.unit}".rstrip()
+    value, of = row.values[k], row.of.row
+    return "none" if value is None else amount_with_bar(shown, of.kind, value, row.half_widths[k], of.unit)
 
 
 def _difference(shown: Shown, row: Row) -> str:
@@ -240,12 +235,9 @@ def _difference(shown: Shown, row: Row) -> str:
         return ""
     kind = row.of.row.kind
     value = float(shown.difference(kind, row.difference))
-    text, bar = number(value), ""
-    if row.half_width:
-        text, width = with_bar(value, float(shown.difference(kind, row.half_width)))
-        bar = f" ±{width}"
+    text = number_with_bar(value, float(shown.difference(kind, row.half_width)) if row.half_width else None)
     unit = shown.difference_unit(kind) if kind else row.of.row.unit
-    return f"{'+' if value > 0.0 else ''}{text}{bar} {unit}".rstrip()
+    return f"{'+' if value > 0.0 else ''}{text} {unit}".rstrip()
 
 
 def _written(value: Any) -> str:

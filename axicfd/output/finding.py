@@ -7,7 +7,7 @@ from pathlib import Path
 from typing import Any
 
 from axicfd.output import csv, folder
-from axicfd.output.headline import number, with_bar
+from axicfd.output.headline import number, number_with_bar
 from axicfd.variants.find import Answer, Found, Input, Target
 
 MARK = "find.json"
@@ -77,12 +77,8 @@ def _answer(found: Found, answer: Answer) -> str:
 
 
 def _with_bar(of: Input | Target, name: str, value: float, half: float | None) -> str:
-    shown = of.shown(value)
-    text, bar = number(shown, 6), ""
-    if half:
-        text, width = with_bar(shown, abs(of.shown(value + half) - of.shown(value)) or half)
-        bar = f" ±{width}"
-    return f"{name} {text}{bar} {of.unit}".rstrip()
+    width = (abs(of.shown(value + half) - of.shown(value)) or half) if half else None
+    return f"{name} {number_with_bar(of.shown(value), width, digits=6)} {of.unit}".rstrip()
 
 
 def _look_columns(found: Found) -> dict[str, Any]:

@@ -142,13 +142,18 @@ def with_bar(value: float, half_width: float, finest: int | None = None) -> tupl
     return f"{round(value, -last if last > 0 else decimals):.{decimals}f}", bar_text
 
 
-def amount_with_bar(shown: Shown, kind: str, value: float, half_width: float | None) -> str:
+def number_with_bar(value: float, half_width: float | None, finest: int | None = None, digits: int = 4) -> str:
+    """`41.30 ±0.05` as `with_bar` writes them; a number of so many digits where there is no half-width."""
+    return " ±".join(with_bar(value, half_width, finest)) if half_width else number(value, digits)
+
+
+def amount_with_bar(shown: Shown, kind: str, value: float, half_width: float | None, unit: str = "") -> str:
     """`41.30 ±0.05 degC`; as `amount` where there is no half-width."""
     if not half_width:
-        return amount(shown, kind, value)
+        return amount(shown, kind, value, unit)
     finest = FINEST_TEMPERATURE if kind == "temperature" else None
-    texts = with_bar(float(shown.value(kind, value)), float(shown.difference(kind, half_width)), finest)
-    return f"{' ±'.join(texts)} {shown.unit(kind)}"
+    text = number_with_bar(float(shown.value(kind, value)), float(shown.difference(kind, half_width)), finest)
+    return f"{text} {shown.unit(kind) if kind else unit}".rstrip()
 
 
 def _decade(value: float) -> int:

@@ -10,7 +10,7 @@ from typing import Any
 from axicfd import units
 from axicfd.case.paths import steps_of
 from axicfd.case.quantities import quantities
-from axicfd.output.headline import FINEST_TEMPERATURE, number, with_bar
+from axicfd.output.headline import FINEST_TEMPERATURE, number, number_with_bar
 from axicfd.output.shown import Shown, shown_units
 from axicfd.output.sweep import BAR, SOLVED, Sweep
 from axicfd.results.limits import FAIL, NOT_JUDGED, PASS, TOO_CLOSE
@@ -164,7 +164,6 @@ def _plain(axis: Axis, value: Any) -> str:
 def _with_bar(axis: Axis, value: float | None, half_width: float | None) -> str:
     if value is None:
         return ""
-    if not half_width:
-        return number(float(axis.value(value)), 6)
     finest = FINEST_TEMPERATURE if axis.kind.startswith("temperature") else None
-    return " ±".join(with_bar(float(axis.value(value)), float(axis.difference(half_width)), finest))
+    width = float(axis.difference(half_width)) if half_width else None
+    return number_with_bar(float(axis.value(value)), width, finest, 6)
